@@ -1,0 +1,1 @@
+"""Independent, documented hand checks of truss member forces."""

@@ -1,0 +1,170 @@
+"""Loads at joints: a case, and combinations of cases."""
+
+from __future__ import annotations
+
+from collections.abc import Collection, Iterable, Mapping, Sequence
+from dataclasses import dataclass
+
+from trusscalc.errors import InexactNumberError, InputError, UnknownNameError
+from trusscalc.exact import ZERO, Exact
+from trusscalc.exacttext import number
+from trusscalc.truss import Truss, did_you_mean
+
+PLANE = 2
+
+
+@dataclass(frozen=True, slots=True)
+class JointLoad:
+    """A force (fx, fy) on a joint, in the truss's unit of force, y upwards; may hold symbols."""
+
+    joint: str
+    fx: Exact
+    fy: Exact
+
+
+@dataclass(frozen=True, slots=True, init=False)
+class LoadCase:
+    """A named set of joint loads.
+
+    Attributes
+    ----------
+    name : str
+        What the case is called.
+    loads : tuple of JointLoad
+        One for each loaded joint, in the order stated.
+    symbols : tuple of (str, Exact)
+        Values of the symbols in the loads, for decimals and for the numeric route.
+    """
+
+    name: str
+    loads: tuple[JointLoad, ...]
+    symbols: tuple[tuple[str, Exact], ...]
+
+    def __init__(
+        self,
+        name: str,
+        loads: Mapping[str, Sequence[object]] | Iterable[JointLoad],
+        *,
+        symbols: Mapping[str, object] | Iterable[tuple[str, Exact]] = (),
+    ) -> None:
+        """State a load case.
+
+        Parameters
+        ----------
+        name : str
+            What the case is called.
+        loads : mapping of joint name to (fx, fy)
+            Forces; numbers as in ``Truss``, and text with the symbols given.
+        symbols : mapping of name to value
+            Symbols that may stand in the loads.
+
+        Raises
+        ------
+        InputError
+            With every fault found in ``problems``.
+
+        Examples
+        --------
+        >>> snow = LoadCase("snow", {"C": (0, "-P")}, symbols={"P": 12})
+        >>> snow.as_floats()
+        {'C': (0.0, -12.0)}
+        """
+        problems: list[str] = []
+        values = _symbol_values(symbols, problems)
+        if isinstance(loads, Mapping):
+            read = [_joint_load(name, joint, pair, values, problems) for joint, pair in loads.items()]
+        else:
+            read = list(loads)
+        if problems:
+            raise InputError(problems)
+        object.__setattr__(self, "name", name)
+        object.__setattr__(self, "loads", tuple(load for load in read if load is not None))
+        object.__setattr__(self, "symbols", tuple(values.items()))
+
+    def value(self, amount: Exact) -> Exact:
+        """Return an amount with the case's symbols replaced by their values."""
+        return amount.substitute(dict(self.symbols))
+
+    def as_floats(self) -> dict[str, tuple[float, float]]:
+        """Return the loads as plain floats for the numeric route."""
+        return {load.joint: (float(self.value(load.fx)), float(self.value(load.fy))) for load in self.loads}
+
+    def faults(self, truss: Truss) -> list[str]:
+        """Return what does not fit the truss: loads on joints that are not there."""
+        known = [joint.name for joint in truss.joints]
+        places = set(known)
+        return [
+            f"[cases.{self.name}] {load.joint}: there is no such joint{did_you_mean(load.joint, known)}"
+            for load in self.loads
+            if load.joint not in places
+        ]
+
+
+@dataclass(frozen=True, slots=True)
+class Combination:
+    """A named sum of factored cases.
+
+    Attributes
+    ----------
+    name : str
+        Such as ``1.2D+1.6L``.
+    factors : tuple of (str, Exact)
+        Case name and factor.
+    """
+
+    name: str
+    factors: tuple[tuple[str, Exact], ...]
+
+
+def combine(combination: Combination, cases: Collection[LoadCase]) -> LoadCase:
+    """Return the combination as one load case, joint by joint, exactly.
+
+    Raises
+    ------
+    UnknownNameError
+        When the combination names a case that is not there.
+    """
+    by_name = {case.name: case for case in cases}
+    totals: dict[str, tuple[Exact, Exact]] = {}
+    symbols: dict[str, Exact] = {}
+    for name, factor in combination.factors:
+        if name not in by_name:
+            message = f"combination {combination.name!r}: there is no case {name!r}{did_you_mean(name, by_name)}"
+            raise UnknownNameError(message, name=name)
+        symbols.update(by_name[name].symbols)
+        for load in by_name[name].loads:
+            fx, fy = totals.get(load.joint, (ZERO, ZERO))
+            totals[load.joint] = (fx + factor * load.fx, fy + factor * load.fy)
+    loads = [JointLoad(joint, fx, fy) for joint, (fx, fy) in totals.items()]
+    return LoadCase(combination.name, loads, symbols=list(symbols.items()))
+
+
+def _symbol_values(
+    symbols: Mapping[str, object] | Iterable[tuple[str, Exact]], problems: list[str]
+) -> dict[str, Exact]:
+    values: dict[str, Exact] = {}
+    for name, value in symbols.items() if isinstance(symbols, Mapping) else symbols:
+        if not name.isidentifier() or name in ("sqrt", "sin", "cos", "tan", "pi", "X", "Y", "Z"):
+            problems.append(f"[symbols] {name[:40]!r}: a symbol is a word of letters and digits that is not taken")
+            continue
+        try:
+            values[name] = number(value)
+        except InexactNumberError as problem:
+            problems.append(f"[symbols] {name}: {problem}")
+    return values
+
+
+def _joint_load(
+    case: str, joint: str, pair: object, symbols: Mapping[str, Exact], problems: list[str]
+) -> JointLoad | None:
+    where = f"[cases.{case}] {joint}"
+    if isinstance(pair, str) or not isinstance(pair, Sequence) or len(pair) != PLANE:
+        problems.append(f"{where}: two numbers are needed, such as [0, -120]")
+        return None
+    values = []
+    for axis, value in zip("xy", pair, strict=True):
+        try:
+            values.append(number(value, symbols))
+        except InexactNumberError as problem:
+            problems.append(f"{where} F{axis}: {problem}")
+    return JointLoad(joint, values[0], values[1]) if len(values) == PLANE else None

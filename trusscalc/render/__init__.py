@@ -1,0 +1,1 @@
+"""The sheet written out: text, notebook, drawings."""

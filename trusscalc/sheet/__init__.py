@@ -1,0 +1,1 @@
+"""What is on the calculation sheet: blocks, figures, composition."""

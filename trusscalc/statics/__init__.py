@@ -1,0 +1,1 @@
+"""The exact route: equilibrium, cuts, plan and steps."""

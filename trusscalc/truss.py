@@ -1,0 +1,416 @@
+"""What the engineer states: joints, members, supports. A Truss that exists is well formed.
+
+Whether it is stable is a question of statics, not of form, and is asked later. All faults of form are
+collected and reported together.
+"""
+
+from __future__ import annotations
+
+import difflib
+import unicodedata
+import warnings
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass
+from typing import Any, Final
+
+from trusscalc.errors import InexactNumberError, InputError, TrusscalcWarning, UnknownNameError
+from trusscalc.exact import ONE, ZERO, Exact
+from trusscalc.exacttext import number
+from trusscalc.units import FORCES, LENGTHS, unknown_unit
+
+LONGEST_NAME: Final = 40
+MEMBER_ENDS: Final = 2
+PLANE: Final = 2
+
+
+@dataclass(frozen=True, slots=True)
+class Joint:
+    """A frictionless hinge at (x, y), in the truss's unit of length, y upwards."""
+
+    name: str
+    x: Exact
+    y: Exact
+
+
+@dataclass(frozen=True, slots=True)
+class Member:
+    """A straight bar between two joints, spelled as its author spelled it."""
+
+    start: str
+    end: str
+    group: str = ""
+
+    @property
+    def name(self) -> str:
+        """The member's name, such as ``L0-U1``."""
+        return f"{self.start}-{self.end}"
+
+
+@dataclass(frozen=True, slots=True)
+class Link:
+    """A support reaction of known direction (dx, dy); the length of the direction has no meaning."""
+
+    name: str
+    joint: str
+    dx: Exact
+    dy: Exact
+
+
+@dataclass(frozen=True, slots=True)
+class Support:
+    """A joint's support: ``pin`` (two links), ``roller`` (one vertical link) or ``links`` of any direction."""
+
+    joint: str
+    kind: str
+    links: tuple[Link, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class FloatTruss:
+    """The truss as plain floats, for the numeric route.
+
+    Attributes
+    ----------
+    joints : dict of str to (float, float)
+        Coordinates.
+    members : tuple of (name, start, end)
+        The bars.
+    links : tuple of (name, joint, dx, dy)
+        Reactions with their unit directions.
+    """
+
+    joints: dict[str, tuple[float, float]]
+    members: tuple[tuple[str, str, str], ...]
+    links: tuple[tuple[str, str, float, float], ...]
+
+
+@dataclass(frozen=True, slots=True, init=False)
+class Truss:
+    """A plane truss.
+
+    Attributes
+    ----------
+    joints, members, supports : tuple of Joint, Member, Support
+        In the order they were stated.
+    title : str
+        What the structure is called.
+    length, force : str
+        Units, see ``trusscalc.units``.
+    tension_only : tuple of str
+        Members whose compression is to be flagged.
+    no_uplift : tuple of str
+        Support joints whose downward pull is to be flagged.
+    """
+
+    joints: tuple[Joint, ...]
+    members: tuple[Member, ...]
+    supports: tuple[Support, ...]
+    title: str
+    length: str
+    force: str
+    tension_only: tuple[str, ...]
+    no_uplift: tuple[str, ...]
+
+    def __init__(
+        self,
+        joints: Mapping[str, Sequence[object]],
+        members: Mapping[str, Iterable[str]] | Iterable[str],
+        supports: Mapping[str, Any],
+        *,
+        title: str = "",
+        length: str = "m",
+        force: str = "kN",
+        tension_only: Iterable[str] = (),
+        no_uplift: Iterable[str] = (),
+    ) -> None:
+        """State a truss.
+
+        Parameters
+        ----------
+        joints : mapping of name to (x, y)
+            Coordinates: int, Fraction, Decimal, exact text such as ``"5*sqrt(3)/2"``, or a float, which
+            means its shortest decimal.
+        members : iterable of "joint-joint", or mapping of group name to such iterables
+            Every bar once; the ends in either order.
+        supports : mapping of joint name to support
+            ``"pin"``, ``"roller"`` (reaction vertical), ``{"reaction": (x, y)}`` for a roller whose reaction
+            acts along (x, y), or a list of such mappings for several links.
+
+        Raises
+        ------
+        InputError
+            With every fault found in ``problems``.
+
+        Warns
+        -----
+        TrusscalcWarning
+            When a member runs through a joint it does not name.
+
+        Examples
+        --------
+        >>> roof = Truss({"A": (0, 0), "B": (4, 0), "C": (2, 1.5)}, ["A-B", "A-C", "B-C"],
+        ...              {"A": "pin", "B": "roller"})
+        >>> [link.name for link in roof.links]
+        ['A.x', 'A.y', 'B.y']
+        """
+        problems: list[str] = []
+        read_joints = _joints(joints, problems)
+        read_members = _members(members, joints, read_joints, problems)
+        read_supports = _supports(supports, joints, problems)
+        for unit, known in ((length, LENGTHS), (force, FORCES)):
+            if unit not in known:
+                problems.append(f"[units]: {unknown_unit(unit, known)}")
+        tension_only, no_uplift = tuple(tension_only), tuple(no_uplift)
+        _attachment(read_joints, read_members, problems)
+        _behaviour(tension_only, no_uplift, read_members, read_supports, problems)
+        if problems:
+            raise InputError(problems)
+        values = (read_joints, read_members, read_supports, title, length, force, tension_only, no_uplift)
+        for name, value in zip(Truss.__slots__, values, strict=True):
+            object.__setattr__(self, name, value)
+        for text in _run_through(read_joints, read_members):
+            warnings.warn(text, TrusscalcWarning, stacklevel=2)
+
+    @property
+    def links(self) -> tuple[Link, ...]:
+        """All support links, each one unknown reaction."""
+        return tuple(link for support in self.supports for link in support.links)
+
+    def joint(self, name: str) -> Joint:
+        """Return a joint by name (UnknownNameError if there is none)."""
+        for joint in self.joints:
+            if joint.name == name:
+                return joint
+        raise unknown_joint(name, [joint.name for joint in self.joints])
+
+    def member(self, name: str) -> Member:
+        """Return a member by name, its ends in either order (UnknownNameError if there is none)."""
+        ends = {part.strip() for part in name.split("-")}
+        for member in self.members:
+            if {member.start, member.end} == ends:
+                return member
+        near = did_you_mean(name, [spelling for m in self.members for spelling in (m.name, f"{m.end}-{m.start}")])
+        message = f"there is no member {name!r}{near}"
+        raise UnknownNameError(message, name=name)
+
+    def as_floats(self) -> FloatTruss:
+        """Return the truss as plain floats for the numeric route, each rounded once from its exact value."""
+        joints = {joint.name: (float(joint.x), float(joint.y)) for joint in self.joints}
+        links = []
+        for link in self.links:
+            dx, dy = float(link.dx), float(link.dy)
+            size = (dx * dx + dy * dy) ** 0.5
+            links.append((link.name, link.joint, dx / size, dy / size))
+        return FloatTruss(joints, tuple((m.name, m.start, m.end) for m in self.members), tuple(links))
+
+
+def did_you_mean(name: str, known: Iterable[str]) -> str:
+    """Return '; did you mean X?' for the nearest known name, or ''."""
+    near = difflib.get_close_matches(name[: 2 * LONGEST_NAME], list(known), n=1, cutoff=0.5)
+    return f"; did you mean {near[0]}?" if near else ""
+
+
+def unknown_joint(name: str, known: Iterable[str]) -> UnknownNameError:
+    """Return the error for a joint that is not there."""
+    message = f"there is no joint {name!r}{did_you_mean(name, known)}"
+    return UnknownNameError(message, name=name)
+
+
+def name_fault(name: object) -> str:
+    """Return what is wrong with a joint name, or ''."""
+    if not isinstance(name, str) or not name:
+        return "a joint name must be a text of 1 to 40 characters"
+    if len(name) > LONGEST_NAME:
+        return f"a joint name has at most {LONGEST_NAME} characters"
+    if name != name.strip():
+        return "a joint name has no blank at its ends"
+    for character in name:
+        if character in "-,.":
+            return f"a joint name must not contain {character!r}; use letters, digits, prime or underscore"
+        kind = unicodedata.category(character)
+        if kind[0] == "C" or kind in ("Zl", "Zp") or (kind == "Zs" and character != " "):
+            return f"a joint name must not contain the character U+{ord(character):04X}"
+    return ""
+
+
+def point(pair: object, where: str, problems: list[str]) -> tuple[Exact, Exact] | None:
+    """Return a pair of exact numbers, or None after adding what is wrong to problems."""
+    if isinstance(pair, str) or not isinstance(pair, Sequence) or len(pair) != PLANE:
+        problems.append(f"{where}: two numbers are needed, such as [0, 2.5]")
+        return None
+    values = []
+    for axis, value in zip("xy", pair, strict=True):
+        try:
+            values.append(number(value))
+        except InexactNumberError as problem:
+            problems.append(f"{where} {axis}: {problem}")
+    return (values[0], values[1]) if len(values) == PLANE else None
+
+
+def _joints(joints: Mapping[str, Sequence[object]], problems: list[str]) -> tuple[Joint, ...]:
+    if not joints:
+        problems.append("[joints]: a truss needs joints")
+    found: list[Joint] = []
+    places: dict[tuple[Exact, Exact], str] = {}
+    spelled: dict[str, str] = {}
+    for name, pair in joints.items():
+        fault = name_fault(name)
+        if fault:
+            problems.append(f"[joints] {str(name)[:60]!r}: {fault}")
+            continue
+        same = spelled.setdefault(unicodedata.normalize("NFC", name), name)
+        if same != name:
+            problems.append(f"[joints] {name!r}: reads the same as another joint; give it another name")
+        place = point(pair, f"[joints] {name}", problems)
+        if place is None:
+            continue
+        other = places.setdefault(place, name)
+        if other != name:
+            problems.append(f"[joints] {name}: lies at the same place as {other}; move one or make them one joint")
+        found.append(Joint(name, *place))
+    return tuple(found)
+
+
+def _members(
+    members: Mapping[str, Iterable[str]] | Iterable[str],
+    joints: Mapping[str, Sequence[object]],
+    placed: tuple[Joint, ...],
+    problems: list[str],
+) -> tuple[Member, ...]:
+    groups = members if isinstance(members, Mapping) else {"": members}
+    places = {joint.name: (joint.x, joint.y) for joint in placed}
+    found: list[Member] = []
+    seen: dict[frozenset[str], str] = {}
+    for group, names in groups.items():
+        where = f"[members] {group}" if group else "[members]"
+        if isinstance(names, str) or not isinstance(names, Iterable):
+            problems.append(f'{where}: a list of members is needed, such as ["L0-L1", "L1-L2"]')
+            continue
+        for name in names:
+            ends = [part.strip() for part in name.split("-")] if isinstance(name, str) else []
+            if len(ends) != MEMBER_ENDS or not all(ends):
+                problems.append(f"{where} {str(name)[:90]!r}: a member is written joint-joint, such as L0-U1")
+                continue
+            unknown = [end for end in ends if end not in joints]
+            if unknown:
+                problems += [
+                    f"{where} {name!r}: there is no joint {end!r}{did_you_mean(end, joints)}" for end in unknown
+                ]
+                continue
+            first, last = ends
+            if first == last:
+                problems.append(f"{where} {name!r}: both ends are the same joint; a member joins two joints")
+                continue
+            if frozenset(ends) in seen:
+                problems.append(f"{where} {name!r}: stated twice (also as {seen[frozenset(ends)]}); remove one")
+                continue
+            seen[frozenset(ends)] = name
+            if first in places and last in places and places[first] == places[last]:
+                problems.append(f"{where} {name!r}: has no length; give its joints different coordinates")
+            found.append(Member(first, last, str(group)))
+    if not found and not problems:
+        problems.append("[members]: a truss needs members")
+    return tuple(found)
+
+
+def _supports(
+    supports: Mapping[str, Any], joints: Mapping[str, Sequence[object]], problems: list[str]
+) -> tuple[Support, ...]:
+    found = []
+    for joint, stated in supports.items():
+        if joint not in joints:
+            problems.append(f"[supports] {str(joint)[:60]}: there is no such joint{did_you_mean(str(joint), joints)}")
+            continue
+        support = _support(joint, stated, problems)
+        if support is not None:
+            found.append(support)
+    if not supports:
+        problems.append("[supports]: a truss needs supports, such as a pin and a roller")
+    return tuple(found)
+
+
+def _support(joint: str, stated: Any, problems: list[str]) -> Support | None:
+    where = f"[supports] {joint}"
+    if stated == "pin":
+        return Support(joint, "pin", (Link(f"{joint}.x", joint, ONE, ZERO), Link(f"{joint}.y", joint, ZERO, ONE)))
+    if stated == "roller":
+        return Support(joint, "roller", (Link(f"{joint}.y", joint, ZERO, ONE),))
+    several = isinstance(stated, Sequence) and not isinstance(stated, str)
+    listed = list(stated) if several else [stated]
+    links = []
+    for place, item in enumerate(listed, 1):
+        if not isinstance(item, Mapping) or set(item) != {"reaction"}:
+            text = str(item)[:60]
+            problems.append(f'{where}: {text!r} is no support; write "pin", "roller" or {{ reaction = [x, y] }}')
+            continue
+        direction = point(item["reaction"], f"{where} reaction", problems)
+        if direction is None:
+            continue
+        if not direction[0] and not direction[1]:
+            problems.append(f"{where}: the reaction needs a direction other than [0, 0]")
+            continue
+        links.append(Link(f"{joint}.r{place}" if several else f"{joint}.r", joint, *direction))
+    if several and not listed:
+        problems.append(f"{where}: the list of links is empty")
+    return Support(joint, "links", tuple(links)) if links else None
+
+
+def _attachment(joints: tuple[Joint, ...], members: tuple[Member, ...], problems: list[str]) -> None:
+    attached = {end for member in members for end in (member.start, member.end)}
+    if members:
+        loose = [joint.name for joint in joints if joint.name not in attached]
+        problems += [f"[joints] {name}: no member ends there; add one or remove the joint" for name in loose]
+
+
+def _behaviour(
+    tension_only: tuple[str, ...],
+    no_uplift: tuple[str, ...],
+    members: tuple[Member, ...],
+    supports: tuple[Support, ...],
+    problems: list[str],
+) -> None:
+    ends = {frozenset((member.start, member.end)) for member in members}
+    for name in tension_only:
+        if not isinstance(name, str) or frozenset(name.split("-")) not in ends:
+            near = did_you_mean(str(name), [member.name for member in members])
+            problems.append(f"[behaviour] tension_only {str(name)[:90]!r}: there is no such member{near}")
+    held = [support.joint for support in supports]
+    for name in no_uplift:
+        if name not in held:
+            near = did_you_mean(str(name), held)
+            problems.append(f"[behaviour] no_uplift {str(name)[:60]!r}: no support there{near}")
+
+
+def _run_through(joints: tuple[Joint, ...], members: tuple[Member, ...]) -> list[str]:
+    """Return a warning for every member that runs through a joint it does not name.
+
+    Floats sort out almost all pairs; only near misses are decided exactly.
+    """
+    place = {joint.name: joint for joint in joints}
+    by_x = sorted((float(joint.x), float(joint.y), joint) for joint in joints) if joints else []
+    return [
+        f"member {member.name} runs through joint {joint.name} without ending there; "
+        f"if they are connected, state two members"
+        for member in members
+        for joint in _between(by_x, place[member.start], place[member.end])
+    ]
+
+
+def _between(by_x: list[tuple[float, float, Joint]], start: Joint, end: Joint) -> list[Joint]:
+    from bisect import bisect_left, bisect_right  # noqa: PLC0415 - only used here
+
+    ax, ay, bx, by = float(start.x), float(start.y), float(end.x), float(end.y)
+    slack = 1e-9 * (abs(ax) + abs(ay) + abs(bx) + abs(by))
+    low = bisect_left(by_x, min(ax, bx) - slack, key=lambda item: item[0])
+    high = bisect_right(by_x, max(ax, bx) + slack, key=lambda item: item[0])
+    found = []
+    for x, y, joint in by_x[low:high]:
+        if joint is start or joint is end or not min(ay, by) - slack <= y <= max(ay, by) + slack:
+            continue
+        if abs((x - ax) * (by - ay) - (y - ay) * (bx - ax)) > slack * (abs(bx - ax) + abs(by - ay)):
+            continue
+        dx, dy = end.x - start.x, end.y - start.y
+        along = (joint.x - start.x) * dx + (joint.y - start.y) * dy
+        if (joint.x - start.x) * dy == (joint.y - start.y) * dx and ZERO < along < dx * dx + dy * dy:
+            found.append(joint)
+    return found
