@@ -1,0 +1,315 @@
+"""Both routes together: what was asked for, derived by hand, checked by stiffness, judged.
+
+A disagreement is a verdict, never an exception: the caller, the sheet and the exit code all see it.
+"""
+
+from __future__ import annotations
+
+import math
+import sys
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass
+from typing import Literal
+
+from trusscalc import stiffness
+from trusscalc.errors import InputError
+from trusscalc.exact import ONE, ZERO, Exact
+from trusscalc.loads import LoadCase
+from trusscalc.statics import matrix
+from trusscalc.statics.cuts import Structure, structure_of
+from trusscalc.statics.plan import plan
+from trusscalc.statics.steps import Step, section_letter, write_step
+from trusscalc.truss import Truss
+
+Verdict = Literal["agrees", "differs", "undecided"]
+Sense = Literal["T", "C", "0"]
+
+TOLERANCE = 1e-9
+"""Share of the largest force within which two routes agree: what floats of a well-conditioned truss reach."""
+WIDEST_TOLERANCE = 1e-6
+"""Beyond this share the numeric route is too ill-conditioned to judge anything."""
+
+
+@dataclass(frozen=True, slots=True)
+class ForceCheck:
+    """One member force or reaction, by both routes.
+
+    Attributes
+    ----------
+    name : str
+        Member as the truss spells it, or reaction.
+    exact : Exact or None
+        By hand, tension (or along the written direction) positive; may hold symbols. None: statics does not
+        decide it.
+    decimal : float or None
+        The nearest float, symbols at their values.
+    sense : str or None
+        ``T``, ``C`` or ``0``; None for a reaction's or an undecided member's.
+    stiffness : float or None
+        By the numeric route.
+    difference : float or None
+        decimal - stiffness.
+    verdict : str
+        ``agrees``, ``differs`` or ``undecided``.
+    reason : str
+        Why it is undecided or differs, else ''.
+    steps : tuple of int
+        All steps the value rests on, the solving one last.
+    """
+
+    name: str
+    exact: Exact | None
+    decimal: float | None
+    sense: Sense | None
+    stiffness: float | None
+    difference: float | None
+    verdict: Verdict
+    reason: str
+    steps: tuple[int, ...]
+
+    @property
+    def exactness(self) -> str:
+        """``exact``, or ``angle rounded`` when an angle that is no surd was rounded on the way in."""
+        return "angle rounded" if self.exact is not None and self.exact.rounded else "exact"
+
+
+@dataclass(frozen=True, slots=True)
+class Statics:
+    """The count and the rank: joints, members, reactions, rank of the equilibrium matrix, and what follows."""
+
+    joints: int
+    members: int
+    reactions: int
+    rank: int
+    stable: bool
+    determinate: bool
+
+
+@dataclass(frozen=True, slots=True)
+class MemberCheck:
+    """The result of a check.
+
+    Attributes
+    ----------
+    truss, case
+        What was checked.
+    statics : Statics
+        Count and rank.
+    members : dict of str to ForceCheck
+        What was asked for, in the order asked.
+    reactions : dict of str to ForceCheck
+        All reactions.
+    steps : tuple of Step
+        The derivation, every step only after what it uses.
+    residuals : dict of str to (Exact, Exact)
+        Load plus bar forces at every joint where they are not exactly zero; empty when all is well.
+    largest_force : float
+        Largest size of any member force, reaction or load by the numeric route or by hand.
+    tolerance : float
+        Share of the largest force up to which the routes agree.
+    condition : float
+        Condition estimate of the numeric route.
+    stiffness_residual : float
+        Largest joint imbalance of the numeric route over the largest force.
+    agreed : bool
+        True only if every member asked for, every reaction and every joint agree.
+    """
+
+    truss: Truss
+    case: LoadCase
+    statics: Statics
+    members: Mapping[str, ForceCheck]
+    reactions: Mapping[str, ForceCheck]
+    steps: tuple[Step, ...]
+    residuals: Mapping[str, tuple[Exact, Exact]]
+    largest_force: float
+    tolerance: float
+    condition: float
+    stiffness_residual: float
+    agreed: bool
+    zero_members: tuple[str, ...] = ()
+
+
+def check_members(truss: Truss, case: LoadCase, members: Iterable[str] | Literal["all"]) -> MemberCheck:
+    """Return the forces of chosen members by hand methods, each beside an independent stiffness value.
+
+    Parameters
+    ----------
+    truss : Truss
+        The truss.
+    case : LoadCase
+        Its loads.
+    members : iterable of str, or "all"
+        Member names, ends in either order; duplicates count once.
+
+    Raises
+    ------
+    UnknownNameError
+        For a member that is not there.
+    InputError
+        For loads on joints that are not there, or nothing asked for.
+    UnstableTrussError
+        When the truss cannot resist every load.
+    NoCutError
+        When a member cannot be reached by equations with one unknown.
+
+    Examples
+    --------
+    >>> from trusscalc.truss import Truss
+    >>> truss = Truss({"A": (0, 0), "B": (4, 0), "C": (2, 1)}, ["A-B", "A-C", "B-C"], {"A": "pin", "B": "roller"})
+    >>> check = check_members(truss, LoadCase("dead", {"C": (0, -2)}), ["C-A"])
+    >>> check.members["A-C"].exact, check.members["A-C"].sense, check.agreed
+    (Exact('-sqrt(5)'), 'C', True)
+    """
+    faults = case.faults(truss)
+    if faults:
+        raise InputError(faults)
+    wanted = _wanted(truss, members)
+    equilibrium = matrix.solve(truss, case)
+    structure = structure_of(truss, case)
+    decided = [name for name in wanted if name in equilibrium.tensions]
+    steps, tensions = _derivation(structure, equilibrium, decided)
+    numeric = stiffness.solve(truss, case)
+    values = {**numeric.reactions, **stiffness.member_forces(truss, case)}
+    judge = _Judge(case, structure, equilibrium, steps, tensions, values, numeric.condition)
+    checked = {name: judge.verdict(name) for name in wanted}
+    reactions = {link.name: judge.verdict(link.name) for link in truss.links}
+    residuals = _residuals(equilibrium, case, tensions)
+    agreed = not residuals and all(item.verdict == "agrees" for item in (*checked.values(), *reactions.values()))
+    determinate = equilibrium.degree == 0
+    counts = (len(truss.joints), len(truss.members), len(truss.links), equilibrium.rank)
+    return MemberCheck(
+        truss=truss,
+        case=case,
+        statics=Statics(*counts, stable=True, determinate=determinate),
+        members=checked,
+        reactions=reactions,
+        steps=steps,
+        residuals=residuals,
+        largest_force=judge.largest,
+        tolerance=judge.tolerance,
+        condition=numeric.condition,
+        stiffness_residual=numeric.residual,
+        agreed=agreed,
+        zero_members=tuple(
+            member.name for member in truss.members if equilibrium.tensions.get(member.name, ONE) == ZERO
+        ),
+    )
+
+
+def _wanted(truss: Truss, members: Iterable[str] | Literal["all"]) -> tuple[str, ...]:
+    if isinstance(members, str):
+        if members == "all":
+            return tuple(member.name for member in truss.members)
+        members = [members]
+    by_ends = {frozenset((member.start, member.end)): member.name for member in truss.members}
+    found = []
+    for name in members:
+        ends = frozenset(part.strip() for part in name.split("-"))
+        found.append(by_ends[ends] if ends in by_ends else truss.member(name).name)
+    if not found:
+        message = "no member was asked for; name some, or say all"
+        raise InputError(message)
+    return tuple(dict.fromkeys(found))
+
+
+def _derivation(
+    structure: Structure, equilibrium: matrix.Equilibrium, wanted: list[str]
+) -> tuple[tuple[Step, ...], dict[str, Exact]]:
+    """Write the planned steps one after the other; a value enters an equation only after its own step."""
+    steps: list[Step] = []
+    tensions: dict[str, Exact] = {}
+    letters: dict[tuple[str, ...], str] = {}
+    for number, planned in enumerate(plan(structure, equilibrium, wanted), 1):
+        letter = ""
+        for cut, _ in planned.bodies:
+            if cut.kind == "section":
+                letter = letters.setdefault(cut.bars, section_letter(len(letters)))
+        step, found = write_step(structure, number, planned.bodies, planned.solves, tensions, letter)
+        steps.append(step)
+        tensions.update(found)
+    return tuple(steps), tensions
+
+
+def _residuals(
+    equilibrium: matrix.Equilibrium, case: LoadCase, tensions: Mapping[str, Exact]
+) -> dict[str, tuple[Exact, Exact]]:
+    """Return joints out of balance when the hand values replace those of the whole solution."""
+    everything = {**equilibrium.tensions, **tensions}
+    if len(everything) < len(equilibrium.bars):
+        return {}  # an indeterminate truss: single joints cannot be closed without the undecided bars
+    residuals = matrix.joint_residuals(equilibrium.bars, case, everything)
+    return {joint: sums for joint, sums in residuals.items() if sums[0] or sums[1]}
+
+
+class _Judge:
+    """Turns a name into its ForceCheck; holds what all verdicts share."""
+
+    def __init__(
+        self,
+        case: LoadCase,
+        structure: Structure,
+        equilibrium: matrix.Equilibrium,
+        steps: tuple[Step, ...],
+        tensions: Mapping[str, Exact],
+        numeric: Mapping[str, float],
+        condition: float,
+    ) -> None:
+        self.case = case
+        self.structure = structure
+        self.equilibrium = equilibrium
+        self.numeric = numeric
+        self.by_hand = {name: result for step in steps for name, result in step.results.items()}
+        self.tensions = tensions
+        self.rests_on = _foundations(steps)
+        bound = 10 * sys.float_info.epsilon * condition
+        self.tolerance = max(TOLERANCE, bound) if math.isfinite(bound) else math.inf
+        loads = [abs(part) for pair in case.as_floats().values() for part in pair]
+        self.largest = max([abs(value) for value in numeric.values()] + loads, default=0.0)
+
+    def verdict(self, name: str) -> ForceCheck:
+        steps = self.rests_on.get(name, ())
+        numeric = self.numeric.get(name)
+        if name not in self.by_hand:
+            reason = "statics alone does not decide it: the truss is statically indeterminate there"
+            return ForceCheck(name, None, None, None, numeric, None, "undecided", reason, steps)
+        value = self.by_hand[name]
+        at_values = self.case.value(value)
+        decimal = float(at_values)
+        sense: Sense | None = None
+        if not self.structure.bars[name].is_link:
+            sense = ("0", "T", "C")[at_values.sign()]
+        if numeric is None:
+            reason = "the numeric route gives no value"
+            return ForceCheck(name, value, decimal, sense, None, None, "undecided", reason, steps)
+        difference = decimal - numeric
+        verdict, reason = self._judgement(name, difference)
+        return ForceCheck(name, value, decimal, sense, numeric, difference, verdict, reason, steps)
+
+    def _judgement(self, name: str, difference: float) -> tuple[Verdict, str]:
+        if name in self.equilibrium.tensions and self.tensions[name] != self.equilibrium.tensions[name]:
+            return "differs", "the step's value differs from the exact solution of all joint equations"
+        if self.tolerance > WIDEST_TOLERANCE:
+            return "undecided", (
+                f"the geometry is so close to a critical form that the numeric route is good for no more than "
+                f"{self.tolerance:.0e} of the largest force"
+            )
+        # written so that a difference that is not a number never passes
+        if abs(difference) <= self.tolerance * self.largest:
+            return "agrees", ""
+        return "differs", "the two routes differ by more than the tolerance"
+
+
+def _foundations(steps: tuple[Step, ...]) -> dict[str, tuple[int, ...]]:
+    """Return for everything solved the numbers of all steps it rests on, the solving one last."""
+    solved_in: dict[str, int] = {}
+    below: dict[int, set[int]] = {}
+    for step in steps:
+        own: set[int] = set()
+        for name in step.uses:
+            number = solved_in[name]
+            own |= below[number] | {number}
+        below[step.number] = own
+        for name in step.solves:
+            solved_in[name] = step.number
+    return {name: (*sorted(below[number]), number) for name, number in solved_in.items()}
