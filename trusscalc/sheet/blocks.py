@@ -11,6 +11,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 from trusscalc.exact import Exact
+from trusscalc.sheet.marks import Figure
 
 # --- mathematics ------------------------------------------------------------------------------------------
 
@@ -135,3 +136,29 @@ class TitleBlock:
     """The title block: (field, entry) pairs, entries possibly empty, never absent."""
 
     fields: tuple[tuple[str, str], ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Picture:
+    """A figure on the sheet; several side by side when more than one."""
+
+    figures: tuple[Figure, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Code:
+    """Program text of a notebook: a cell that can be run again; other renderers print it or leave it out."""
+
+    source: str
+    purpose: str
+
+
+Block = Heading | Paragraph | Items | Lines | Table | TitleBlock | Picture | Code
+
+
+@dataclass(frozen=True, slots=True)
+class SheetContent:
+    """Everything on a sheet, in order."""
+
+    title: str
+    blocks: tuple[Block, ...]
