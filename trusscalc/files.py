@@ -1,0 +1,422 @@
+"""Truss files: TOML text to records and back.
+
+A truss file is untrusted text: nothing in it is evaluated, and every fault found is reported together, each
+in one line with the line number where that is certain. What is written is read back before it is handed out.
+"""
+
+from __future__ import annotations
+
+import json
+import os
+import re
+import warnings
+from pathlib import Path
+from typing import Any, Final
+
+from trusscalc.errors import FileFormatError, InexactNumberError, InputError, TrusscalcWarning
+from trusscalc.exact import ONE, Exact
+from trusscalc.exacttext import number, to_text
+from trusscalc.filetext import LARGEST_FILE, data_of, faulty, one_line
+from trusscalc.loads import Combination, LoadCase
+from trusscalc.project import LINES, Project, line_fault
+from trusscalc.replacefile import replace_file
+from trusscalc.truss import Support, Truss, did_you_mean
+from trusscalc.trussfile import TrussFile, case_faults, combination_faults, name_faults
+
+FORMAT: Final = 1
+MOST: Final = {
+    "joints": 10_000,
+    "members": 40_000,
+    "links": 10_000,
+    "symbols": 40,
+    "loads": 100_000,
+    "cases": 1_000,
+    "combinations": 1_000,
+}
+WIDEST_LINE: Final = 100
+
+TABLES: Final = ("units", "joints", "members", "supports", "symbols", "cases", "combinations", "behaviour", "project")
+KEYS: Final = {
+    "": ("format", "title", *TABLES),
+    "units": ("length", "force"),
+    "behaviour": ("tension_only", "no_uplift"),
+    "project": (*LINES, "names"),
+}
+_BARE_KEY: Final = re.compile(r"[A-Za-z0-9_-]+")
+
+
+# --- reading ----------------------------------------------------------------------------------------------
+
+
+def read(path: str | os.PathLike[str]) -> TrussFile:
+    """Return what a truss file states.
+
+    Parameters
+    ----------
+    path : path
+        A TOML file, see ``reads``.
+
+    Raises
+    ------
+    FileFormatError
+        When the file cannot be read or states something wrong; with every fault found in ``problems``.
+    """
+    source = one_line(os.fspath(path))
+    try:
+        content = _content(Path(path))
+        text = content.decode("utf-8-sig")
+    except UnicodeDecodeError as problem:
+        line = problem.object.count(b"\n", 0, problem.start) + 1
+        message = f"line {line}: is not UTF-8 text; save the file as UTF-8"
+    except FileNotFoundError:
+        message = "there is no such file; check the name and the folder"
+    except (OSError, ValueError) as problem:
+        message = f"cannot be read: {one_line(getattr(problem, 'strerror', None) or str(problem))}"
+    else:
+        return reads(text, source)
+    raise FileFormatError(message, source=source)
+
+
+def _content(path: Path) -> bytes:
+    if path.exists() and not path.is_file():
+        message = "is not an ordinary file; name the truss file itself"
+        raise ValueError(message)
+    with path.open("rb") as file:
+        return file.read(LARGEST_FILE + 1)
+
+
+def reads(text: str, source: str = "") -> TrussFile:
+    """Return what the text of a truss file states.
+
+    Parameters
+    ----------
+    text : str
+        TOML 1.0, ``format = 1``.
+    source : str
+        Where the text is from, for messages.
+
+    Raises
+    ------
+    FileFormatError
+        With every fault found in ``problems``: each names the source, the line where that is certain, the
+        key, what is wrong and what to do.
+
+    Warns
+    -----
+    TrusscalcWarning
+        As ``Truss`` does.
+
+    Examples
+    --------
+    >>> stated = reads('''
+    ... format = 1
+    ... [joints]
+    ... A = [0, 0]
+    ... B = [4, 0]
+    ... C = [2, "2*sqrt(3)"]
+    ... [members]
+    ... rafters = ["A-C", "B-C"]
+    ... tie = ["A-B"]
+    ... [supports]
+    ... A = "pin"
+    ... B = "roller"
+    ... [cases.snow]
+    ... C = [0, -12]
+    ... ''')
+    >>> [member.name for member in stated.truss.members], stated.case("snow").loads[0].joint
+    (['A-C', 'B-C', 'A-B'], 'C')
+    """
+    data = data_of(text, source)
+    problems: list[str] = []
+    _check_format(data, source, problems)
+    _unknown_keys(data, "", problems)
+    tables = {name: _table(data, name, problems) for name in TABLES}
+    for name in ("units", "behaviour", "project"):
+        _unknown_keys(tables[name], name, problems)
+    _check_counts(tables, problems)
+    if problems and any("too many" in problem for problem in problems):
+        raise faulty(problems, text, source)
+    truss = _truss(data, tables, problems)
+    cases = _cases(tables["cases"], _symbols(tables["symbols"], problems), problems)
+    combinations = _combinations(tables["combinations"], problems)
+    project = _project(tables["project"], problems)
+    problems += case_faults(list(tables["joints"]), cases)
+    problems += combination_faults(list(tables["cases"]), combinations)
+    if truss is not None and project is not None:
+        problems += name_faults(truss, project)
+        if not problems:
+            return TrussFile(truss, tuple(cases), tuple(combinations), project)
+    raise faulty(problems, text, source)
+
+
+def _check_format(data: dict[str, Any], source: str, problems: list[str]) -> None:
+    if "format" not in data:
+        problems.append("format: is missing; write format = 1 at the top")
+    elif type(data["format"]) is not int or data["format"] != FORMAT:
+        shown = one_line(repr(data["format"]))[:40]
+        message = f"format: {shown} is not known to this version, which reads format = {FORMAT}"
+        raise FileFormatError(message, source=source)
+
+
+def _unknown_keys(table: dict[str, Any], name: str, problems: list[str]) -> None:
+    known = KEYS[name]
+    problems += [
+        f"{f'[{name}] ' if name else ''}{key}: unknown key{did_you_mean(key, known)}"
+        for key in table
+        if key not in known
+    ]
+
+
+def _table(data: dict[str, Any], name: str, problems: list[str]) -> dict[str, Any]:
+    table = data.get(name, {})
+    if isinstance(table, dict):
+        return table
+    problems.append(f"{name}: a table is needed; write [{name}] on a line of its own and its entries below")
+    return {}
+
+
+def _check_counts(tables: dict[str, dict[str, Any]], problems: list[str]) -> None:
+    def inner(table: dict[str, Any]) -> int:
+        return sum(len(item) for item in table.values() if isinstance(item, (dict, list)))
+
+    counts = {
+        "joints": len(tables["joints"]),
+        "members": inner(tables["members"]),
+        "links": len(tables["supports"]) + inner(tables["supports"]),
+        "symbols": len(tables["symbols"]),
+        "loads": inner(tables["cases"]) + inner(tables["combinations"]),
+        "cases": len(tables["cases"]),
+        "combinations": len(tables["combinations"]),
+    }
+    problems += [
+        f"too many {name}: {count:,}, and at most {MOST[name]:,} are read"
+        for name, count in counts.items()
+        if count > MOST[name]
+    ]
+
+
+def _truss(data: dict[str, Any], tables: dict[str, dict[str, Any]], problems: list[str]) -> Truss | None:
+    title = data.get("title", "")
+    if fault := line_fault(title):
+        problems.append(f"title: {fault}")
+    units = {}
+    for key, usual in (("length", "m"), ("force", "kN")):
+        units[key] = tables["units"].get(key, usual)
+        if type(units[key]) is not str:
+            problems.append(f'[units] {key}: text is needed, in quotes, such as "{usual}"')
+            units[key] = usual
+    behaviour = {}
+    for key in KEYS["behaviour"]:
+        names = tables["behaviour"].get(key, [])
+        if not isinstance(names, list) or not all(type(name) is str for name in names):
+            problems.append(f"[behaviour] {key}: a list of names is needed")
+            names = []
+        behaviour[key] = names
+    problems += [f"[members] {group}: {fault}" for group in tables["members"] if (fault := line_fault(group))]
+    try:
+        return Truss(
+            tables["joints"],
+            tables["members"],
+            tables["supports"],
+            title=title,
+            length=units["length"],
+            force=units["force"],
+            tension_only=behaviour["tension_only"],
+            no_uplift=behaviour["no_uplift"],
+        )
+    except InputError as fault:
+        problems += fault.problems
+    return None
+
+
+def _symbols(table: dict[str, Any], problems: list[str]) -> dict[str, Exact]:
+    """Return the symbols; a wrong value counts as 1 while the rest of the file is looked through."""
+    values: dict[str, Exact] = {}
+    for name, value in table.items():
+        try:
+            values |= dict(LoadCase("", {}, symbols={name: value}).symbols)
+        except InputError as fault:
+            problems += fault.problems
+            if name.isidentifier():
+                values[name] = ONE
+    return values
+
+
+def _cases(tables: dict[str, Any], symbols: dict[str, Exact], problems: list[str]) -> list[LoadCase]:
+    cases = []
+    for name, table in tables.items():
+        if fault := _name_fault(name):
+            problems.append(f"[cases] {name}: {fault}")
+        if not isinstance(table, dict):
+            problems.append(f"[cases] {name}: a table is needed, such as [cases.dead] with L1 = [0, -120] below")
+            continue
+        try:
+            cases.append(LoadCase(name, table, symbols=symbols))
+        except InputError as fault:
+            problems += fault.problems
+            # loads on joints that are not there are still to be found
+            cases.append(LoadCase(name, dict.fromkeys(table, (0, 0))))
+    return cases
+
+
+def _combinations(tables: dict[str, Any], problems: list[str]) -> list[Combination]:
+    combinations = []
+    for name, table in tables.items():
+        if fault := _name_fault(name):
+            problems.append(f"[combinations] {name}: {fault}")
+        if not isinstance(table, dict) or not table:
+            problems.append(f'[combinations] {name}: a table of case = factor is needed, such as dead = "1.2"')
+            continue
+        factors = []
+        for case, factor in table.items():
+            try:
+                factors.append((case, number(factor)))
+            except InexactNumberError as fault:
+                problems.append(f"[combinations.{name}] {case}: {fault}")
+                factors.append((case, ONE))
+        combinations.append(Combination(name, tuple(factors)))
+    return combinations
+
+
+def _project(table: dict[str, Any], problems: list[str]) -> Project | None:
+    try:
+        return Project(**{key: value for key, value in table.items() if key in KEYS["project"]})
+    except InputError as fault:
+        problems += fault.problems
+    return None
+
+
+def _name_fault(name: str) -> str | None:
+    return line_fault(name) if name.strip() else "a name is needed"
+
+
+# --- writing ----------------------------------------------------------------------------------------------
+
+UNGROUPED: Final = "members"
+ROUNDED_MARK: Final = " + 0*sin(1)"
+ROUNDED_NOTE: Final = (
+    f"# a number ending in {ROUNDED_MARK.strip()} holds an angle that was rounded when it was first read\n"
+)
+
+
+def writes(truss_file: TrussFile) -> str:
+    """Return the text of a truss file that reads back to an equal TrussFile.
+
+    Parameters
+    ----------
+    truss_file : TrussFile
+        Members without a group are written as one group, ``members``.
+
+    Raises
+    ------
+    InputError
+        When it holds something a truss file cannot hold: a number longer than the reader takes, say.
+    """
+    text = "\n".join(_section(name, entries) for name, entries in _sections(truss_file) if _is_written(name, entries))
+    if ROUNDED_MARK in text:
+        text = ROUNDED_NOTE + text
+    _prove(text, truss_file)
+    return text
+
+
+def write(truss_file: TrussFile, path: str | os.PathLike[str]) -> None:
+    """Write a truss file; the file appears complete or not at all.
+
+    Parameters
+    ----------
+    truss_file : TrussFile
+        What to write.
+    path : path
+        Where; a file already there is replaced.
+
+    Raises
+    ------
+    InputError
+        As ``writes``; nothing is written then.
+    OSError
+        When the place cannot be written to.
+    """
+    replace_file(path, writes(truss_file).encode())
+
+
+def _sections(truss_file: TrussFile) -> list[tuple[str, dict[str, Any]]]:
+    truss, project = truss_file.truss, truss_file.project
+    groups: dict[str, Any] = {}
+    for member in truss.members:
+        groups.setdefault(member.group or UNGROUPED, []).append(member.name)
+    return [
+        ("", {"format": FORMAT, "title": truss.title}),
+        ("units", {"length": truss.length, "force": truss.force}),
+        ("joints", {joint.name: [joint.x, joint.y] for joint in truss.joints}),
+        ("members", groups),
+        ("supports", {support.joint: _stated(support) for support in truss.supports}),
+        ("symbols", dict(truss_file.cases[0].symbols) if truss_file.cases else {}),
+        *(
+            (f"cases.{_key(case.name)}", {load.joint: [load.fx, load.fy] for load in case.loads})
+            for case in truss_file.cases
+        ),
+        *((f"combinations.{_key(each.name)}", dict(each.factors)) for each in truss_file.combinations),
+        ("behaviour", {key: list(getattr(truss, key)) for key in KEYS["behaviour"]}),
+        ("project", {key: getattr(project, key) for key in LINES if getattr(project, key)}),
+        ("project.names", dict(project.names)),
+    ]
+
+
+def _is_written(name: str, entries: dict[str, Any]) -> bool:
+    return name.startswith("cases.") or any(entry != [] for entry in entries.values())
+
+
+def _stated(support: Support) -> Any:
+    if support.kind != "links":
+        return support.kind
+    links = [{"reaction": [link.dx, link.dy]} for link in support.links]
+    return links[0] if support.links[0].name == f"{support.joint}.r" else links
+
+
+def _section(name: str, entries: dict[str, Any]) -> str:
+    lines = [f"[{name}]"] if name else []
+    for key, value in entries.items():
+        line = f"{_key(key)} = {_value(value)}"
+        if len(line) > WIDEST_LINE and isinstance(value, list):
+            line = f"{_key(key)} = [\n{''.join(f'    {_value(item)},{chr(10)}' for item in value)}]"
+        lines.append(line)
+    return "\n".join(lines) + "\n"
+
+
+def _key(name: str) -> str:
+    return name if _BARE_KEY.fullmatch(name) else _value(name)
+
+
+def _value(value: Any) -> str:
+    if isinstance(value, Exact):
+        text = to_text(value) + (ROUNDED_MARK if value.rounded else "")
+        return text if re.fullmatch(r"-?[0-9]{1,15}", text) else f'"{text}"'
+    if isinstance(value, list):
+        return f"[{', '.join(map(_value, value))}]"
+    if isinstance(value, dict):
+        return f"{{ {', '.join(f'{_key(key)} = {_value(item)}' for key, item in value.items())} }}"
+    if isinstance(value, int):
+        return str(value)
+    return json.dumps(value, ensure_ascii=False).replace("\x7f", "\\u007f")
+
+
+def _prove(text: str, truss_file: TrussFile) -> None:
+    """Read the text back: what cannot be read again must not be filed."""
+    try:
+        with warnings.catch_warnings():
+            warnings.simplefilter("ignore", TrusscalcWarning)
+            again = reads(text)
+    except FileFormatError as problem:
+        raise InputError([f"cannot be written to a truss file: {fault}" for fault in problem.problems]) from None
+    if _compared(again) != _compared(truss_file):
+        message = "cannot be written to a truss file: it would not read back the same"
+        raise InputError(message)
+
+
+def _compared(truss_file: TrussFile) -> tuple[object, ...]:
+    truss = truss_file.truss
+    groups = [member.group or UNGROUPED for member in truss.members]
+    names = [member.name for member in truss.members]
+    behaviour = (truss.tension_only, truss.no_uplift)
+    head = (truss.title, truss.length, truss.force, truss.joints, names, groups, truss.supports, behaviour)
+    return (*head, truss_file.cases, truss_file.combinations, truss_file.project)
