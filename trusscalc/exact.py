@@ -543,15 +543,21 @@ def _outermost_root(value: Exact) -> int:
     return -masks.bit_length() if masks else _a_prime_of(next(n for n, _ in value.terms if n > 1))
 
 
+@lru_cache(maxsize=4096)
+def prime_factors(n: int) -> tuple[int, ...]:
+    """Return the primes of a number without square factor, ascending where small."""
+    found = []
+    while n > 1:
+        found.append(_a_prime_of(n))
+        n //= found[-1]
+    return tuple(found)
+
+
 def _group(value: Exact) -> set[int]:
     """Return the primes (and, as -1 - index, the nested roots) that value's terms are made of."""
     found: set[int] = set()
     for n, mask in value.terms:
-        rest = n
-        while rest > 1:
-            prime = _a_prime_of(rest)
-            found.add(prime)
-            rest //= prime
+        found |= set(prime_factors(n))
         found |= {-1 - index for index in range(mask.bit_length()) if mask >> index & 1}
     return found
 

@@ -168,7 +168,7 @@ def check_members(truss: Truss, case: LoadCase, members: Iterable[str] | Literal
     equilibrium = matrix.solve(truss, case)
     structure = structure_of(truss, case)
     decided = [name for name in wanted if name in equilibrium.tensions]
-    steps, tensions = _derivation(structure, equilibrium, decided)
+    steps, tensions = _derivation(structure, equilibrium, decided, case)
     numeric = stiffness.solve(truss, case)
     values = {**numeric.reactions, **stiffness.member_forces(truss, case)}
     judge = _Judge(case, structure, equilibrium, steps, tensions, values, numeric.condition)
@@ -214,13 +214,13 @@ def _wanted(truss: Truss, members: Iterable[str] | Literal["all"]) -> tuple[str,
 
 
 def _derivation(
-    structure: Structure, equilibrium: matrix.Equilibrium, wanted: list[str]
+    structure: Structure, equilibrium: matrix.Equilibrium, wanted: list[str], case: LoadCase
 ) -> tuple[tuple[Step, ...], dict[str, Exact]]:
     """Write the planned steps one after the other; a value enters an equation only after its own step."""
     steps: list[Step] = []
     tensions: dict[str, Exact] = {}
     letters: dict[tuple[str, ...], str] = {}
-    for number, planned in enumerate(plan(structure, equilibrium, wanted), 1):
+    for number, planned in enumerate(plan(structure, equilibrium, wanted, case.as_floats()), 1):
         letter = ""
         for cut, _ in planned.bodies:
             if cut.kind == "section":

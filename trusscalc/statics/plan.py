@@ -1,13 +1,46 @@
-"""Temporary: joints only. Being replaced by the planner proper; same interface."""
+"""The order of steps that reaches the reactions and the wanted members.
+
+Reactions come first, from the whole truss or its hinged parts; then each member on its own, from loads and
+reactions. Proposed are the bodies of ``bodies``; where those do not reach a member, ``bridges`` finds every
+bar that one equation can give, whatever its body looks like.
+"""
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from trusscalc.errors import NoCutError
-from trusscalc.statics.cuts import SUM_X, SUM_Y, About, Cut, Structure, about_joint, across, bar_lever, cut_of
+from trusscalc.statics.bodies import (
+    Body,
+    Window,
+    bodies_in,
+    boundary,
+    everything,
+    hinge_bodies,
+    whole_window,
+    window_round,
+)
+from trusscalc.statics.bridges import bridge_bodies
+from trusscalc.statics.cuts import (
+    SUM_X,
+    SUM_Y,
+    About,
+    Cut,
+    Structure,
+    about_joint,
+    across,
+    cut_of,
+    meeting_point,
+)
+from trusscalc.statics.derivations import Derivations
+from trusscalc.statics.incidence import Layout, layout_of
 from trusscalc.statics.matrix import Equilibrium
+from trusscalc.statics.prices import Candidate, Prices, all_candidates
+
+SMALL_TRUSS = 150
+"""Up to so many joints the whole truss is searched at once."""
+WINDOW_JOINTS = 28
 
 
 @dataclass(frozen=True, slots=True)
@@ -18,40 +51,155 @@ class PlannedStep:
     solves: tuple[str, ...]
 
 
-def plan(structure: Structure, equilibrium: Equilibrium, wanted: Sequence[str]) -> tuple[PlannedStep, ...]:
-    """Return the steps, in order, that reach every reaction and every wanted member."""
-    del equilibrium
-    steps = []
-    whole = cut_of(structure, structure.joints)
-    known: set[str] = set()
-    for link in whole.bars:
-        for about in (SUM_X, SUM_Y, *(about_joint(structure, n) for n in structure.joints)):
-            live = [n for n in whole.bars if bar_lever(structure, structure.bars[n], frozenset(whole.kept), about)]
-            if live == [link] or (set(live) - known) == {link}:
-                steps.append(PlannedStep(((whole, about),), (link,)))
-                known.add(link)
-                break
-    progress = True
-    while progress and not set(wanted) <= known:
-        progress = False
-        for joint in structure.joints:
-            unknown = [n for n in structure.bars_at[joint] if n not in known]
-            if not 1 <= len(unknown) <= 2:
+def plan(
+    structure: Structure,
+    equilibrium: Equilibrium,
+    wanted: Sequence[str],
+    loads: Mapping[str, tuple[float, float]],
+) -> tuple[PlannedStep, ...]:
+    """Return the steps, in order, that reach every reaction statics decides and every wanted member.
+
+    Parameters
+    ----------
+    structure : Structure
+        Truss and loads.
+    equilibrium : Equilibrium
+        Says which bars statics decides, and which forces are exactly zero.
+    wanted : sequence of str
+        Member names, each decided by statics.
+    loads : mapping of str to (float, float)
+        Loads at the symbols' values; they only enter prices.
+
+    Raises
+    ------
+    NoCutError
+        Naming the members that no equation with one unknown reaches.
+    """
+    search = _Search(structure, equilibrium, loads)
+    return search.plan(wanted)
+
+
+class _Search:
+    """One search: the layout, the prices and the equations already priced."""
+
+    def __init__(
+        self, structure: Structure, equilibrium: Equilibrium, loads: Mapping[str, tuple[float, float]]
+    ) -> None:
+        self.structure = structure
+        self.layout = layout_of(structure, dict(loads))
+        self.index = {name: place for place, name in enumerate(self.layout.bars)}
+        zero = sum(1 << self.index[name] for name, tension in equilibrium.tensions.items() if not tension)
+        self.decided = sum(1 << self.index[name] for name in equilibrium.tensions)
+        self.prices = Prices(self.layout, zero)
+        self.priced: dict[int, list[Candidate]] = {}
+
+    def plan(self, wanted: Sequence[str]) -> tuple[PlannedStep, ...]:
+        layout = self.layout
+        links = [bar for bar in range(len(layout.bars)) if layout.ends[bar][1] < 0 and self.decided >> bar & 1]
+        reactions = self._reactions(links)
+        targets = [self.index[name] for name in wanted]
+        order: list[tuple[int, Candidate]] = [
+            (bar, reactions.chosen[bar].candidate) for bar in reactions.order(links_first(links, reactions.solved))
+        ]
+        given = sum(1 << bar for bar, _ in order)
+        tables: dict[Window, Derivations] = {}
+        lost = []
+        goals = [bar for bar in links if not given >> bar & 1] + targets
+        for bar in dict.fromkeys(goals):
+            if given >> bar & 1:
                 continue
-            cut = cut_of(structure, [joint])
-            for name in unknown:
-                others = [n for n in unknown if n != name and n not in known]
-                for about in [across(structure.bars[n]) for n in others] or [SUM_X, SUM_Y]:
-                    if others and not structure.bars[others[0]].dy:
-                        about = SUM_Y
-                    if others and not structure.bars[others[0]].dx:
-                        about = SUM_X
-                    if bar_lever(structure, structure.bars[name], {joint}, about):
-                        steps.append(PlannedStep(((cut, about),), (name,)))
-                        known.add(name)
-                        progress = True
-                        break
-    missing = [n for n in wanted if n not in known]
-    if missing:
-        raise NoCutError("cannot reach", members=missing)
-    return tuple(steps)
+            table = self._table_for(bar, given, tables)
+            if table is None:
+                lost.append(layout.bars[bar])
+                continue
+            for step in table.order([bar]):
+                if not any(step == done for done, _ in order):
+                    order.append((step, table.chosen[step].candidate))
+        if lost:
+            raise _unreachable(lost)
+        return tuple(self._step(bar, candidate) for bar, candidate in order)
+
+    # --- reactions --------------------------------------------------------------------------------------
+
+    def _reactions(self, links: list[int]) -> Derivations:
+        """Find the reactions from the whole truss, then from its hinged parts."""
+        layout = self.layout
+        table = Derivations(self.prices, 0)
+        whole = everything(layout)
+        table.propose(self._priced([Body(whole, boundary(layout, whole), "whole")]))
+        table.run()
+        if any(not table.solved >> bar & 1 for bar in links):
+            table.propose(self._priced(hinge_bodies(layout)))
+            table.run()
+        return table
+
+    # --- members ----------------------------------------------------------------------------------------
+
+    def _table_for(self, bar: int, given: int, tables: dict[Window, Derivations]) -> Derivations | None:
+        """Return a table that holds the bar: from a window round it, wider ones, and at last from bridges."""
+        layout = self.layout
+        size = WINDOW_JOINTS if len(layout.joints) > SMALL_TRUSS else len(layout.joints)
+        while True:
+            window = window_round(layout, bar, size) if size < len(layout.joints) else whole_window(layout)
+            if window not in tables:
+                table = Derivations(self.prices, given)
+                table.propose(self._priced(bodies_in(layout, window)))
+                table.run()
+                tables[window] = table
+            table = tables[window]
+            if table.solved >> bar & 1:
+                return table
+            if not window.far or size > SMALL_TRUSS:
+                return self._with_bridges(table, bar)
+            size *= 2
+
+    def _with_bridges(self, table: Derivations, bar: int) -> Derivations | None:
+        """Widen a table by every bar that one equation of any body gives, until it holds the bar."""
+        while not table.solved >> bar & 1:
+            before = table.solved
+            table.propose(self._priced(bridge_bodies(self.layout, table.given | table.solved, self.decided)))
+            table.run()
+            if table.solved == before:
+                return None
+        return table
+
+    def _priced(self, bodies: Sequence[Body]) -> list[Candidate]:
+        found: list[Candidate] = []
+        for body in bodies:
+            if body.kept not in self.priced:
+                self.priced[body.kept] = all_candidates(self.prices, [body])
+            found += self.priced[body.kept]
+        return found
+
+    # --- written exactly --------------------------------------------------------------------------------
+
+    def _step(self, bar: int, candidate: Candidate) -> PlannedStep:
+        layout = self.layout
+        cut = cut_of(self.structure, [layout.joints[j] for j in layout.bits(candidate.body.kept)])
+        return PlannedStep(((cut, self._about(candidate)),), (layout.bars[bar],))
+
+    def _about(self, candidate: Candidate) -> About:
+        kind, first, second = candidate.recipe
+        layout, structure = self.layout, self.structure
+        if kind == "axis":
+            return SUM_Y if first else SUM_X
+        if kind == "joint":
+            return about_joint(structure, layout.joints[first])
+        if kind == "across":
+            return across(structure.bars[layout.bars[first]])
+        place = meeting_point(structure, structure.bars[layout.bars[first]], structure.bars[layout.bars[second]])
+        assert place is not None  # noqa: S101 - parallels have the recipe "across"
+        return About("moment", *place)
+
+
+def links_first(links: list[int], solved: int) -> list[int]:
+    """Return the links that were found."""
+    return [bar for bar in links if solved >> bar & 1]
+
+
+def _unreachable(lost: list[str]) -> NoCutError:
+    message = (
+        f"no equation with a single unknown reaches {', '.join(lost[:12])}{' and others' if len(lost) > 12 else ''}: "  # noqa: PLR2004
+        "the truss is complex there, and a carried unknown would be needed, which is not supported yet"
+    )
+    return NoCutError(message, members=lost)

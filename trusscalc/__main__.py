@@ -1,0 +1,79 @@
+"""The command line: check a truss file, or write its calculation sheet.
+
+Exit codes: 0 all agree; 1 something disagrees or is undecided; 2 bad input or an unstable truss, told on
+stderr, and nothing written.
+"""
+
+from __future__ import annotations
+
+import argparse
+import json
+import sys
+import warnings
+from collections.abc import Sequence
+
+from trusscalc.errors import TrusscalcError, TrusscalcWarning
+
+AGREED, DISAGREED, REFUSED = 0, 1, 2
+
+
+def main(argv: Sequence[str] | None = None) -> int:
+    """Run one command and return its exit code."""
+    arguments = _parser().parse_args(argv)
+    with warnings.catch_warnings(record=True) as caught:
+        warnings.simplefilter("always", TrusscalcWarning)
+        try:
+            code = int(arguments.run(arguments))
+        except (TrusscalcError, OSError) as problem:
+            print(f"trusscalc: {problem}", file=sys.stderr)  # noqa: T201
+            code = REFUSED
+    for warning in caught:
+        if issubclass(warning.category, TrusscalcWarning):
+            print(f"trusscalc: warning: {warning.message}", file=sys.stderr)  # noqa: T201
+    return code
+
+
+def _parser() -> argparse.ArgumentParser:
+    parser = argparse.ArgumentParser(prog="trusscalc", description="Independent hand checks of truss member forces.")
+    commands = parser.add_subparsers(dest="command", required=True)
+    check = commands.add_parser("check", help="derive chosen members by hand methods and compare with stiffness")
+    sheet = commands.add_parser("sheet", help="write the calculation sheet of chosen members")
+    for command in (check, sheet):
+        command.add_argument("file", metavar="FILE.toml", help="the truss file")
+        command.add_argument("--case", required=True, help="a load case or a combination")
+        command.add_argument("--members", required=True, help="A-B,C-D or all")
+    check.add_argument("--json", action="store_true", help="print the whole result as JSON")
+    check.set_defaults(run=_check)
+    sheet.add_argument("--out", required=True, help="sheet.ipynb or sheet.txt")
+    sheet.set_defaults(run=_sheet)
+    return parser
+
+
+def _checked(arguments: argparse.Namespace):
+    from trusscalc.files import read  # noqa: PLC0415
+    from trusscalc.membercheck import check_members  # noqa: PLC0415
+
+    stated = read(arguments.file)
+    members = arguments.members.strip()
+    names = "all" if members == "all" else [name.strip() for name in members.split(",") if name.strip()]
+    return stated, check_members(stated.truss, stated.case(arguments.case), names)
+
+
+def _check(arguments: argparse.Namespace) -> int:
+    from trusscalc.report import check_data, verdict_lines  # noqa: PLC0415
+
+    _, check = _checked(arguments)
+    if arguments.json:
+        print(json.dumps(check_data(check), ensure_ascii=False, indent=1))  # noqa: T201
+    else:
+        print("\n".join(verdict_lines(check)))  # noqa: T201
+    return AGREED if check.agreed else DISAGREED
+
+
+def _sheet(arguments: argparse.Namespace) -> int:
+    del arguments
+    return REFUSED
+
+
+if __name__ == "__main__":
+    sys.exit(main())
