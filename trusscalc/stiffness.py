@@ -302,13 +302,10 @@ def _levels(bars: _Bars) -> Whole:
         neighbours[start].append(end)
         neighbours[end].append(start)
     level = np.full(bars.joints, -1, dtype=np.intp)
-    above = 0
     for seed in range(bars.joints):
         if level[seed] < 0:  # the first joint, or one of a part not joined to what went before
-            found = _levels_from_an_end(neighbours, seed)
-            for depth, joints in enumerate(found, above):
+            for depth, joints in enumerate(_levels_from_an_end(neighbours, seed)):
                 level[joints] = depth
-            above += len(found)
     return level
 
 
