@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from trusscalc.errors import InexactNumberError, InputError, UnknownNameError
 from trusscalc.exact import ZERO, Exact
 from trusscalc.exacttext import number
-from trusscalc.truss import Truss, did_you_mean
+from trusscalc.truss import LONGEST_NAME, Truss, did_you_mean
 
 PLANE = 2
 
@@ -31,7 +31,7 @@ class LoadCase:
     name : str
         What the case is called.
     loads : tuple of JointLoad
-        One for each loaded joint, in the order stated.
+        One for each loaded joint, in the order stated; several loads on one joint are added.
     symbols : tuple of (str, Exact)
         Values of the symbols in the loads, for decimals and for the numeric route.
     """
@@ -74,11 +74,11 @@ class LoadCase:
         if isinstance(loads, Mapping):
             read = [_joint_load(name, joint, pair, values, problems) for joint, pair in loads.items()]
         else:
-            read = list(loads)
+            read = list(_summed(loads))
         if problems:
             raise InputError(problems)
         object.__setattr__(self, "name", name)
-        object.__setattr__(self, "loads", tuple(load for load in read if load is not None))
+        object.__setattr__(self, "loads", _one_each(load for load in read if load is not None))
         object.__setattr__(self, "symbols", tuple(values.items()))
 
     def value(self, amount: Exact) -> Exact:
@@ -100,7 +100,7 @@ class LoadCase:
         ]
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True, slots=True, init=False)
 class Combination:
     """A named sum of factored cases.
 
@@ -115,6 +115,38 @@ class Combination:
     name: str
     factors: tuple[tuple[str, Exact], ...]
 
+    def __init__(self, name: str, factors: Mapping[str, object] | Iterable[tuple[str, object]]) -> None:
+        """State a combination.
+
+        Parameters
+        ----------
+        name : str
+            What it is called.
+        factors : mapping of case name to factor, or pairs of them
+            Factors; numbers as in ``Truss``.
+
+        Raises
+        ------
+        InputError
+            With every fault found in ``problems``.
+
+        Examples
+        --------
+        >>> Combination("1.2D+1.6L", {"dead": 1.2, "live": "8/5"}).factors
+        (('dead', Exact('6/5')), ('live', Exact('8/5')))
+        """
+        problems = []
+        read = []
+        for case, factor in factors.items() if isinstance(factors, Mapping) else factors:
+            try:
+                read.append((case, number(factor)))
+            except InexactNumberError as problem:
+                problems.append(f"[combinations.{name}] {case}: {problem}")
+        if problems:
+            raise InputError(problems)
+        object.__setattr__(self, "name", name)
+        object.__setattr__(self, "factors", tuple(read))
+
 
 def combine(combination: Combination, cases: Collection[LoadCase]) -> LoadCase:
     """Return the combination as one load case, joint by joint, exactly.
@@ -123,6 +155,8 @@ def combine(combination: Combination, cases: Collection[LoadCase]) -> LoadCase:
     ------
     UnknownNameError
         When the combination names a case that is not there.
+    InputError
+        When two cases give one symbol different values.
     """
     by_name = {case.name: case for case in cases}
     totals: dict[str, tuple[Exact, Exact]] = {}
@@ -131,7 +165,12 @@ def combine(combination: Combination, cases: Collection[LoadCase]) -> LoadCase:
         if name not in by_name:
             message = f"combination {combination.name!r}: there is no case {name!r}{did_you_mean(name, by_name)}"
             raise UnknownNameError(message, name=name)
-        symbols.update(by_name[name].symbols)
+        for symbol, value in by_name[name].symbols:
+            if symbols.setdefault(symbol, value) != value:
+                message = (
+                    f"combination {combination.name!r}: its cases give {symbol!r} different values; use two symbols"
+                )
+                raise InputError(message)
         for load in by_name[name].loads:
             fx, fy = totals.get(load.joint, (ZERO, ZERO))
             totals[load.joint] = (fx + factor * load.fx, fy + factor * load.fy)
@@ -139,12 +178,25 @@ def combine(combination: Combination, cases: Collection[LoadCase]) -> LoadCase:
     return LoadCase(combination.name, loads, symbols=list(symbols.items()))
 
 
+def _summed(loads: Iterable[JointLoad]) -> list[JointLoad]:
+    """Return one load for each joint: several on one joint are added."""
+    totals: dict[str, JointLoad] = {}
+    for load in loads:
+        before = totals.get(load.joint)
+        totals[load.joint] = JointLoad(load.joint, before.fx + load.fx, before.fy + load.fy) if before else load
+    return list(totals.values())
+
+
 def _symbol_values(
     symbols: Mapping[str, object] | Iterable[tuple[str, Exact]], problems: list[str]
 ) -> dict[str, Exact]:
     values: dict[str, Exact] = {}
     for name, value in symbols.items() if isinstance(symbols, Mapping) else symbols:
-        if not name.isidentifier() or name in ("sqrt", "sin", "cos", "tan", "pi", "X", "Y", "Z"):
+        if (
+            len(name) > LONGEST_NAME
+            or not name.isidentifier()
+            or name in ("sqrt", "sin", "cos", "tan", "pi", "X", "Y", "Z")
+        ):
             problems.append(f"[symbols] {name[:40]!r}: a symbol is a word of letters and digits that is not taken")
             continue
         try:
@@ -164,7 +216,20 @@ def _joint_load(
     values = []
     for axis, value in zip("xy", pair, strict=True):
         try:
-            values.append(number(value, symbols))
+            amount = number(value, symbols)
+            if amount.symbols:
+                number(amount.substitute(symbols))  # its decimal has to exist too
+            values.append(amount)
+        except ZeroDivisionError:
+            problems.append(f"{where} F{axis}: division by zero at the values under [symbols]")
         except InexactNumberError as problem:
             problems.append(f"{where} F{axis}: {problem}")
     return JointLoad(joint, values[0], values[1]) if len(values) == PLANE else None
+
+
+def _one_each(loads: Iterable[JointLoad]) -> tuple[JointLoad, ...]:
+    joints: dict[str, JointLoad] = {}
+    for load in loads:
+        before = joints.get(load.joint)
+        joints[load.joint] = JointLoad(load.joint, before.fx + load.fx, before.fy + load.fy) if before else load
+    return tuple(joints.values())

@@ -7,11 +7,14 @@ collected and reported together.
 from __future__ import annotations
 
 import difflib
+import math
 import unicodedata
 import warnings
-from collections.abc import Iterable, Mapping, Sequence
+from bisect import bisect_left, bisect_right
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass
-from typing import Any, Final
+from operator import itemgetter
+from typing import Any, Final, NamedTuple
 
 from trusscalc.errors import InexactNumberError, InputError, TrusscalcWarning, UnknownNameError
 from trusscalc.exact import ONE, ZERO, Exact
@@ -19,6 +22,8 @@ from trusscalc.exacttext import number
 from trusscalc.units import FORCES, LENGTHS, unknown_unit
 
 LONGEST_NAME: Final = 40
+MOST_COMPARED: Final = 1000
+"""Names; looking for the nearest among more takes longer than it helps."""
 MEMBER_ENDS: Final = 2
 PLANE: Final = 2
 
@@ -72,7 +77,7 @@ class FloatTruss:
     Attributes
     ----------
     joints : dict of str to (float, float)
-        Coordinates.
+        Coordinates, from the file's origin or, far away from it, from the first joint.
     members : tuple of (name, start, end)
         The bars.
     links : tuple of (name, joint, dx, dy)
@@ -157,18 +162,20 @@ class Truss:
         read_joints = _joints(joints, problems)
         read_members = _members(members, joints, read_joints, problems)
         read_supports = _supports(supports, joints, problems)
-        for unit, known in ((length, LENGTHS), (force, FORCES)):
+        for key, unit, known in (("length", length, LENGTHS), ("force", force, FORCES)):
             if unit not in known:
-                problems.append(f"[units]: {unknown_unit(unit, known)}")
-        tension_only, no_uplift = tuple(tension_only), tuple(no_uplift)
+                problems.append(f"[units] {key}: {unknown_unit(unit, known)}")
+        tension_only = _names("tension_only", tension_only, problems)
+        no_uplift = _names("no_uplift", no_uplift, problems)
         _attachment(read_joints, read_members, problems)
         _behaviour(tension_only, no_uplift, read_members, read_supports, problems)
+        run_through = _run_through(read_joints, read_members, problems) if not problems else []
         if problems:
             raise InputError(problems)
         values = (read_joints, read_members, read_supports, title, length, force, tension_only, no_uplift)
         for name, value in zip(Truss.__slots__, values, strict=True):
             object.__setattr__(self, name, value)
-        for text in _run_through(read_joints, read_members):
+        for text in run_through:
             warnings.warn(text, TrusscalcWarning, stacklevel=2)
 
     @property
@@ -195,18 +202,35 @@ class Truss:
 
     def as_floats(self) -> FloatTruss:
         """Return the truss as plain floats for the numeric route, each rounded once from its exact value."""
-        joints = {joint.name: (float(joint.x), float(joint.y)) for joint in self.joints}
+        joints = _from_near_origin(self.joints)
         links = []
         for link in self.links:
             dx, dy = float(link.dx), float(link.dy)
-            size = (dx * dx + dy * dy) ** 0.5
+            size = math.hypot(dx, dy)
             links.append((link.name, link.joint, dx / size, dy / size))
         return FloatTruss(joints, tuple((m.name, m.start, m.end) for m in self.members), tuple(links))
 
 
+def _from_near_origin(joints: tuple[Joint, ...]) -> dict[str, tuple[float, float]]:
+    """Return coordinates as floats; for a truss far from the origin (a map grid) counted from its first joint.
+
+    Otherwise the rounding of large coordinates alone would spoil the numeric route's digits.
+    """
+    places = {joint.name: (float(joint.x), float(joint.y)) for joint in joints}
+    first = joints[0]
+    x0, y0 = places[first.name]
+    extent = max(math.hypot(x - x0, y - y0) for x, y in places.values())
+    if math.hypot(x0, y0) <= extent:
+        return places
+    return {joint.name: (float(joint.x - first.x), float(joint.y - first.y)) for joint in joints}
+
+
 def did_you_mean(name: str, known: Iterable[str]) -> str:
     """Return '; did you mean X?' for the nearest known name, or ''."""
-    near = difflib.get_close_matches(name[: 2 * LONGEST_NAME], list(known), n=1, cutoff=0.5)
+    known = list(known)
+    if len(known) > MOST_COMPARED:
+        return ""
+    near = difflib.get_close_matches(name[: 2 * LONGEST_NAME], known, n=1, cutoff=0.5)
     return f"; did you mean {near[0]}?" if near else ""
 
 
@@ -339,7 +363,11 @@ def _support(joint: str, stated: Any, problems: list[str]) -> Support | None:
     listed = list(stated) if several else [stated]
     links = []
     for place, item in enumerate(listed, 1):
-        if not isinstance(item, Mapping) or set(item) != {"reaction"}:
+        if isinstance(item, Mapping) and (unknown := [key for key in item if key != "reaction"]):
+            near = did_you_mean(str(unknown[0]), ["reaction"])
+            problems.append(f"{where} {str(unknown[0])[:60]}: unknown key{near}; write {{ reaction = [x, y] }}")
+            continue
+        if not isinstance(item, Mapping) or not item:
             text = str(item)[:60]
             problems.append(f'{where}: {text!r} is no support; write "pin", "roller" or {{ reaction = [x, y] }}')
             continue
@@ -362,6 +390,13 @@ def _attachment(joints: tuple[Joint, ...], members: tuple[Member, ...], problems
         problems += [f"[joints] {name}: no member ends there; add one or remove the joint" for name in loose]
 
 
+def _names(key: str, names: Iterable[str], problems: list[str]) -> tuple[str, ...]:
+    if isinstance(names, str):
+        problems.append(f"[behaviour] {key}: a list of names is needed, not one text")
+        return ()
+    return tuple(names)
+
+
 def _behaviour(
     tension_only: tuple[str, ...],
     no_uplift: tuple[str, ...],
@@ -381,36 +416,56 @@ def _behaviour(
             problems.append(f"[behaviour] no_uplift {str(name)[:60]!r}: no support there{near}")
 
 
-def _run_through(joints: tuple[Joint, ...], members: tuple[Member, ...]) -> list[str]:
+def _run_through(joints: tuple[Joint, ...], members: tuple[Member, ...], problems: list[str]) -> list[str]:
     """Return a warning for every member that runs through a joint it does not name.
 
     Floats sort out almost all pairs; only near misses are decided exactly.
     """
-    place = {joint.name: joint for joint in joints}
-    by_x = sorted((float(joint.x), float(joint.y), joint) for joint in joints) if joints else []
-    return [
-        f"member {member.name} runs through joint {joint.name} without ending there; "
-        f"if they are connected, state two members"
-        for member in members
-        for joint in _between(by_x, place[member.start], place[member.end])
-    ]
-
-
-def _between(by_x: list[tuple[float, float, Joint]], start: Joint, end: Joint) -> list[Joint]:
-    from bisect import bisect_left, bisect_right  # noqa: PLC0415 - only used here
-
-    ax, ay, bx, by = float(start.x), float(start.y), float(end.x), float(end.y)
-    slack = 1e-9 * (abs(ax) + abs(ay) + abs(bx) + abs(by))
-    low = bisect_left(by_x, min(ax, bx) - slack, key=lambda item: item[0])
-    high = bisect_right(by_x, max(ax, bx) + slack, key=lambda item: item[0])
+    places = {joint.name: _Place(float(joint.x), float(joint.y), joint) for joint in joints}
+    by_x = sorted(places.values(), key=_x_of)
+    by_y = sorted(places.values(), key=_y_of)
     found = []
-    for x, y, joint in by_x[low:high]:
-        if joint is start or joint is end or not min(ay, by) - slack <= y <= max(ay, by) + slack:
-            continue
-        if abs((x - ax) * (by - ay) - (y - ay) * (bx - ax)) > slack * (abs(bx - ax) + abs(by - ay)):
-            continue
-        dx, dy = end.x - start.x, end.y - start.y
-        along = (joint.x - start.x) * dx + (joint.y - start.y) * dy
-        if (joint.x - start.x) * dy == (joint.y - start.y) * dx and ZERO < along < dx * dx + dy * dy:
-            found.append(joint)
+    try:
+        for member in members:
+            start, end = places[member.start], places[member.end]
+            slack = 1e-9 * (abs(start.x) + abs(start.y) + abs(end.x) + abs(end.y))
+            beside = min(_span(by_x, _x_of, start, end, slack), _span(by_y, _y_of, start, end, slack), key=len)
+            found += [
+                f"member {member.name} runs through joint {place.joint.name} without ending there; "
+                f"if they are connected, state two members"
+                for place in beside
+                if place is not start and place is not end and _lies_between(place, start, end, slack)
+            ]
+    except InexactNumberError as problem:
+        problems.append(f"[joints]: the coordinates cannot be computed with together: {problem}")
     return found
+
+
+class _Place(NamedTuple):
+    x: float
+    y: float
+    joint: Joint
+
+
+_x_of, _y_of = itemgetter(0), itemgetter(1)
+
+
+def _span(
+    places: list[_Place], by: Callable[[_Place], float], start: _Place, end: _Place, slack: float
+) -> Sequence[_Place]:
+    low, high = sorted((by(start), by(end)))
+    return places[bisect_left(places, low - slack, key=by) : bisect_right(places, high + slack, key=by)]
+
+
+def _lies_between(place: _Place, start: _Place, end: _Place, slack: float) -> bool:
+    if not min(start.x, end.x) - slack <= place.x <= max(start.x, end.x) + slack:
+        return False
+    if not min(start.y, end.y) - slack <= place.y <= max(start.y, end.y) + slack:
+        return False
+    across, along = end.x - start.x, end.y - start.y
+    if abs((place.x - start.x) * along - (place.y - start.y) * across) > slack * (abs(across) + abs(along)):
+        return False
+    a, b, c = start.joint, place.joint, end.joint
+    dx, dy = c.x - a.x, c.y - a.y
+    part = (b.x - a.x) * dx + (b.y - a.y) * dy
+    return (b.x - a.x) * dy == (b.y - a.y) * dx and ZERO < part < dx * dx + dy * dy

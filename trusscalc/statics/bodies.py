@@ -2,8 +2,8 @@
 
 A body is a bit mask of joints. Straight sections are found from the lines through two near joints, turned
 or shifted a hair: every way of parting points by a line touches two of them. In a long truss only a window
-round the wanted member is searched; what lies outside hangs together in far parts that are kept or not
-kept whole.
+round the wanted member is searched; what lies outside hangs together in far groups that are kept or not
+kept whole, so the work does not grow with the truss.
 """
 
 from __future__ import annotations
@@ -11,13 +11,22 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import dataclass
 
-from trusscalc.statics.incidence import Layout
+from trusscalc.statics.incidence import Layout, bits
 
 MOST_CUT = 7
 """Sections that cut more bars than this are not proposed."""
 REACH = 2
 """Joints within so many bars of each other span the section lines that are tried."""
 HAIR = 1e-9
+
+
+@dataclass(frozen=True, slots=True)
+class Group:
+    """Joints outside the window that hang together: their mask, their neighbours inside, the bars they cut."""
+
+    joints: int
+    neighbours: int
+    cut: int
 
 
 @dataclass(frozen=True, slots=True)
@@ -28,50 +37,33 @@ class Window:
     ----------
     near : int
         Joints that may be parted from each other.
-    far : tuple of int
+    far : tuple of Group
         Groups of joints that stay together.
     rim : int
         Joints of the far groups tied to near ones; they say on which side of a line a group lies.
     """
 
     near: int
-    far: tuple[int, ...]
+    far: tuple[Group, ...]
     rim: int
 
 
 @dataclass(frozen=True, slots=True)
 class Body:
-    """A free body: its joints, the bars it cuts, and how it was found (joint, whole, line, hinge, other)."""
+    """A free body: its joints, the bars it cuts, how it was found, and the surplus pieces of both sides.
+
+    ``found`` is joint, whole, line, hinge or other.
+    """
 
     kept: int
     cut: int
     found: str
-    pieces: int = 1
+    surplus: int = 0
 
 
 def everything(layout: Layout) -> int:
     """Return the mask of all joints."""
     return (1 << len(layout.joints)) - 1
-
-
-def boundary(layout: Layout, kept: int) -> int:
-    """Return the mask of members and links with exactly one end among the kept joints."""
-    if kept.bit_count() * 4 < len(layout.joints):
-        cut = 0
-        for joint in layout.bits(kept):
-            cut ^= layout.at[joint]  # a bar with both ends inside comes twice and vanishes
-        return cut
-    cut = 0
-    for joint in layout.bits(everything(layout) & ~kept):
-        cut ^= layout.at[joint]
-    links = 0
-    for index in range(len(layout.ends) - 1, -1, -1):
-        start, end = layout.ends[index]
-        if end >= 0:
-            break
-        if kept >> start & 1:
-            links |= 1 << index
-    return cut & layout.members | links
 
 
 def window_round(layout: Layout, bar: int, size: int) -> Window:
@@ -83,8 +75,12 @@ def window_round(layout: Layout, bar: int, size: int) -> Window:
         edge = _neighbours(layout, edge) & ~near
         near |= edge
     rest = everything(layout) & ~near
-    far = tuple(pieces_of(layout, rest))
-    return Window(near, far, _neighbours(layout, near) & rest)
+    groups = []
+    while rest:
+        joints, neighbours, cut = _flooded(layout, rest)
+        groups.append(Group(joints, neighbours & near, cut))
+        rest &= ~joints
+    return Window(near, tuple(groups), _neighbours(layout, near) & ~near)
 
 
 def whole_window(layout: Layout) -> Window:
@@ -94,19 +90,56 @@ def whole_window(layout: Layout) -> Window:
 
 def _neighbours(layout: Layout, mask: int) -> int:
     found = 0
-    for joint in layout.bits(mask):
+    for joint in bits(mask):
         found |= layout.neighbours[joint]
     return found
 
 
-def pieces_of(layout: Layout, mask: int) -> list[int]:
-    """Return the connected pieces of a set of joints, leftmost first."""
+def _flooded(layout: Layout, mask: int) -> tuple[int, int, int]:
+    """Return the piece of a set of joints that holds its first: joints, all their neighbours, bars cut."""
+    joints = edge = mask & -mask
+    neighbours = cut = 0
+    while edge:
+        found = 0
+        for joint in bits(edge):
+            found |= layout.neighbours[joint]
+            cut ^= layout.at[joint]  # a bar with both ends inside comes twice and vanishes
+        neighbours |= found
+        edge = found & mask & ~joints
+        joints |= edge
+    return joints, neighbours, cut
+
+
+def boundary(layout: Layout, kept: int, window: Window | None = None) -> int:
+    """Return the mask of members and links with exactly one end among the kept joints."""
+    cut = 0
+    for group in window.far if window else ():
+        if kept & group.joints:
+            cut ^= group.cut
+            kept &= ~group.joints
+    for joint in bits(kept):
+        cut ^= layout.at[joint]
+    return cut
+
+
+def pieces_of(layout: Layout, mask: int, window: Window | None = None) -> list[int]:
+    """Return the connected pieces of a set of joints, far groups whole."""
+    far = window.far if window else ()
     pieces = []
     while mask:
-        piece = edge = mask & -mask
+        piece = 0
+        edge = mask & -mask
         while edge:
-            edge = _neighbours(layout, edge) & mask & ~piece
+            found = 0
+            for group in far:
+                if edge & group.joints:
+                    edge &= ~group.joints
+                    piece |= group.joints
+                    found |= group.neighbours
             piece |= edge
+            for joint in bits(edge):
+                found |= layout.neighbours[joint]
+            edge = found & mask & ~piece
         pieces.append(piece)
         mask &= ~piece
     return pieces
@@ -115,19 +148,19 @@ def pieces_of(layout: Layout, mask: int) -> list[int]:
 def bodies_in(layout: Layout, window: Window) -> list[Body]:
     """Return all proposed bodies, without repeats, joints first."""
     found: dict[int, Body] = {}
-    for joint in layout.bits(window.near):
+    for joint in bits(window.near):
         found[1 << joint] = Body(1 << joint, layout.at[joint], "joint")
     whole = everything(layout)
-    found.setdefault(whole, Body(whole, boundary(layout, whole), "whole"))
+    found.setdefault(whole, Body(whole, boundary(layout, whole, window), "whole"))
     for side in _line_sides(layout, window):
-        cut = boundary(layout, side)
+        cut = boundary(layout, side, window)
         if (cut & layout.members).bit_count() > 3 * MOST_CUT:
             continue
         for part in (side, whole & ~side):
-            for piece in pieces_of(layout, part):
-                _propose(layout, found, piece, "line")
+            for piece in pieces_of(layout, part, window):
+                _propose(layout, found, piece, "line", window)
     for piece in _hinge_sides(layout, window.near):
-        _propose(layout, found, piece, "hinge")
+        _propose(layout, found, piece, "hinge", window)
     return list(found.values())
 
 
@@ -135,31 +168,30 @@ def hinge_bodies(layout: Layout) -> list[Body]:
     """Return the bodies that meet the rest of the truss in a single joint, with and without it."""
     found: dict[int, Body] = {}
     for piece in _hinge_sides(layout, everything(layout)):
-        _propose(layout, found, piece, "hinge")
+        _propose(layout, found, piece, "hinge", None)
     return list(found.values())
 
 
-def _propose(layout: Layout, found: dict[int, Body], kept: int, how: str) -> None:
+def _propose(layout: Layout, found: dict[int, Body], kept: int, how: str, window: Window | None) -> None:
     if kept in found or not kept:
         return
-    cut = boundary(layout, kept)
+    cut = boundary(layout, kept, window)
     if (cut & layout.members).bit_count() > MOST_CUT:
         return
     rest = everything(layout) & ~kept
-    found[kept] = Body(kept, cut, how, len(pieces_of(layout, rest)) if rest else 1)
+    surplus = len(pieces_of(layout, rest, window)) - 1 if rest else 0
+    found[kept] = Body(kept, cut, how, surplus)
 
 
 def _line_sides(layout: Layout, window: Window) -> Iterable[int]:
     """Yield one side of every straight parting of the window's joints, far groups kept whole."""
     seen: set[int] = set()
-    points = layout.bits(window.near | window.rim)
-    for first in layout.bits(window.near):
+    points = [(joint, layout.x[joint], layout.y[joint]) for joint in bits(window.near | window.rim)]
+    for first in bits(window.near):
         reach = 1 << first
         for _ in range(REACH):
             reach |= _neighbours(layout, reach)
-        for second in layout.bits(reach & window.near):
-            if second <= first:
-                continue
+        for second in bits(reach & window.near & -(2 << first)):
             for side in _sides(layout, points, first, second):
                 full = _with_far(side, window)
                 if full is not None and full not in seen:
@@ -167,19 +199,22 @@ def _line_sides(layout: Layout, window: Window) -> Iterable[int]:
                     yield full
 
 
-def _sides(layout: Layout, points: list[int], first: int, second: int) -> tuple[int, int, int, int]:
+def _sides(
+    layout: Layout, points: list[tuple[int, float, float]], first: int, second: int
+) -> tuple[int, int, int, int]:
     """Return the joints left of the line through two joints, for its four smallest shifts and turns."""
     ax, ay = layout.x[first], layout.y[first]
     dx, dy = layout.x[second] - ax, layout.y[second] - ay
     slack = HAIR * (abs(dx) + abs(dy))
     left = on = before = 0
     half = (dx * dx + dy * dy) / 2
-    for joint in points:
-        px, py = layout.x[joint] - ax, layout.y[joint] - ay
+    for joint, x, y in points:
+        px, py = x - ax, y - ay
         height = dx * py - dy * px
-        if height > slack * (abs(px) + abs(py)):
+        near = slack * (abs(px) + abs(py))
+        if height > near:
             left |= 1 << joint
-        elif height >= -slack * (abs(px) + abs(py)):
+        elif height >= -near:
             on |= 1 << joint
             if px * dx + py * dy < half:
                 before |= 1 << joint
@@ -190,10 +225,10 @@ def _with_far(side: int, window: Window) -> int | None:
     """Return the side with the far groups that lie on it, None when the line parts a group."""
     full = side & window.near
     for group in window.far:
-        rim = group & window.rim
+        rim = group.joints & window.rim
         inside = side & rim
         if inside == rim:
-            full |= group
+            full |= group.joints
         elif inside:
             return None
     return full
@@ -202,12 +237,10 @@ def _with_far(side: int, window: Window) -> int | None:
 def _hinge_sides(layout: Layout, near: int) -> Iterable[int]:
     """Yield the parts of the truss that meet in one of the near joints, with and without it."""
     whole = everything(layout)
-    for joint in layout.bits(near):
-        around = layout.neighbours[joint]
-        if not around:
+    for joint in bits(near):
+        if not _may_part(layout, joint):
             continue
-        rest = whole & ~(1 << joint)
-        pieces = pieces_of(layout, rest) if _may_part(layout, joint) else []
+        pieces = pieces_of(layout, whole & ~(1 << joint))
         if len(pieces) > 1:
             for piece in pieces:
                 yield piece
@@ -215,7 +248,7 @@ def _hinge_sides(layout: Layout, near: int) -> Iterable[int]:
 
 
 def _may_part(layout: Layout, joint: int) -> bool:
-    """Return whether the joint's neighbours fall into groups without it and without going far: a quick first look."""
+    """Return whether the joint's neighbours are not tied to each other near it: a quick look before a long one."""
     around = layout.neighbours[joint]
     reached = edge = around & -around
     for _ in range(4):

@@ -9,9 +9,8 @@ meetings of unknown bars' lines, their directions, the axes.
 from __future__ import annotations
 
 from trusscalc.statics.bodies import Body, boundary, pieces_of
-from trusscalc.statics.incidence import AXIS_X, Layout, Point
+from trusscalc.statics.incidence import AXIS_X, AXIS_Y, Layout, Point
 
-AXIS_Y: Point = (1, 0, 0)
 MOST_CENTRES = 20000
 
 
@@ -27,15 +26,13 @@ def bridge_bodies(layout: Layout, known: int, decided: int) -> list[Body]:
     """
     unknown = [bar for bar in range(len(layout.bars)) if not known >> bar & 1]
     found: dict[int, Body] = {}
-    reached = 0
     for point in _centres(layout, unknown):
         live = [bar for bar in unknown if not layout.passes(bar, point)]
         for bar, kept in _bridges(layout, live):
             if decided >> bar & 1 and kept not in found:
                 rest = ((1 << len(layout.joints)) - 1) & ~kept
-                pieces = len(pieces_of(layout, kept)) + (len(pieces_of(layout, rest)) if rest else 1) - 1
-                found[kept] = Body(kept, boundary(layout, kept), "other", pieces)
-                reached |= 1 << bar
+                surplus = len(pieces_of(layout, kept)) - 1 + (len(pieces_of(layout, rest)) - 1 if rest else 0)
+                found[kept] = Body(kept, boundary(layout, kept), "other", surplus)
     return list(found.values())
 
 

@@ -150,6 +150,12 @@ class About:
             return (x - self.x) * fy - (y - self.y) * fx
         return self.x * fx + self.y * fy
 
+    def axis_lever(self, axis: str, x: Exact, y: Exact) -> Exact:
+        """Return what a unit force along +x or +y at (x, y) adds to the sum."""
+        if self.sum == "moment":
+            return self.y - y if axis == "x" else x - self.x
+        return self.x if axis == "x" else self.y
+
 
 SUM_X = About("force", ONE, ZERO)
 SUM_Y = About("force", ZERO, ONE)

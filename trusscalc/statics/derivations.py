@@ -1,10 +1,11 @@
 """The cheapest derivation of each bar from the loads and what is known, among proposed equations.
 
-First every bar takes its best equation that holds nothing else unknown; a natural one is settled. Then, in
-rounds, equations with one more unknown than known bars are used, a value costing its whole derivation (each
-ancestor once) and a little for its depth; an unnatural result may be replaced by a cheaper one. Every bar's
-derivation rests on the loads and reactions alone, not on what else was asked for, so a question's answer
-does not depend on its neighbours.
+First every bar takes its best equation that holds nothing else unknown; a natural one is settled. A bar
+without one may be found together with another from two natural equations (a K joint's horizontal sum with
+its panel's vertical one). Then, in rounds, equations with earlier results in them are used, a result
+costing its whole derivation (each ancestor once) and a little for its depth; an unnatural result may be
+replaced by a cheaper one. Every derivation rests on the loads and reactions alone, not on what else was
+asked for, so a question's answer does not depend on its neighbours.
 """
 
 from __future__ import annotations
@@ -12,18 +13,42 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 
-from trusscalc.statics.prices import DEPTH, Candidate, Prices
+from trusscalc.statics.incidence import AXIS_X, bits
+from trusscalc.statics.prices import AXIS_Y, DEPTH, PAIR, Candidate, Prices
 
 MOST_ROUNDS = 400
+SMALL = 1e-9
+Rank = tuple[float, tuple[float, ...]]
 
 
 @dataclass(frozen=True, slots=True)
 class Choice:
-    """How a bar is found: the equation, what it needs, its own price."""
+    """How a bar is found.
 
-    candidate: Candidate
+    Attributes
+    ----------
+    candidates : tuple of Candidate
+        One equation, or the two of a pair.
+    needs : int
+        Earlier results in it.
+    price : float
+        Its own price (half of a pair's).
+    partner : int
+        Mask of the other bar of a pair.
+    """
+
+    candidates: tuple[Candidate, ...]
     needs: int
     price: float
+    partner: int = 0
+
+
+@dataclass(frozen=True, slots=True)
+class Found:
+    """One step to be written: its equations and what they solve."""
+
+    candidates: tuple[Candidate, ...]
+    solves: tuple[int, ...]
 
 
 class Derivations:
@@ -46,66 +71,113 @@ class Derivations:
     def run(self) -> None:
         """Choose until a whole round changes nothing."""
         self._direct()
+        self._pairs()
         for _ in range(MOST_ROUNDS):
             if not self._round():
                 return
 
+    def _take(self, bar: int, choice: Choice, *, natural: bool) -> None:
+        self.chosen[bar] = choice
+        self.solved |= 1 << bar
+        if natural:
+            self.settled |= 1 << bar
+        self._totals.clear()
+
     def _direct(self) -> None:
         """Take the best equation that needs only what is given."""
-        best: dict[int, tuple[float, tuple[float, ...], Candidate]] = {}
+        best: dict[int, tuple[Rank, Candidate]] = {}
         for candidate in self.candidates:
             unknown = candidate.live & ~self.given
             if not unknown or unknown & (unknown - 1):
                 continue
             bar = unknown.bit_length() - 1
-            if self.solved >> bar & 1:
-                continue
-            price = candidate.price + self.prices.of_live(candidate.live, bar)
-            rank = (price, candidate.place)
-            if bar not in best or rank < best[bar][:2]:
-                best[bar] = (*rank, candidate)
-        for bar, (price, _, candidate) in best.items():
-            self.chosen[bar] = Choice(candidate, 0, price)
-            self.solved |= 1 << bar
-            if candidate.natural:
-                self.settled |= 1 << bar
-        self._totals.clear()
+            rank = (self.prices.solving(candidate, bar), candidate.place)
+            if not self.solved >> bar & 1 and (bar not in best or rank < best[bar][0]):
+                best[bar] = (rank, candidate)
+        for bar, ((price, _), candidate) in best.items():
+            self._take(bar, Choice((candidate,), 0, price), natural=candidate.natural)
+
+    def _pairs(self) -> None:
+        """Give bars without a natural equation a pair of natural ones, when there is one."""
+        by_unknowns: dict[int, list[Candidate]] = {}
+        for candidate in self.candidates:
+            unknown = candidate.live & ~self.given
+            if candidate.natural and unknown.bit_count() == 2 and not unknown & self.settled:  # noqa: PLR2004
+                by_unknowns.setdefault(unknown, []).append(candidate)
+        best: dict[int, tuple[Rank, tuple[Candidate, Candidate], int]] = {}
+        for unknown, candidates in by_unknowns.items():
+            pair = self._best_pair(unknown, candidates)
+            for bar in bits(unknown) if pair else ():
+                assert pair is not None  # noqa: S101 - the loop is empty otherwise
+                if bar not in best or pair[0] < best[bar][0]:
+                    best[bar] = (*pair, unknown)
+        for bar, (rank, pair, unknown) in best.items():
+            partner = unknown & ~(1 << bar)
+            other = partner.bit_length() - 1
+            if best[other][2] == unknown:
+                self._take(bar, Choice(pair, 0, rank[0] / 2, partner), natural=True)
+
+    def _best_pair(self, unknown: int, candidates: list[Candidate]) -> tuple[Rank, tuple[Candidate, Candidate]] | None:
+        first_bar, last_bar = bits(unknown)
+        ranked = sorted(candidates, key=lambda c: (c.price, c.place))[:8]
+        best: tuple[Rank, tuple[Candidate, Candidate]] | None = None
+        for place, first in enumerate(ranked):
+            for second in ranked[place + 1 :]:
+                axes = first.point in (AXIS_X, AXIS_Y) and second.point in (AXIS_X, AXIS_Y)
+                if first.body.kept == second.body.kept and not axes:
+                    continue
+                price = PAIR + sum(
+                    self.prices.solving(c, first_bar) - self.prices.terms[last_bar] for c in (first, second)
+                )
+                rank = (price, min(first.place, second.place))
+                if (best is None or rank < best[0]) and self.prices.independent(first, second, first_bar, last_bar):
+                    ordered = sorted(
+                        (first, second), key=lambda c: (c.body.found != "joint", -len(c.recipe[0]), c.place)
+                    )
+                    best = (rank, (ordered[0], ordered[1]))
+        return best
 
     def _round(self) -> bool:
         """Find or improve every unsettled bar once, from the results of earlier rounds."""
         known = self.given | self.solved
         free = ~(self.given | self.settled)
-        best: dict[int, tuple[float, tuple[float, ...], Choice]] = {}
+        best: dict[int, tuple[Rank, Choice]] = {}
         for candidate in self.candidates:
             unknown = candidate.live & ~known
             if unknown & (unknown - 1):
                 continue
-            for bar in self._bits(unknown or candidate.live & free):
-                self._weigh(candidate, bar, best)
+            mask = unknown or candidate.live & free
+            while mask:
+                low = mask & -mask
+                mask ^= low
+                self._weigh(candidate, low.bit_length() - 1, best)
         changed = False
-        for bar in sorted(best, key=lambda b: best[b][:2]):
-            total, _, choice = best[bar]
+        for bar in sorted(best, key=lambda b: best[b][0]):
+            (total, _), choice = best[bar]
             # choices of the same round may lean on each other: look again before taking one
-            if bar in self.chosen and (self._leans_on(choice.needs, bar) or total >= self.total(bar) - 1e-9):
+            if bar in self.chosen and (self._leans_on(choice.needs, bar) or total >= self.total(bar) - SMALL):
                 continue
-            self.chosen[bar] = choice
-            self.solved |= 1 << bar
-            self._totals.clear()
+            self._take(bar, choice, natural=False)
             changed = True
         return changed
 
-    def _weigh(self, candidate: Candidate, bar: int, best: dict[int, tuple[float, tuple[float, ...], Choice]]) -> None:
-        limit = best[bar][0] if bar in best else self.total(bar) if bar in self.chosen else float("inf")
-        price = candidate.price + self.prices.of_live(candidate.live, bar)
-        if price > limit + 1e-9:
+    def _weigh(self, candidate: Candidate, bar: int, best: dict[int, tuple[Rank, Choice]]) -> None:
+        here = best.get(bar)
+        if here is not None:
+            limit = here[0][0]
+        else:
+            limit = self.total(bar) if bar in self.chosen else float("inf")
+        price = self.prices.solving(candidate, bar)
+        if price > limit + SMALL:
             return
         needs = candidate.live & ~self.given & ~(1 << bar)
-        if bar in self.chosen and self._leans_on(needs, bar):
+        family = self.ancestors(needs)
+        if family >> bar & 1:
             return
-        total = price + self._cost_of(needs)
+        total = price + self._cost_of(needs, family)
         rank = (total, candidate.place)
-        if total < limit - 1e-9 or (bar in best and rank < best[bar][:2]):
-            best[bar] = (*rank, Choice(candidate, needs, price))
+        if total < limit - SMALL or (here is not None and rank < here[0]):
+            best[bar] = (rank, Choice((candidate,), needs, price))
 
     # --- what a choice rests on -------------------------------------------------------------------------
 
@@ -115,7 +187,8 @@ class Derivations:
         while waiting:
             low = waiting & -waiting
             waiting ^= low
-            more = self.chosen[low.bit_length() - 1].needs & ~found
+            choice = self.chosen[low.bit_length() - 1]
+            more = (choice.needs | choice.partner) & ~found
             found |= more
             waiting |= more
         return found
@@ -123,49 +196,55 @@ class Derivations:
     def _leans_on(self, needs: int, bar: int) -> bool:
         return bool(self.ancestors(needs) >> bar & 1)
 
-    def _cost_of(self, needs: int) -> float:
+    def _cost_of(self, needs: int, family: int) -> float:
         """Return the whole cost of the needed bars: each ancestor once, and the depth of the chain."""
         if not needs:
             return 0.0
-        total = sum(self.chosen[bar].price for bar in self._bits(self.ancestors(needs)))
-        return total + DEPTH * (1 + max(self._depth(bar) for bar in self._bits(needs)))
+        total = sum(self.chosen[bar].price for bar in bits(family))
+        return total + DEPTH * (1 + max(self._depth(bar) for bar in bits(needs)))
 
     def _depth(self, bar: int) -> int:
         needs = self.chosen[bar].needs
-        return 1 + max(self._depth(other) for other in self._bits(needs)) if needs else 0
+        return 1 + max(self._depth(other) for other in bits(needs)) if needs else 0
 
     def total(self, bar: int) -> float:
         """Return the price of a bar's whole derivation."""
         if bar not in self._totals:
             choice = self.chosen[bar]
-            self._totals[bar] = choice.price + self._cost_of(choice.needs)
+            family = self.ancestors(choice.needs)
+            pair = 2 if choice.partner else 1
+            self._totals[bar] = pair * choice.price + self._cost_of(choice.needs, family)
         return self._totals[bar]
 
-    def order(self, wanted: Sequence[int]) -> list[int]:
-        """Return the bars to solve, each after what it needs, nothing twice."""
-        done: list[int] = []
-        seen = 0
-        for bar in wanted:
-            stack = [bar]
-            while stack:
-                top = stack[-1]
-                if seen >> top & 1 or self.given >> top & 1:
-                    stack.pop()
-                    continue
-                missing = [b for b in self._bits(self.chosen[top].needs) if not seen >> b & 1]
-                if missing:
-                    stack.extend(reversed(missing))
-                else:
-                    seen |= 1 << top
-                    done.append(top)
-                    stack.pop()
-        return done
+    def steps_to(self, bar: int, done: int) -> list[Found]:
+        """Return the steps that reach a bar from what is done, each after what it needs."""
+        steps: list[Found] = []
+        stack = [bar]
+        while stack:
+            top = stack[-1]
+            if done >> top & 1:
+                stack.pop()
+                continue
+            missing = bits(self.chosen[top].needs & ~done)
+            if missing:
+                stack.extend(reversed(missing))
+                continue
+            stack.pop()
+            choice = self.chosen[top]
+            if choice.partner & ~done:
+                solves = tuple(sorted((top, choice.partner.bit_length() - 1)))
+                steps.append(Found(choice.candidates, solves))
+            else:  # of a pair whose other bar is known, one equation is enough
+                steps.append(Found((next(c for c in choice.candidates if c.live >> top & 1),), (top,)))
+            for solved in steps[-1].solves:
+                done |= 1 << solved
+        return steps
 
-    @staticmethod
-    def _bits(mask: int) -> list[int]:
-        found = []
-        while mask:
-            low = mask & -mask
-            found.append(low.bit_length() - 1)
-            mask ^= low
-        return found
+
+def found_by(steps: Sequence[Found]) -> int:
+    """Return the mask of everything the steps solve."""
+    mask = 0
+    for step in steps:
+        for bar in step.solves:
+            mask |= 1 << bar
+    return mask

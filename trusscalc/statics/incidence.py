@@ -27,7 +27,18 @@ Point = tuple[int, int, int]
 
 LARGEST_PRIME = 2**61 - 1
 AXIS_X: Point = (0, 1, 0)
-"""The force sum along x."""
+AXIS_Y: Point = (1, 0, 0)
+"""The force sums along x and along y."""
+
+
+def bits(mask: int) -> list[int]:
+    """Return the indices of the bits set in a mask, ascending."""
+    found = []
+    while mask:
+        low = mask & -mask
+        found.append(low.bit_length() - 1)
+        mask ^= low
+    return found
 
 
 class Residues:
@@ -201,15 +212,6 @@ class Layout:
             return X, Y, W
         factor = pow(leading, -1, p)
         return X * factor % p, Y * factor % p, W * factor % p
-
-    def bits(self, mask: int) -> list[int]:
-        """Return the indices of the bits set in a mask, ascending."""
-        found = []
-        while mask:
-            low = mask & -mask
-            found.append(low.bit_length() - 1)
-            mask ^= low
-        return found
 
 
 def layout_of(structure: Structure, loads: dict[str, tuple[float, float]]) -> Layout:

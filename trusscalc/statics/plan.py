@@ -33,8 +33,8 @@ from trusscalc.statics.cuts import (
     cut_of,
     meeting_point,
 )
-from trusscalc.statics.derivations import Derivations
-from trusscalc.statics.incidence import Layout, layout_of
+from trusscalc.statics.derivations import Derivations, Found, found_by
+from trusscalc.statics.incidence import bits, layout_of
 from trusscalc.statics.matrix import Equilibrium
 from trusscalc.statics.prices import Candidate, Prices, all_candidates
 
@@ -98,26 +98,24 @@ class _Search:
         links = [bar for bar in range(len(layout.bars)) if layout.ends[bar][1] < 0 and self.decided >> bar & 1]
         reactions = self._reactions(links)
         targets = [self.index[name] for name in wanted]
-        order: list[tuple[int, Candidate]] = [
-            (bar, reactions.chosen[bar].candidate) for bar in reactions.order(links_first(links, reactions.solved))
-        ]
-        given = sum(1 << bar for bar, _ in order)
+        steps = [step for bar in links if reactions.solved >> bar & 1 for step in reactions.steps_to(bar, 0)]
+        steps = list(dict.fromkeys(steps))
+        given = found_by(steps)
+        done, lost = given, []
         tables: dict[Window, Derivations] = {}
-        lost = []
-        goals = [bar for bar in links if not given >> bar & 1] + targets
-        for bar in dict.fromkeys(goals):
-            if given >> bar & 1:
+        for bar in (*links, *targets):
+            if done >> bar & 1:
                 continue
             table = self._table_for(bar, given, tables)
             if table is None:
                 lost.append(layout.bars[bar])
                 continue
-            for step in table.order([bar]):
-                if not any(step == done for done, _ in order):
-                    order.append((step, table.chosen[step].candidate))
+            more = table.steps_to(bar, done)
+            done |= found_by(more)
+            steps += more
         if lost:
             raise _unreachable(lost)
-        return tuple(self._step(bar, candidate) for bar, candidate in order)
+        return tuple(self._step(step) for step in steps)
 
     # --- reactions --------------------------------------------------------------------------------------
 
@@ -173,10 +171,13 @@ class _Search:
 
     # --- written exactly --------------------------------------------------------------------------------
 
-    def _step(self, bar: int, candidate: Candidate) -> PlannedStep:
+    def _step(self, step: Found) -> PlannedStep:
         layout = self.layout
-        cut = cut_of(self.structure, [layout.joints[j] for j in layout.bits(candidate.body.kept)])
-        return PlannedStep(((cut, self._about(candidate)),), (layout.bars[bar],))
+        bodies = []
+        for candidate in step.candidates:
+            cut = cut_of(self.structure, [layout.joints[j] for j in bits(candidate.body.kept)])
+            bodies.append((cut, self._about(candidate)))
+        return PlannedStep(tuple(bodies), tuple(layout.bars[bar] for bar in step.solves))
 
     def _about(self, candidate: Candidate) -> About:
         kind, first, second = candidate.recipe
@@ -190,11 +191,6 @@ class _Search:
         place = meeting_point(structure, structure.bars[layout.bars[first]], structure.bars[layout.bars[second]])
         assert place is not None  # noqa: S101 - parallels have the recipe "across"
         return About("moment", *place)
-
-
-def links_first(links: list[int], solved: int) -> list[int]:
-    """Return the links that were found."""
-    return [bar for bar in links if solved >> bar & 1]
 
 
 def _unreachable(lost: list[str]) -> NoCutError:

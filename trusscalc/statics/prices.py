@@ -13,7 +13,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 
 from trusscalc.statics.bodies import Body, everything
-from trusscalc.statics.incidence import AXIS_X, Layout, Point
+from trusscalc.statics.incidence import AXIS_X, AXIS_Y, Layout, Point, bits
 
 EQUATION = 6.0
 TERM = 10.0
@@ -39,11 +39,10 @@ EXTRA_PIECE = 25.0
 BENT = 37.0
 UPRIGHT_SECTION = -2.0
 RIGHT_HALF = 1.0
+PAIR = 16.0
 FEW_BARS = 3
 MANY_BARS = 5
 CHORD_BARS = 4
-
-AXIS_Y: Point = (1, 0, 0)
 
 
 @dataclass(frozen=True, slots=True)
@@ -61,7 +60,9 @@ class Candidate:
     live : int
         Bars with a coefficient.
     price : float
-        All but the terms of known bars.
+        All but the terms of bars.
+    terms : float
+        The terms of all bars with a coefficient, as if known.
     natural : bool
         No penalty in it.
     place : tuple of float
@@ -73,6 +74,7 @@ class Candidate:
     recipe: tuple[str, int, int]
     live: int
     price: float
+    terms: float
     natural: bool
     place: tuple[float, ...]
 
@@ -87,12 +89,11 @@ class Prices:
         xs, ys = layout.x, layout.y
         self.box = (min(xs), max(xs), min(ys), max(ys))
         self.diagonal = math.hypot(self.box[1] - self.box[0], self.box[3] - self.box[2]) or 1.0
-        self.oblique = 0
         self.terms: list[float] = []
+        self.slant: list[float] = []
         for index, (_, dx, dy) in enumerate(layout.lines):
             slant = bool(dx and dy)
-            if slant:
-                self.oblique |= 1 << index
+            self.slant.append(OBLIQUE_TERM if slant and layout.ends[index][1] >= 0 else 0.0)
             if layout.ends[index][1] < 0:
                 self.terms.append(0.0 if zero >> index & 1 else REACTION)
             else:
@@ -104,44 +105,52 @@ class Prices:
         """Return the directions of straight lines that hold at least four members."""
         layout = self.layout
         lines: dict[tuple[Point, Point], int] = {}
-        for bar in layout.bits(layout.members):
+        for bar in bits(layout.members):
             along = layout.across(bar)
             c, dx, dy = layout.lines[bar]
             key = (along, layout.normal((-dy, dx, c)))
             lines[key] = lines.get(key, 0) + 1
         return {along for (along, _), count in lines.items() if count >= CHORD_BARS}
 
-    def of_live(self, live: int, unknown: int) -> float:
-        """Return the price of the terms of known bars in an equation that solves for ``unknown``."""
-        total = OBLIQUE_TERM if self.oblique >> unknown & 1 and self.layout.ends[unknown][1] >= 0 else 0.0
-        rest = live & ~(1 << unknown)
-        while rest:
-            low = rest & -rest
-            total += self.terms[low.bit_length() - 1]
-            rest ^= low
-        return total
+    def solving(self, candidate: Candidate, unknown: int) -> float:
+        """Return the price of an equation that solves for a bar, all its other bars being known."""
+        return candidate.price + candidate.terms - self.terms[unknown] + self.slant[unknown]
+
+    def independent(self, first: Candidate, second: Candidate, e: int, f: int) -> bool:
+        """Return whether two equations in the same two unknowns decide both."""
+        a, b = (self._coefficient(first, bar) for bar in (e, f))
+        c, d = (self._coefficient(second, bar) for bar in (e, f))
+        return bool((a * d - b * c) % self.layout.prime)
+
+    def _coefficient(self, candidate: Candidate, bar: int) -> int:
+        X, Y, W = candidate.point
+        c, dx, dy = self.layout.lines[bar]
+        sign = 1 if candidate.body.kept >> self.layout.ends[bar][0] & 1 else -1
+        return sign * (W * c - X * dy + Y * dx)
 
     # --- candidates of a body ---------------------------------------------------------------------------
 
     def candidates(self, body: Body) -> list[Candidate]:
         """Return every equation of a body worth considering."""
         layout = self.layout
-        bars = layout.bits(body.cut)
+        bars = bits(body.cut)
         fixed, natural, place = self._body_price(body, bars)
         found = []
         for point, recipe in self._points(body, bars).items():
             live = dropped = 0
+            terms = 0.0
             for bar in bars:
                 if layout.passes(bar, point):
                     dropped |= 1 << bar
                 else:
                     live |= 1 << bar
+                    terms += self.terms[bar]
             if not live:
                 continue
             about, plain = self._about_price(body, point, recipe, dropped)
             price = fixed + about + DROPPED * (dropped & layout.members).bit_count() + self._loads_price(body, point)
             key = (*place, float(len(recipe[0])), *self._where(recipe))
-            found.append(Candidate(body, point, recipe, live, price, natural and plain, key))
+            found.append(Candidate(body, point, recipe, live, price, terms, natural and plain, key))
         return found
 
     def _points(self, body: Body, bars: list[int]) -> dict[Point, tuple[str, int, int]]:
@@ -150,7 +159,9 @@ class Prices:
         if body.found == "joint":
             for bar in bars:
                 points.setdefault(layout.across(bar), ("across", bar, 0))
-            return points
+            if body.cut & layout.members == body.cut:
+                return points
+            # a support's joint is the end section: moments about the far ends of its bars read well
         for bar in bars:
             for joint in layout.ends[bar]:
                 if joint >= 0:
@@ -180,9 +191,9 @@ class Prices:
         price = EQUATION
         natural = True
         price += MORE_BARS * max(0, len(members) - FEW_BARS)
-        if len(members) >= MANY_BARS or body.pieces > 1:
+        if len(members) >= MANY_BARS or body.surplus:
             natural = False
-        price += EXTRA_PIECE * (body.pieces - 1)
+        price += EXTRA_PIECE * body.surplus
         if body.found == "other":
             price += BENT
             natural = False

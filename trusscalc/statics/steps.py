@@ -7,8 +7,9 @@ never enters the proof; only the printed coefficient lever / L and force N = t L
 
 from __future__ import annotations
 
+from collections import ChainMap
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Literal
 
 from trusscalc.errors import TrusscalcError
@@ -185,9 +186,9 @@ def _load_terms(structure: Structure, cut: Cut, about: About, scale: Exact) -> l
         if name not in structure.loads:
             continue
         joint = structure.joints[name]
-        for axis, (ux, uy), amount in zip("xy", ((ONE, ZERO), (ZERO, ONE)), structure.loads[name], strict=True):
-            lever = about.lever(joint.x, joint.y, ux, uy)
-            if not amount or not lever:
+        for axis, amount in zip("xy", structure.loads[name], strict=True):
+            lever = about.axis_lever(axis, joint.x, joint.y) if amount else ZERO
+            if not lever:
                 continue
             if points_backwards(amount):
                 amount, lever = -amount, -lever  # noqa: PLW2901 - drawn, and written, the way it acts
@@ -252,11 +253,11 @@ def write_step(
         When an equation does not decide what it should, or its terms do not sum to zero: a defect of the
         program, caught before anything is printed.
     """
-    blank = dict.fromkeys(solves, ZERO)
-    drafts = [write_equation(structure, cut, about, {**known, **blank}, solves) for cut, about in bodies]
+    blank = ChainMap(dict.fromkeys(solves, ZERO), known)
+    drafts = [write_equation(structure, cut, about, blank, solves) for cut, about in bodies]
     found = _simultaneous(drafts, solves)
-    values = {**known, **found}
-    equations = tuple(write_equation(structure, cut, about, values, solves) for cut, about in bodies)
+    values = ChainMap(found, known)
+    equations = tuple(_completed(draft, found) for draft in drafts)
     for equation in equations:
         if equation.residual:
             message = f"step {number}: the terms do not sum to zero"
@@ -267,6 +268,15 @@ def write_step(
     kind: StepKind = bodies[0][0].kind if len({cut.kept for cut, _ in bodies}) == 1 else "pair"
     check = unused_check(structure, equations, values)
     return Step(number, kind, equations, solves, uses, results, letter, check), found
+
+
+def _completed(draft: Equation, found: Mapping[str, Exact]) -> Equation:
+    """Return the equation with the values just found in place of the unknowns."""
+    terms = tuple(
+        replace(term, tension=found[term.name]) if term.kind != "load" and term.name in found else term
+        for term in draft.terms
+    )
+    return replace(draft, terms=terms)
 
 
 def _simultaneous(drafts: list[Equation], solves: tuple[str, ...]) -> dict[str, Exact]:
