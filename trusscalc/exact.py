@@ -15,10 +15,13 @@ degree 8 elements multiply 20 times slower). Coefficients are sympy's ``QQ`` and
 from __future__ import annotations
 
 import math
+import operator
+import reprlib
 from collections.abc import Mapping
-from decimal import ROUND_HALF_EVEN, Context, Decimal
+from decimal import MAX_PREC, ROUND_HALF_EVEN, Context, Decimal
 from fractions import Fraction
-from functools import lru_cache
+from functools import lru_cache, reduce
+from numbers import Integral
 from typing import Any
 
 from sympy import factorint
@@ -33,8 +36,11 @@ Key = tuple[int, int]
 UNIT_KEY: Key = (1, 0)
 MOST_TERMS = 64
 MOST_NESTED_ROOTS = 3
-LARGEST_LEFT_TO_FACTOR = 10**24
+LARGEST_LEFT_TO_FACTOR = 10**15
 MANY_DIGITS = 400
+COMPARED_DIGITS = 12
+_LARGE_PRIMES: set[int] = set()
+"""Primes above 1000 met so far, so that products of them need no second search. It only saves time."""
 SMALL_PRIMES = tuple(n for n in range(2, 1000) if all(n % d for d in range(2, math.isqrt(n) + 1)))
 
 
@@ -160,7 +166,7 @@ class Exact:
         if len(self.terms) == 1:
             ((n, mask), coefficient) = next(iter(self.terms.items()))
             if not mask:
-                return Exact({(n, 0): 1 / (coefficient * n)}, self.tower, rounded=self.rounded)
+                return Exact({(n, 0): _plain(1 / (coefficient * n))}, self.tower, rounded=self.rounded)
         conjugate = _conjugate(self)
         return conjugate * (self * conjugate).inverse()
 
@@ -170,14 +176,23 @@ class Exact:
         right = _operand(other)
         if right is None:
             return NotImplemented
-        if self.tower != right.tower:
-            return not (self - right).terms
-        return self.terms == right.terms
+        if self.tower == right.tower and self.terms == right.terms:
+            return True
+        if self.symbols or right.symbols:  # one symbol may live in two fields
+            return self.symbols == right.symbols and not (self - right).terms
+        if self.tower == right.tower:
+            return False
+        # towers are costly to merge, and numbers that differ mostly differ early
+        near, far = approximate(self, COMPARED_DIGITS), approximate(right, COMPARED_DIGITS)
+        apart = near.copy_abs().max(far.copy_abs()).scaleb(2 - COMPARED_DIGITS)
+        return (near - far).copy_abs() <= apart and not (self - right).terms
 
     def __hash__(self) -> int:
-        # numbers with nested roots may be equal in different towers, so only their kind is hashed
+        if symbols := self.symbols:
+            return hash(symbols)
+        # numbers with nested roots may be equal in different towers, so their value is hashed
         if any(mask for _, mask in self.terms):
-            return hash("nested")
+            return hash(rounded(self, COMPARED_DIGITS))
         if self.is_rational:
             return hash(self.as_fraction())
         return hash(frozenset(self.terms.items()))
@@ -211,6 +226,10 @@ class Exact:
         """
         if not self.terms:
             return 0
+        if len(self.terms) == 1:
+            coefficient = next(iter(self.terms.values()))
+            if not isinstance(coefficient, FracElement):  # roots are positive
+                return 1 if coefficient > 0 else -1
         return 1 if approximate(self, 12) > 0 else -1
 
     def __abs__(self) -> Exact:
@@ -326,14 +345,20 @@ def exact(value: object) -> Exact:
         raise InexactNumberError(message)
     if isinstance(value, (int, Fraction)):
         return rational(value)
+    if isinstance(value, Integral):  # numpy's, say
+        return rational(int(value))
     if isinstance(value, float):
-        value = Decimal(repr(value))
+        value = Decimal(repr(float(value)))
     if isinstance(value, Decimal):
         if not value.is_finite():
             message = f"{value} is not a finite number"
             raise InexactNumberError(message)
+        if abs(value.adjusted()) > MANY_DIGITS:  # its fraction could fill the memory
+            message = f"{str(value)[:40]} is too large or too small a number"
+            raise InexactNumberError(message)
         return rational(Fraction(value))
-    message = f"{value!r} is not a number trusscalc can hold exactly; write it as text, such as '5*sqrt(3)/2'"
+    shown = reprlib.repr(value)
+    message = f"{shown} is not a number trusscalc can hold exactly; write it as text, such as '5*sqrt(3)/2'"
     raise InexactNumberError(message)
 
 
@@ -354,13 +379,20 @@ def _operand(value: object) -> Exact | None:
 def _plus(left: Any, right: Any) -> Any:
     if isinstance(left, FracElement) and isinstance(right, FracElement) and left.field != right.field:
         left, right = _same_field(left, right)
-    return left + right
+    return _plain(left + right)
 
 
 def _times(left: Any, right: Any) -> Any:
     if isinstance(left, FracElement) and isinstance(right, FracElement) and left.field != right.field:
         left, right = _same_field(left, right)
-    return left * right
+    return _plain(left * right)
+
+
+def _plain(coefficient: Any) -> Any:
+    """Return a rational function whose symbols have cancelled as the rational number it is."""
+    if isinstance(coefficient, FracElement) and coefficient.numer.is_ground and coefficient.denom.is_ground:
+        return QQ.convert(coefficient.numer.LC) / QQ.convert(coefficient.denom.LC)
+    return coefficient
 
 
 def _same_field(left: Any, right: Any) -> tuple[Any, Any]:
@@ -398,7 +430,7 @@ def _product(left: Exact, right: Exact, rounded: bool) -> Exact:
     for (n1, mask1), c1 in left.terms.items():
         for (n2, mask2), c2 in right.terms.items():
             common = math.gcd(n1, n2)
-            coefficient = _times(c1, c2) * common
+            coefficient = _times(c1, c2) * common if common > 1 else _times(c1, c2)
             key = (n1 // common * (n2 // common), mask1 ^ mask2)
             if mask1 & mask2:
                 piece = Exact({key: coefficient}, left.tower)
@@ -433,6 +465,10 @@ def _conjugate(value: Exact) -> Exact:
 @lru_cache(maxsize=4096)
 def _a_prime_of(n: int) -> int:
     for prime in SMALL_PRIMES:
+        if n % prime == 0:
+            return prime
+    # radicands are products of roots taken one by one: their large primes were found then
+    for prime in sorted(_LARGE_PRIMES):
         if n % prime == 0:
             return prime
     return int(min(factorint(n)))
@@ -554,11 +590,13 @@ def prime_factors(n: int) -> tuple[int, ...]:
 
 
 def _group(value: Exact) -> set[int]:
-    """Return the primes (and, as -1 - index, the nested roots) that value's terms are made of."""
+    """Return the primes (and, as -1 - index, the nested roots) that value's terms and their radicands are made of."""
     found: set[int] = set()
     for n, mask in value.terms:
         found |= set(prime_factors(n))
-        found |= {-1 - index for index in range(mask.bit_length()) if mask >> index & 1}
+        for index in range(mask.bit_length()):
+            if mask >> index & 1:
+                found |= {-1 - index} | _group(value.tower[index])
     return found
 
 
@@ -586,16 +624,17 @@ def _without_squares(n: int, proven: bool) -> tuple[int, int]:
     whole = math.isqrt(n)
     if whole * whole == n:
         return factor * whole, kept
-    # what is left has no factor below 1000: a product of at most two primes below 10^9
-    if proven and n >= 10**9:
-        if n > LARGEST_LEFT_TO_FACTOR:
-            message = f"the root of a number with so large prime factors ({len(str(n))} digits) is not supported"
-            raise InexactNumberError(message)
-        for prime, power in factorint(n).items():
-            factor *= prime ** (power // 2)
-            kept *= prime ** (power % 2)
-        return factor, kept
-    return factor, kept * n
+    # what is left has no factor below 1000 and is no square: below 10^9 it has no square factor either
+    if not proven:
+        return factor, kept * n
+    if n > LARGEST_LEFT_TO_FACTOR:
+        message = f"the root of a number with so large prime factors ({len(str(n))} digits) is not supported"
+        raise InexactNumberError(message)
+    for prime, power in factorint(n).items():
+        _LARGE_PRIMES.add(int(prime))
+        factor *= int(prime) ** (power // 2)
+        kept *= int(prime) ** (power % 2)
+    return factor, kept
 
 
 def sqrt(value: Exact, *, proven: bool = True) -> Exact:
@@ -649,14 +688,19 @@ def approximate(value: Exact, digits: int) -> Decimal:
     while True:
         total, size = _evaluated(value, Context(prec=precision, rounding=ROUND_HALF_EVEN))
         # every operation is off by half a unit in the last place; 3 digits cover some hundred operations
-        if total and abs(total) > size.scaleb(digits + 3 - precision):
+        if total and total.copy_abs() > size.scaleb(digits + 3 - precision):
             return total
         precision *= 2
 
 
 def _evaluated(value: Exact, context: Context) -> tuple[Decimal, Decimal]:
     """Return the value and the sum of its terms' sizes, which bounds the rounding error."""
-    roots = [context.sqrt(_evaluated(radicand, context)[0]) for radicand in value.tower]
+    # a radicand may be a small difference, so it is asked for its own correct digits
+    masks = reduce(operator.or_, (mask for _, mask in value.terms), 0)
+    roots = [
+        context.sqrt(approximate(radicand, context.prec)) if masks >> index & 1 else Decimal(0)
+        for index, radicand in enumerate(value.tower)
+    ]
     total, size = Decimal(0), Decimal(0)
     for (n, mask), coefficient in value.terms.items():
         if isinstance(coefficient, FracElement):
@@ -669,7 +713,7 @@ def _evaluated(value: Exact, context: Context) -> tuple[Decimal, Decimal]:
             if mask >> index & 1:
                 term = context.multiply(term, root)
         total = context.add(total, term)
-        size = context.add(size, abs(term))
+        size = context.add(size, term.copy_abs())
     return total, size
 
 
@@ -684,13 +728,14 @@ def rounded(value: Exact, places: int) -> Decimal:
     step = Decimal(1).scaleb(-places)
     if value.is_rational:
         scaled = value.as_fraction() * Fraction(10) ** places
-        return Decimal(round(scaled)).scaleb(-places, Context(prec=MANY_DIGITS))
+        return Decimal(round(scaled)).scaleb(-places, Context(prec=MAX_PREC))
     digits = 20 + places
     while True:
         near = approximate(value, digits)
-        context = Context(prec=MANY_DIGITS, rounding=ROUND_HALF_EVEN)
-        slack = abs(near).scaleb(-digits, context)
-        low, high = (x.quantize(step, context=context) for x in (near - slack, near + slack))
+        context = Context(prec=digits + abs(near.adjusted()) + 50, rounding=ROUND_HALF_EVEN)
+        slack = near.copy_abs().scaleb(-digits, context)
+        ends = (context.subtract(near, slack), context.add(near, slack))
+        low, high = (end.quantize(step, context=context) for end in ends)
         if low == high:  # a surd is never exactly on a tie, so more digits always decide
-            return low
+            return low or low.copy_abs()  # no minus zero
         digits *= 2
