@@ -17,14 +17,18 @@ from typing import Any
 from sympy.polys.fields import FracElement
 
 from trusscalc.errors import InexactNumberError
-from trusscalc.exact import ONE, ZERO, Exact, exact, rational, sqrt, symbol
+from trusscalc.exact import ONE, ZERO, Exact, approximate, exact, rational, sqrt, symbol
 
 LONGEST_TEXT = 1000
 DEEPEST_NESTING = 20
 LARGEST_EXPONENT = 24
 LARGEST_POWER_OF_TEN = 60
+LARGEST_FLOAT_POWER = 300
 MOST_DIGITS = 400
-LARGEST_BITS = 4000
+LARGEST_BITS = 20_000
+MOST_SYMBOL_TERMS = 16
+HIGHEST_DEGREE = 6
+MOST_HARD_ROOTS = 8
 ANGLE_DIGITS = 30
 FUNCTIONS = ("sqrt", "sin", "cos", "tan")
 MOST_HALVINGS = 3
@@ -63,7 +67,7 @@ def parse(text: str, symbols: Collection[str] = ()) -> Exact:
         message = f"the number {_quoted(text)} is longer than {LONGEST_TEXT} characters"
         raise InexactNumberError(message)
     try:
-        return _Reader(text, symbols).whole()
+        return _of_a_size(_Reader(text, symbols).whole())
     except InexactNumberError as problem:
         message = f"{_quoted(text)}: {problem}"
         raise InexactNumberError(message) from None
@@ -84,8 +88,20 @@ def number(value: object, symbols: Collection[str] = ()) -> Exact:
         return parse(value, symbols)
     if type(value).__module__.startswith("sympy."):
         # a sympy number is not a text of the user's: its own printing is read back by our parser
-        return parse(str(value), symbols)
-    return exact(value)
+        text = str(value)
+        if any(f"{function}(" in text for function in ("sin", "cos", "tan")):
+            message = f"{_quoted(text)}: sympy's angles are in radians; write text, such as 'sin(30)' for 30 degrees"
+            raise InexactNumberError(message)
+        return parse(text, symbols)
+    return _of_a_size(exact(value))
+
+
+def _of_a_size(value: Exact) -> Exact:
+    """Refuse what a float cannot hold; a symbol's value is checked when it is given."""
+    if value and not value.symbols and abs(approximate(value, 3).adjusted()) > LARGEST_FLOAT_POWER:
+        message = f"numbers beyond 1e{LARGEST_FLOAT_POWER} or below 1e-{LARGEST_FLOAT_POWER} are not supported"
+        raise InexactNumberError(message)
+    return value
 
 
 def _quoted(text: str) -> str:
@@ -101,6 +117,7 @@ class _Reader:
         self.tokens: list[tuple[str, str]] = []
         self.place = 0
         self.depth = 0
+        self.hard_roots: dict[tuple[str, Exact], Exact] = {}
         text = text.replace("\N{MINUS SIGN}", "-")
         end = 0
         while end < len(text.rstrip()):
@@ -131,14 +148,14 @@ class _Reader:
         value = self.product()
         while sign := self.next_sign("+", "-"):
             term = self.product()
-            value = value + term if sign == "+" else value - term
+            value = _of_a_length(value + term if sign == "+" else value - term)
         return value
 
     def product(self) -> Exact:
         value = self.signed()
         while sign := self.next_sign("*", "/"):
             factor = self.signed()
-            value = value * factor if sign == "*" else value / factor
+            value = _of_a_length(value * (factor if sign == "*" else _inverse(factor)))
         return value
 
     def signed(self) -> Exact:
@@ -162,9 +179,10 @@ class _Reader:
         if abs(power) > LARGEST_EXPONENT:
             message = f"exponents above {LARGEST_EXPONENT} are not supported"
             raise InexactNumberError(message)
-        value = base**power
-        _refuse_monsters(value)
-        return value
+        value = ONE
+        for _ in range(abs(power)):
+            value = _of_a_length(value * base)
+        return value if power >= 0 else _of_a_length(_inverse(value))
 
     def deeper(self) -> None:
         self.depth += 1
@@ -202,8 +220,7 @@ class _Reader:
             if not self.next_sign("("):
                 message = f"{text} needs a parenthesis: {text}(...)"
                 raise InexactNumberError(message)
-            inside = self.bracket()
-            return sqrt(inside) if text == "sqrt" else _of_angle(text, inside)
+            return self.function(text, self.bracket())
         if text in self.symbols:
             return symbol(text)
         if text == "pi":
@@ -214,6 +231,18 @@ class _Reader:
             )
         raise InexactNumberError(message)
 
+    def function(self, name: str, inside: Exact) -> Exact:
+        """Return a root, sine, cosine or tangent; those that need a search for nested roots are counted."""
+        if (name, inside) in self.hard_roots:
+            return self.hard_roots[name, inside]
+        value = sqrt(inside) if name == "sqrt" else _of_angle(name, inside)
+        if value.tower or not inside.is_rational:
+            self.hard_roots[name, inside] = value
+            if len(self.hard_roots) > MOST_HARD_ROOTS:
+                message = f"more than {MOST_HARD_ROOTS} different nested roots or such angles; use fewer"
+                raise InexactNumberError(message)
+        return value
+
 
 def _decimal(text: str) -> Exact:
     mantissa, _, power = text.lower().partition("e")
@@ -223,17 +252,33 @@ def _decimal(text: str) -> Exact:
     return rational(Fraction(mantissa.rstrip(".") or "0") * Fraction(10) ** int(power or 0))
 
 
-def _refuse_monsters(value: Exact) -> None:
-    longest = max((_bits(c) for c in value.terms.values()), default=0)
-    if longest > LARGEST_BITS:
-        message = "the power is too large a number"
+def _of_a_length(value: Exact) -> Exact:
+    """Refuse a number that has grown beyond what anybody would write, before the next step doubles it."""
+    if sum(_bits(c) for c in value.terms.values()) > LARGEST_BITS:
+        message = "the number becomes too long when it is worked out"
         raise InexactNumberError(message)
+    for coefficient in value.terms.values():
+        if isinstance(coefficient, FracElement):
+            parts = (coefficient.numer, coefficient.denom)
+            count = sum(len(part.terms()) for part in parts)
+            degree = max(sum(powers) for part in parts for powers, _ in part.terms())
+            if count > MOST_SYMBOL_TERMS or degree > HIGHEST_DEGREE:
+                message = "too many different products of symbols; write a simpler load"
+                raise InexactNumberError(message)
+    return value
+
+
+def _inverse(value: Exact) -> Exact:
+    if len(value.terms) > 1 and value.symbols:
+        message = "roots and symbols added together cannot be divided by; write a simpler load"
+        raise InexactNumberError(message)
+    return value.inverse()
 
 
 def _bits(coefficient: Any) -> int:
     if isinstance(coefficient, FracElement):
-        return 0
-    return int(max(int(coefficient.numerator).bit_length(), int(coefficient.denominator).bit_length()))
+        return sum(_bits(factor) for part in (coefficient.numer, coefficient.denom) for _, factor in part.terms())
+    return int(coefficient.numerator).bit_length() + int(coefficient.denominator).bit_length()
 
 
 # --- angles -----------------------------------------------------------------------------------------------

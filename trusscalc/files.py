@@ -13,9 +13,9 @@ import warnings
 from pathlib import Path
 from typing import Any, Final
 
-from trusscalc.errors import FileFormatError, InexactNumberError, InputError, TrusscalcWarning
+from trusscalc.errors import FileFormatError, InputError, TrusscalcWarning
 from trusscalc.exact import ONE, Exact
-from trusscalc.exacttext import number, to_text
+from trusscalc.exacttext import to_text
 from trusscalc.filetext import LARGEST_FILE, data_of, faulty, one_line
 from trusscalc.loads import Combination, LoadCase
 from trusscalc.project import LINES, Project, line_fault
@@ -137,6 +137,7 @@ def reads(text: str, source: str = "") -> TrussFile:
     if problems and any("too many" in problem for problem in problems):
         raise faulty(problems, text, source)
     truss = _truss(data, tables, problems)
+    problems = [_about_symbols(problem, tables["symbols"]) for problem in problems]
     cases = _cases(tables["cases"], _symbols(tables["symbols"], problems), problems)
     combinations = _combinations(tables["combinations"], problems)
     project = _project(tables["project"], problems)
@@ -229,6 +230,12 @@ def _truss(data: dict[str, Any], tables: dict[str, dict[str, Any]], problems: li
     return None
 
 
+def _about_symbols(problem: str, symbols: dict[str, Any]) -> str:
+    if problem.startswith("[joints]") and any(f"{name!r} is not known here" in problem for name in symbols):
+        return f"{problem.partition(' is not known here')[0]} is a symbol, and symbols may stand in loads only"
+    return problem
+
+
 def _symbols(table: dict[str, Any], problems: list[str]) -> dict[str, Exact]:
     """Return the symbols; a wrong value counts as 1 while the rest of the file is looked through."""
     values: dict[str, Exact] = {}
@@ -267,14 +274,11 @@ def _combinations(tables: dict[str, Any], problems: list[str]) -> list[Combinati
         if not isinstance(table, dict) or not table:
             problems.append(f'[combinations] {name}: a table of case = factor is needed, such as dead = "1.2"')
             continue
-        factors = []
-        for case, factor in table.items():
-            try:
-                factors.append((case, number(factor)))
-            except InexactNumberError as fault:
-                problems.append(f"[combinations.{name}] {case}: {fault}")
-                factors.append((case, ONE))
-        combinations.append(Combination(name, tuple(factors)))
+        try:
+            combinations.append(Combination(name, table))
+        except InputError as fault:
+            problems += fault.problems
+            combinations.append(Combination(name, dict.fromkeys(table, 1)))
     return combinations
 
 
