@@ -11,8 +11,13 @@ import json
 import sys
 import warnings
 from collections.abc import Sequence
+from typing import TYPE_CHECKING
 
 from trusscalc.errors import TrusscalcError, TrusscalcWarning
+
+if TYPE_CHECKING:
+    from trusscalc.membercheck import MemberCheck
+    from trusscalc.trussfile import TrussFile
 
 AGREED, DISAGREED, REFUSED = 0, 1, 2
 
@@ -49,7 +54,7 @@ def _parser() -> argparse.ArgumentParser:
     return parser
 
 
-def _checked(arguments: argparse.Namespace):
+def _checked(arguments: argparse.Namespace) -> tuple[TrussFile, MemberCheck]:
     from trusscalc.files import read  # noqa: PLC0415
     from trusscalc.membercheck import check_members  # noqa: PLC0415
 

@@ -225,7 +225,7 @@ def _derivation(
         for cut, _ in planned.bodies:
             if cut.kind == "section":
                 letter = letters.setdefault(cut.bars, section_letter(len(letters)))
-        step, found = write_step(structure, number, planned.bodies, planned.solves, tensions, letter)
+        step, found = write_step(structure, number, planned.bodies, planned.solves, tensions, letter=letter)
         steps.append(step)
         tensions.update(found)
     return tuple(steps), tensions
@@ -245,7 +245,7 @@ def _residuals(
 class _Judge:
     """Turns a name into its ForceCheck; holds what all verdicts share."""
 
-    def __init__(
+    def __init__(  # noqa: PLR0917 - built in one place
         self,
         case: LoadCase,
         structure: Structure,

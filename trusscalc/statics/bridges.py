@@ -46,9 +46,9 @@ def _centres(layout: Layout, unknown: list[int]) -> list[Point]:
         if len(points) > MOST_CENTRES:
             break
         for second in unknown[place + 1 :]:
-            point = layout.meeting(first, second)
-            if point is not None:
-                points[point] = None
+            crossing = layout.meeting(first, second)
+            if crossing is not None:
+                points[crossing] = None
     return list(points)
 
 

@@ -13,8 +13,8 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 
-from trusscalc.statics.incidence import AXIS_X, bits
-from trusscalc.statics.prices import AXIS_Y, DEPTH, PAIR, Candidate, Prices
+from trusscalc.statics.incidence import AXIS_X, AXIS_Y, bits
+from trusscalc.statics.prices import DEPTH, PAIR, Candidate, Prices
 
 MOST_ROUNDS = 400
 SMALL = 1e-9
@@ -106,15 +106,15 @@ class Derivations:
                 by_unknowns.setdefault(unknown, []).append(candidate)
         best: dict[int, tuple[Rank, tuple[Candidate, Candidate], int]] = {}
         for unknown, candidates in by_unknowns.items():
-            pair = self._best_pair(unknown, candidates)
-            for bar in bits(unknown) if pair else ():
-                assert pair is not None  # noqa: S101 - the loop is empty otherwise
-                if bar not in best or pair[0] < best[bar][0]:
-                    best[bar] = (*pair, unknown)
+            found = self._best_pair(unknown, candidates)
+            if found is None:
+                continue
+            for bar in bits(unknown):
+                if bar not in best or found[0] < best[bar][0]:
+                    best[bar] = (*found, unknown)
         for bar, (rank, pair, unknown) in best.items():
             partner = unknown & ~(1 << bar)
-            other = partner.bit_length() - 1
-            if best[other][2] == unknown:
+            if best[partner.bit_length() - 1][2] == unknown:
                 self._take(bar, Choice(pair, 0, rank[0] / 2, partner), natural=True)
 
     def _best_pair(self, unknown: int, candidates: list[Candidate]) -> tuple[Rank, tuple[Candidate, Candidate]] | None:
@@ -239,6 +239,12 @@ class Derivations:
             for solved in steps[-1].solves:
                 done |= 1 << solved
         return steps
+
+
+def _written_first(first: Candidate, second: Candidate) -> bool:
+    """Return whether the first equation of a pair is written before the second: joints, then axis sums, then left."""
+    keys = [(c.body.found != "joint", c.recipe[0] != "axis", c.place) for c in (first, second)]
+    return keys[0] <= keys[1]
 
 
 def found_by(steps: Sequence[Found]) -> int:

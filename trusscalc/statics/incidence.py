@@ -180,8 +180,8 @@ class Layout:
     def passes(self, bar: int, point: Point) -> bool:
         """Return whether the bar drops out of the sum about the point."""
         c, dx, dy = self.lines[bar]
-        X, Y, W = point
-        return not (W * c - X * dy + Y * dx) % self.prime
+        px, py, pw = point
+        return not (pw * c - px * dy + py * dx) % self.prime
 
     def across(self, bar: int) -> Point:
         """Return the direction in whose sum the bar and its parallels drop out."""
@@ -195,23 +195,22 @@ class Layout:
         c2, dx2, dy2 = self.lines[second]
         p = self.prime
         # the line of a bar is the triple (-dy, dx, c); two lines meet in their cross product
-        X = (dx1 * c2 - c1 * dx2) % p
-        Y = (dy1 * c2 - c1 * dy2) % p
-        W = (dx1 * dy2 - dy1 * dx2) % p
-        if not W and not X and not Y:
+        px = (dx1 * c2 - c1 * dx2) % p
+        py = (dy1 * c2 - c1 * dy2) % p
+        pw = (dx1 * dy2 - dy1 * dx2) % p
+        if not pw and not px and not py:
             return None
-        return self.normal((X, Y, W))
+        return self.normal((px, py, pw))
 
     def normal(self, point: Point) -> Point:
         """Return the one representative of a homogeneous point."""
-        X, Y, W = point
         p = self.prime
-        X, Y, W = X % p, Y % p, W % p
-        leading = W or X or Y
+        px, py, pw = point[0] % p, point[1] % p, point[2] % p
+        leading = pw or px or py
         if leading == 1:
-            return X, Y, W
+            return px, py, pw
         factor = pow(leading, -1, p)
-        return X * factor % p, Y * factor % p, W * factor % p
+        return px * factor % p, py * factor % p, pw * factor % p
 
 
 def layout_of(structure: Structure, loads: dict[str, tuple[float, float]]) -> Layout:

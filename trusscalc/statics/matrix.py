@@ -129,7 +129,7 @@ def solve(truss: Truss, case: LoadCase) -> Equilibrium:
     result = _rational_solution(rows, loads, len(bars)) or _field_solution(rows, loads, len(bars))
     pivots, free_of, values = result
     if len(pivots) < len(rows):
-        raise _mechanism(truss, case, bars, rows, order)
+        raise _mechanism(truss, bars, rows, order)
     tensions: dict[str, Exact] = {}
     for place, column in enumerate(columns):
         if place in pivots and not free_of[place]:
@@ -269,31 +269,39 @@ def _scaling(rows: list[dict[int, Exact]], width: int) -> tuple[list[Exact], lis
     """Return factors for rows and columns that make every entry rational, or None."""
     if all(part.is_rational for row in rows for part in row.values()):
         return [ONE] * len(rows), [ONE] * width
+    row_scale, column_scale = _spread_scales(rows, width)
+    fits = all(
+        (row_scale[index] * entry * column_scale[column]).is_rational
+        for index, row in enumerate(rows)
+        for column, entry in row.items()
+    )
+    if not fits:
+        return None
+    return [row_scale[index] for index in range(len(rows))], [column_scale.get(c, ONE) for c in range(width)]
+
+
+def _spread_scales(rows: list[dict[int, Exact]], width: int) -> tuple[dict[int, Exact], dict[int, Exact]]:
+    """Return factors that make one entry of every row and column rational, passed on from entry to entry."""
     in_column: list[list[int]] = [[] for _ in range(width)]
     for index, row in enumerate(rows):
         for column in row:
             in_column[column].append(index)
-    row_scale: list[Exact | None] = [None] * len(rows)
-    column_scale: list[Exact | None] = [None] * width
+    row_scale: dict[int, Exact] = {}
+    column_scale: dict[int, Exact] = {}
     for start in range(len(rows)):
-        if row_scale[start] is not None:
-            continue
-        row_scale[start] = ONE
-        waiting = [start]
+        waiting = [] if start in row_scale else [start]
+        row_scale.setdefault(start, ONE)
         while waiting:
             index = waiting.pop()
-            here = row_scale[index]
-            assert here is not None  # noqa: S101 - a row waits only once it has its factor
             for column, entry in rows[index].items():
-                if column_scale[column] is None:
-                    column_scale[column] = _root_part(here * entry).inverse()
-                    for other in in_column[column]:
-                        if row_scale[other] is None:
-                            row_scale[other] = _root_part(rows[other][column] * column_scale[column]).inverse()
-                            waiting.append(other)
-                if not (here * entry * column_scale[column]).is_rational:
-                    return None
-    return [scale or ONE for scale in row_scale], [scale or ONE for scale in column_scale]
+                if column in column_scale:
+                    continue
+                column_scale[column] = _root_part(row_scale[index] * entry).inverse()
+                new = [other for other in in_column[column] if other not in row_scale]
+                for other in new:
+                    row_scale[other] = _root_part(rows[other][column] * column_scale[column]).inverse()
+                waiting += new
+    return row_scale, column_scale
 
 
 def _root_part(value: Exact) -> Exact:
@@ -307,25 +315,18 @@ def _root_part(value: Exact) -> Exact:
 
 
 def _mechanism(
-    truss: Truss, case: LoadCase, bars: tuple[Bar, ...], rows: list[dict[int, Exact]], order: Mapping[str, int]
+    truss: Truss, bars: tuple[Bar, ...], rows: list[dict[int, Exact]], order: Mapping[str, int]
 ) -> UnstableTrussError:
     """Return the error that names the joints that move, from the exact null vectors of the transposed matrix."""
-    del case
     transposed: dict[int, Row] = {}
     for index, row in enumerate(rows):
         for column, entry in row.items():
             transposed.setdefault(column, {})[index] = entry
     reduced, pivots, _ = sdm_irref(transposed)
-    count = len(rows)
-    free = sorted(set(range(count)) - set(pivots))
-    moves: dict[int, float] = {}
-    touched: set[int] = set(free)
-    for place, pivot in enumerate(pivots):
-        beside = [column for column in reduced[place] if column in set(free)]
-        if beside:
-            touched.add(pivot)
+    free = sorted(set(range(len(rows))) - set(pivots))
+    touched = set(free) | {pivot for place, pivot in enumerate(pivots) if len(reduced[place]) > 1}
     first = free[0]
-    moves[first] = 1.0
+    moves = {first: 1.0}
     for place, pivot in enumerate(pivots):
         if first in reduced[place]:
             moves[pivot] = -float(reduced[place][first])

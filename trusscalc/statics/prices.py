@@ -123,10 +123,10 @@ class Prices:
         return bool((a * d - b * c) % self.layout.prime)
 
     def _coefficient(self, candidate: Candidate, bar: int) -> int:
-        X, Y, W = candidate.point
+        px, py, pw = candidate.point
         c, dx, dy = self.layout.lines[bar]
         sign = 1 if candidate.body.kept >> self.layout.ends[bar][0] & 1 else -1
-        return sign * (W * c - X * dy + Y * dx)
+        return sign * (pw * c - px * dy + py * dx)
 
     # --- candidates of a body ---------------------------------------------------------------------------
 
@@ -162,6 +162,12 @@ class Prices:
             if body.cut & layout.members == body.cut:
                 return points
             # a support's joint is the end section: moments about the far ends of its bars read well
+        self._add_centres(points, bars)
+        return points
+
+    def _add_centres(self, points: dict[Point, tuple[str, int, int]], bars: list[int]) -> None:
+        """Add the ends of the cut bars, and where two of their lines meet."""
+        layout = self.layout
         for bar in bars:
             for joint in layout.ends[bar]:
                 if joint >= 0:
@@ -176,7 +182,6 @@ class Prices:
                     points[point] = ("joint", joint, 0)
                 else:
                     points[point] = ("meet", first, second) if point[2] else ("across", first, 0)
-        return points
 
     def _body_price(self, body: Body, bars: list[int]) -> tuple[float, bool, tuple[float, ...]]:
         layout = self.layout
@@ -212,18 +217,17 @@ class Prices:
         kind, index, _ = recipe
         if kind == "axis":
             return 0.0, True
-        if kind == "joint":
-            if layout.at[index] & body.cut:
-                return CENTRE, True
-            return CENTRE + CENTRE_AWAY_FROM_CUT, False
         if kind == "meet":
             return CENTRE_OFF_JOINTS + self._outside(recipe), False
-        if body.found == "joint":
-            if dropped.bit_count() > 1:
-                return SHARED_LINE_SUM, True
-            at_support = body.cut & ~layout.members
-            return (OBLIQUE_SUM if at_support else SINGLE_DROP_SUM), False
-        return (CHORD_SUM, True) if point in self.chords else (OBLIQUE_SUM, False)
+        if kind == "joint":
+            near = bool(layout.at[index] & body.cut)
+            return CENTRE + (0.0 if near else CENTRE_AWAY_FROM_CUT), near
+        if body.found != "joint":
+            return (CHORD_SUM, True) if point in self.chords else (OBLIQUE_SUM, False)
+        if dropped.bit_count() > 1:
+            return SHARED_LINE_SUM, True
+        at_support = body.cut & ~layout.members
+        return (OBLIQUE_SUM if at_support else SINGLE_DROP_SUM), False
 
     def _meeting_place(self, recipe: tuple[str, int, int]) -> tuple[float, float]:
         layout = self.layout

@@ -227,7 +227,8 @@ def write_step(
     number: int,
     bodies: tuple[tuple[Cut, About], ...],
     solves: tuple[str, ...],
-    known: Mapping[str, Exact],
+    known: dict[str, Exact],
+    *,
     letter: str = "",
 ) -> tuple[Step, dict[str, Exact]]:
     """Return a step, and the tension coefficients it found.
@@ -242,7 +243,7 @@ def write_step(
         One for each equation.
     solves : tuple of str
         As many unknowns.
-    known : mapping of str to Exact
+    known : dict of str to Exact
         t of everything solved before.
     letter : str
         The section's letter.
