@@ -18,9 +18,10 @@ from trusscalc.sheet.marks import Figure
 
 @dataclass(frozen=True, slots=True)
 class Value:
-    """An exact number, printed in full."""
+    """An exact number, printed in full; ``decimal``: a short terminating fraction is written 2.5, not 5/2."""
 
     value: Exact
+    decimal: bool = True
 
 
 @dataclass(frozen=True, slots=True)
@@ -31,8 +32,17 @@ class Decimals:
 
 
 @dataclass(frozen=True, slots=True)
+class Power:
+    """A size told by its power of ten: ``6.0 * 10^-7``; without mantissa the power alone; ``below``: less than it."""
+
+    mantissa: str
+    exponent: int
+    below: bool = False
+
+
+@dataclass(frozen=True, slots=True)
 class Name:
-    """A force in symbols: ``N`` with subscript ``U3-U4``; ``sought`` marks what the step solves for."""
+    """A force in symbols: ``N`` with subscript ``U3–U4``; ``sought`` marks what the step solves for."""
 
     base: str
     subscript: str
@@ -40,23 +50,34 @@ class Name:
 
 
 @dataclass(frozen=True, slots=True)
-class Factor:
+class Bracket:
+    """A sum in brackets, as a factor: (4 + 8 + 12)."""
+
+    terms: tuple[Product, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Product:
     """A signed product in a sum: sign, then factors, a raised dot between numbers.
 
-    ``factors`` are printed in order; a factor 1 is left out by whoever makes the list, not by the renderer.
+    ``factors`` are printed in order, at least one; a factor 1 is left out by whoever makes the list, not by the
+    renderer.
     """
 
     negative: bool
-    factors: tuple[Value | Decimals | Name, ...]
+    factors: tuple[Value | Decimals | Name | Bracket, ...]
 
 
 @dataclass(frozen=True, slots=True)
 class Formula:
-    """A sum of products on the left, a sum (usually one number) on the right of one equals sign."""
+    """One written line: a sum on the left and, unless ``right`` is empty, one relation sign and a sum on the right.
 
-    left: tuple[Factor, ...]
-    right: tuple[Factor, ...]
-    unit: str = ""
+    ``approximately`` says that a rounded decimal stands in the line, so that it holds to its digits only.
+    """
+
+    left: tuple[Product, ...]
+    right: tuple[Product, ...]
+    approximately: bool = False
 
 
 # --- text -------------------------------------------------------------------------------------------------
@@ -70,7 +91,7 @@ class Run:
     style: Literal["plain", "strong", "emphasis"] = "plain"
 
 
-Inline = Run | Formula | Value | Name | Decimals
+Inline = Run | Formula | Value | Name | Decimals | Power
 
 
 @dataclass(frozen=True, slots=True)
@@ -93,14 +114,14 @@ class Paragraph:
 
 @dataclass(frozen=True, slots=True)
 class Items:
-    """A list of short statements."""
+    """Short statements, each with what it is about: (``Not covered``, ...); the term may be ''."""
 
-    items: tuple[tuple[Inline, ...], ...]
+    items: tuple[tuple[str, tuple[Inline, ...]], ...]
 
 
 @dataclass(frozen=True, slots=True)
 class Labelled:
-    """One labelled line of a derivation: which sum, with values, hence."""
+    """One labelled line of a derivation: which sum, with values, hence. A continued line has no label."""
 
     label: str
     formula: Formula
@@ -123,12 +144,17 @@ class Column:
 
 @dataclass(frozen=True, slots=True)
 class Table:
-    """A table; a row in ``strong_rows`` is set bold (a disagreement)."""
+    """A table; a row in ``strong_rows`` is set bold (a disagreement), the last ``totals`` rows under a rule.
+
+    ``role``: ``result`` is the result of one step, which a narrow column may set turned by ninety degrees.
+    """
 
     columns: tuple[Column, ...]
     rows: tuple[tuple[Inline | None, ...], ...]
     caption: str = ""
     strong_rows: tuple[int, ...] = ()
+    totals: int = 0
+    role: Literal["plain", "result"] = "plain"
 
 
 @dataclass(frozen=True, slots=True)
@@ -139,6 +165,14 @@ class TitleBlock:
 
 
 @dataclass(frozen=True, slots=True)
+class Seal:
+    """Room for a seal, kept clear, and beside it the lines to sign on."""
+
+    lines: tuple[str, ...] = ("signature", "date")
+    side: float = 55.0
+
+
+@dataclass(frozen=True, slots=True)
 class Picture:
     """A figure on the sheet; several side by side when more than one."""
 
@@ -146,19 +180,101 @@ class Picture:
 
 
 @dataclass(frozen=True, slots=True)
-class Code:
-    """Program text of a notebook: a cell that can be run again; other renderers print it or leave it out."""
+class Listing:
+    """Verbatim text: the truss file the sheet was derived from."""
 
-    source: str
-    purpose: str
-
-
-Block = Heading | Paragraph | Items | Lines | Table | TitleBlock | Picture | Code
+    text: str
+    caption: str
 
 
 @dataclass(frozen=True, slots=True)
-class SheetContent:
-    """Everything on a sheet, in order."""
+class Derivation:
+    """One step: never parted from its heading, breaks allowed only before ``check``.
+
+    Attributes
+    ----------
+    heading : Heading
+        Number, what is found, and its value.
+    reason : Paragraph
+        Why this cut.
+    picture : Picture or None
+        The free bodies.
+    lines : Lines
+        Which sum, with values, hence.
+    tables : tuple of Table
+        Loads collected to their resultant, names of the symbols.
+    result : Table
+        Exact, decimal, sense, stiffness value, difference, verdict.
+    check : Lines or None
+        An equation not used before; None when there is none left, which ``notes`` then say.
+    notes : tuple of Paragraph
+        What a reader with a pencil has to know.
+    """
+
+    heading: Heading
+    reason: Paragraph
+    picture: Picture | None
+    lines: Lines
+    tables: tuple[Table, ...]
+    result: Table
+    check: Lines | None
+    notes: tuple[Paragraph, ...] = ()
+
+
+Block = Heading | Paragraph | Items | Lines | Table | TitleBlock | Seal | Picture | Listing | Derivation
+
+
+@dataclass(frozen=True, slots=True)
+class Origin:
+    """What a sheet was derived from, enough to derive it again.
+
+    Attributes
+    ----------
+    truss_text : str
+        The truss file.
+    case : str
+        Load case or combination.
+    members : tuple of str
+        The members asked for.
+    places : int
+        Decimal places printed.
+    project : tuple of (str, str)
+        The filled fields of the title block.
+    stated : tuple of (str, str)
+        Every member force and reaction found, as exact text.
+    agreed : bool
+        Whether everything agreed.
+    program : str
+        Program and version.
+    """
+
+    truss_text: str
+    case: str
+    members: tuple[str, ...]
+    places: int
+    project: tuple[tuple[str, str], ...]
+    stated: tuple[tuple[str, str], ...]
+    agreed: bool
+    program: str
+
+
+@dataclass(frozen=True, slots=True)
+class Sheet:
+    """A calculation sheet.
+
+    Attributes
+    ----------
+    title : str
+        What it is called.
+    blocks : tuple of Block
+        Everything on it, in order.
+    summary : tuple of Block
+        Conclusion and summary table alone.
+    origin : Origin
+        What it was derived from.
+    """
 
     title: str
     blocks: tuple[Block, ...]
+    summary: tuple[Block, ...]
+    origin: Origin

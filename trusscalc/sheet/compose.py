@@ -1,0 +1,139 @@
+"""A check as a calculation sheet: every part in its order, nothing computed that the check does not hold."""
+
+from __future__ import annotations
+
+import warnings
+from dataclasses import replace
+
+from trusscalc.errors import InputError, TrusscalcWarning
+from trusscalc.exacttext import to_text
+from trusscalc.files import TrussFile, reads, writes
+from trusscalc.loads import LoadCase
+from trusscalc.membercheck import MemberCheck
+from trusscalc.project import LINES, Project
+from trusscalc.sheet import figures, front, record
+from trusscalc.sheet.blocks import Block, Heading, Origin, Picture, Sheet
+from trusscalc.sheet.derivation import Writer, writer_of
+from trusscalc.statics.steps import Step
+from trusscalc.truss import Truss
+
+MOST_PLACES = 12
+
+
+def compose(
+    check: MemberCheck, project: Project | None = None, *, truss_text: str = "", places: int = 3, drawings: bool = True
+) -> Sheet:
+    """Return the calculation sheet of a check.
+
+    Parameters
+    ----------
+    check : MemberCheck
+        What was found.
+    project : Project, optional
+        The title block; without it, that of ``truss_text``.
+    truss_text : str
+        The truss file as it was read, for echo and digest; '' writes one from the check.
+    places : int
+        Decimal places, 0 to 12.
+    drawings : bool
+        Whether figures are drawn.
+
+    Raises
+    ------
+    InputError
+        When ``truss_text`` states another truss or other loads than were checked, or places are out of range.
+
+    Examples
+    --------
+    >>> from trusscalc.membercheck import check_members
+    >>> truss = Truss({"A": (0, 0), "B": (4, 0), "C": (2, 1)}, ["A-B", "A-C", "B-C"], {"A": "pin", "B": "roller"})
+    >>> sheet = compose(check_members(truss, LoadCase("dead", {"C": (0, -2)}), ["A-C"]))
+    >>> [block.text for block in sheet.blocks if isinstance(block, Heading) and block.level == 2][:3]
+    ['Scope', 'Basis', 'Input']
+    """
+    if not 0 <= places <= MOST_PLACES:
+        message = f"{places} decimal places: give a number from 0 to {MOST_PLACES}"
+        raise InputError(message)
+    stated = _stated(check, truss_text) if truss_text else None
+    project = project or (stated.project if stated else Project())
+    text = truss_text or writes(TrussFile(check.truss, (check.case,), (), project))
+    writer = writer_of(check, places)
+    summary = tuple([*front.opening(check, project), *front.summary(writer)])
+    blocks: list[Block] = [
+        front.title_block(check, project),
+        *summary,
+        *([Picture((figures.elevation(check),))] if drawings else []),
+        *front.scope(check),
+        *record.basis(check, text, places),
+        *record.input_echo(writer, project, text),
+        *record.loads(writer),
+        *record.reactions(writer),
+        *derivations(writer, drawings=drawings),
+        *record.cross_check(check),
+        *([Picture((figures.result_drawing(check),))] if drawings else []),
+        *record.cautions(),
+        *record.revisions(project),
+    ]
+    title = f"{front.TITLE}: {check.truss.title}" if check.truss.title else front.TITLE
+    return Sheet(title, tuple(blocks), summary, _origin(check, project, text, places))
+
+
+def derivations(writer: Writer, *, drawings: bool = True) -> list[Block]:
+    """Return all steps in their order: those that find reactions first stand under their own heading."""
+    blocks: list[Block] = []
+    heading = ""
+    for step in writer.check.steps:
+        links = all(writer.teller.is_link(name) for name in step.solves)
+        wanted = "Derivation of the reactions" if links and heading != "Derivation of the members" else ""
+        wanted = wanted or "Derivation of the members"
+        if wanted != heading:
+            heading = wanted
+            blocks.append(Heading(2, heading))
+        blocks.append(writer.derivation(step, step_figures(writer, step) if drawings else ()))
+    return blocks
+
+
+def step_figures(writer: Writer, step: Step) -> tuple[figures.Figure, ...]:
+    """Return the free bodies of a step."""
+    return figures.free_body(writer.check, step)
+
+
+def _stated(check: MemberCheck, truss_text: str) -> TrussFile:
+    """Return what the text states, once it is sure to be what was checked."""
+    with warnings.catch_warnings():
+        warnings.simplefilter("ignore", TrusscalcWarning)
+        stated = reads(truss_text)
+    if _without_groups(stated.truss) != _without_groups(check.truss):
+        message = "the text of the truss file states another truss than was checked; give the text it was read from"
+        raise InputError(message)
+    if _loads(stated.case(check.case.name)) != _loads(check.case):
+        message = f"the text of the truss file states other loads for {check.case.name!r} than were checked"
+        raise InputError(message)
+    return stated
+
+
+def _without_groups(truss: Truss) -> tuple[object, ...]:
+    members = tuple(replace(member, group="") for member in truss.members)
+    return (truss.joints, members, truss.supports, truss.length, truss.force, truss.tension_only, truss.no_uplift)
+
+
+def _loads(case: LoadCase) -> tuple[object, ...]:
+    return case.loads, tuple((name, value) for name, value in case.symbols if _uses(case, name))
+
+
+def _uses(case: LoadCase, name: str) -> bool:
+    return any(name in part.symbols for load in case.loads for part in (load.fx, load.fy))
+
+
+def _origin(check: MemberCheck, project: Project, text: str, places: int) -> Origin:
+    results = {name: value for step in check.steps for name, value in step.results.items()}
+    return Origin(
+        truss_text=text,
+        case=check.case.name,
+        members=tuple(check.members),
+        places=places,
+        project=tuple((key, getattr(project, key)) for key in LINES if getattr(project, key)),
+        stated=tuple((name, to_text(value)) for name, value in results.items()),
+        agreed=check.agreed,
+        program=record.program(),
+    )

@@ -1,0 +1,279 @@
+"""The first sheet: title block, conclusion, summary table, flags, scope. What has to be seen first stands first."""
+
+from __future__ import annotations
+
+from trusscalc.exact import ZERO, Exact
+from trusscalc.membercheck import ForceCheck, MemberCheck
+from trusscalc.project import Project
+from trusscalc.sheet.blocks import (
+    Block,
+    Column,
+    Decimals,
+    Heading,
+    Inline,
+    Items,
+    Paragraph,
+    Run,
+    Seal,
+    Table,
+    TitleBlock,
+)
+from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer
+from trusscalc.sheet.values import bound, decimal_text, difference, scientific
+from trusscalc.sheet.words import bar, capital, counted, listed
+
+TITLE = "Independent check of truss member forces"
+
+FIELDS = (
+    "project",
+    "structure",
+    "location",
+    "contract",
+    "calculation",
+    "revision",
+    "date",
+    "prepared",
+    "checked",
+    "approved",
+)
+
+
+def title_block(check: MemberCheck, project: Project) -> TitleBlock:
+    """Return the title block; the structure's name comes from the truss when the project has none."""
+    entries = {field: getattr(project, field) for field in FIELDS}
+    entries["structure"] = entries["structure"] or check.truss.title
+    return TitleBlock(tuple((capital(field), entries[field]) for field in FIELDS))
+
+
+def opening(check: MemberCheck, project: Project) -> list[Block]:
+    """Return title and the line that says what loads these are."""
+    loads = {"": "service or factored not stated", "service": "service loads", "factored": "factored loads"}
+    weight = f"self-weight {project.self_weight}" if project.self_weight else "self-weight in or out not stated"
+    text = (
+        f"Load case “{check.case.name}”: {loads[project.basis]}, {weight}. "
+        f"Forces in {check.truss.force}, tension positive."
+    )
+    return [Heading(1, TITLE), Paragraph((Run(text),)), *_symbol_values(check)]
+
+
+def _symbol_values(check: MemberCheck) -> list[Block]:
+    used = {name for load in check.case.loads for part in (load.fx, load.fy) for name in part.symbols}
+    told = [(name, value) for name, value in check.case.symbols if name in used]
+    if not told:
+        return []
+    content: list[Inline] = [Run("Exact values hold the symbols of the loads; decimals, senses and verdicts are at ")]
+    for place, (name, value) in enumerate(told):
+        number = decimal_text(value, 6).rstrip("0").rstrip(".") or "0"
+        near = "" if value == ZERO or value.is_rational else " (rounded)"
+        content += [Run(f"{', ' if place else ''}{name} = "), Decimals(number), Run(f" {check.truss.force}{near}")]
+    return [Paragraph((*content, Run(".")))]
+
+
+def summary(writer: Writer) -> list[Block]:
+    """Return conclusion, table and notes: the sheet in short."""
+    check = writer.check
+    return [Paragraph(tuple(_conclusion(writer)), "conclusion"), summary_table(writer), *_notes(check)]
+
+
+def summary_table(writer: Writer) -> Table:
+    """Return one row for each member asked for."""
+    check = writer.check
+    by_number = {step.number: step for step in check.steps}
+    rows, strong = [], []
+    for place, (name, found) in enumerate(check.members.items()):
+        step = by_number[found.steps[-1]] if found.steps else None
+        source = Run(f"{writer.teller.found_by(step)}, step {step.number}") if step else Run("not decided by statics")
+        rows.append((Run(bar(name)), source, *writer.result_cells(name, found.exact, found)))
+        if found.verdict == "differs":
+            strong.append(place)
+    columns = (Column("member"), Column("derived by"), *RESULT_COLUMNS)
+    return Table(columns, tuple(rows), strong_rows=tuple(strong))
+
+
+# --- conclusion -------------------------------------------------------------------------------------------
+
+
+def _conclusion(writer: Writer) -> list[Inline]:
+    check = writer.check
+    bad = [*_disagreements(check), *_flags(writer)]
+    content: list[Inline] = []
+    for sentence in bad:
+        content.append(Run(sentence, "strong"))
+        content.append(Run(" "))
+    good = [name for name, found in check.members.items() if found.verdict == "agrees"]
+    if good:
+        which = "the member below" if len(check.members) == 1 else f"{_of_all(len(good), len(check.members))} below"
+        many = len(good) > 1
+        content.append(
+            Run(
+                f"The force{'s' if many else ''} of {which}, derived by sections and joints from the loads and "
+                f"reactions, agree{'' if many else 's'} with a separate stiffness solution of the whole truss. "
+            )
+        )
+        content.append(Run(_largest(writer, good)))
+    if not any(text.startswith("Flag:") for text in bad):
+        content.append(Run("No member or bearing is flagged."))
+    return content
+
+
+def _of_all(count: int, total: int) -> str:
+    if count == total:
+        return f"the {counted(total, 'member')}"
+    return f"{counted(count, 'member')} out of {total}"
+
+
+def _disagreements(check: MemberCheck) -> list[str]:
+    told = []
+    for what, found in (("member", check.members), ("reaction", check.reactions)):
+        for verdict in ("differs", "undecided"):
+            names = [name for name, item in found.items() if item.verdict == verdict]
+            if names:
+                told.append(_one_verdict(check, what, verdict, names, found))
+    if check.residuals:
+        joints = listed(check.residuals)
+        told.append(f"Not in equilibrium with the values found by hand: joint{'s' * (len(check.residuals) > 1)} {joints}.")
+    if not check.agreed and not told:
+        told.append("The check did not agree.")
+    return told
+
+
+def _one_verdict(check: MemberCheck, what: str, verdict: str, names: list[str], found: object) -> str:
+    items: dict[str, ForceCheck] = dict(found)  # type: ignore[call-overload]
+    several = len(names) > 1
+    verb = {"differs": "differ" if several else "differs", "undecided": "are undecided" if several else "is undecided"}
+    details = []
+    for name in names:
+        item = items[name]
+        apart = ""
+        if verdict == "differs" and item.difference is not None:
+            text = difference(item.difference, check.tolerance * check.largest_force, 3)
+            if isinstance(text, Decimals):
+                apart = f" by {text.text.replace('-', '−')} {check.truss.force}"
+        details.append(f"{bar(name)}{apart}")
+    count = capital(counted(len(names), what))
+    whole = f" of {counted(len(items), what)}" if len(items) > 1 else ""
+    if whole:
+        count = capital(counted(len(names), "", "").strip())
+        whole = f" of {counted(len(items), what)}"
+    return f"{count}{whole} {verb[verdict]}: {listed(details)}."
+
+
+def _flags(writer: Writer) -> list[str]:
+    check = writer.check
+    told = []
+    pressed = [
+        f"{bar(name)} is in compression" for name in check.truss.tension_only if _sense(check, name) == "C"
+    ]
+    unseen = [bar(name) for name in check.truss.tension_only if _sense(check, name) is None]
+    if pressed:
+        told.append(f"Flag: stated to take tension only, but {listed(pressed)}.")
+    lifted = [joint for joint in check.truss.no_uplift if _pulls_down(check, joint)]
+    if lifted:
+        told.append(f"Flag: stated not to take uplift, but the bearing at {listed(lifted)} would have to pull down.")
+    if unseen:
+        told.append(f"Flag: stated to take tension only and not checked here: {listed(unseen)}.")
+    if _is_rounded(check):
+        told.append(
+            "Flag: angle rounded. An angle in the input has no sine and cosine in square roots; they were rounded "
+            "once to 30 digits, and all that follows is exact from there on."
+        )
+    return told
+
+
+def _sense(check: MemberCheck, name: str) -> str | None:
+    name = check.truss.member(name).name
+    if name in check.members:
+        return check.members[name].sense
+    for step in check.steps:
+        if name in step.results:
+            return ("0", "T", "C")[check.case.value(step.results[name]).sign()]
+    return "0" if name in check.zero_members else None
+
+
+def _pulls_down(check: MemberCheck, joint: str) -> bool:
+    """Return whether the reactions at a joint together pull it down."""
+    total: Exact = ZERO
+    for link in check.truss.links:
+        found = check.reactions[link.name]
+        if link.joint != joint or found.exact is None:
+            continue
+        # the sign of R dy / L is that of R dy; several links are weighed by their lengths
+        value = check.case.value(found.exact) * link.dy
+        total = total + value / length_of(link.dx, link.dy)
+    return total.sign() < 0
+
+
+def length_of(dx: Exact, dy: Exact) -> Exact:
+    """Return the length of a direction."""
+    from trusscalc.exact import sqrt  # noqa: PLC0415 - a name that would read oddly above
+
+    return sqrt(dx * dx + dy * dy, proven=False)
+
+
+def _is_rounded(check: MemberCheck) -> bool:
+    found = [*check.members.values(), *check.reactions.values()]
+    return any(item.exactness == "angle rounded" for item in found)
+
+
+def _largest(writer: Writer, names: list[str]) -> str:
+    check = writer.check
+    told = []
+    for letter, word in (("C", "compression"), ("T", "tension")):
+        own = [name for name in names if check.members[name].sense == letter]
+        if own:
+            sizes = {name: abs(check.case.value(check.members[name].exact or ZERO)) for name in own}
+            most = max(own, key=lambda name: sizes[name])
+            told.append(f"Largest {word}: {decimal_text(sizes[most], writer.places)} {check.truss.force} in {bar(most)}.")
+    return "".join(f"{text} " for text in told)
+
+
+def _notes(check: MemberCheck) -> list[Block]:
+    force = check.truss.force
+    content: list[Inline] = [
+        Run(
+            f"Forces in {force}. T tension, C compression, 0 no force. Decimals are rounded once, from the exact "
+            f"value, half to even. "
+        ),
+    ]
+    slack = check.tolerance * check.largest_force
+    if 0 < slack < float("inf"):
+        content += [
+            Run("Agreement: difference not above "),
+            scientific(slack, 2),
+            Run(f" {force}, that is "),
+            scientific(check.tolerance, 2),
+            Run(" of the largest force; a difference below "),
+            bound(slack).__class__("", bound(slack).exponent),
+            Run(" is not told digit by digit. "),
+        ]
+    if check.statics.determinate and not check.residuals:
+        content.append(Run(f"Reactions and all {check.statics.joints} joints are in equilibrium exactly."))
+    notes: list[Block] = [Paragraph(tuple(content), "note")]
+    reasons = [
+        (bar(name), (Run(f"{found.verdict}: {found.reason}"),))
+        for name, found in {**check.members, **check.reactions}.items()
+        if found.reason
+    ]
+    return [*notes, Items(tuple(reasons))] if reasons else notes
+
+
+# --- scope ------------------------------------------------------------------------------------------------
+
+
+def scope(check: MemberCheck) -> list[Block]:
+    """Return what was checked, what was not, and what no such check can see; with room to sign and to seal."""
+    checked = [name for name, found in check.members.items() if found.exact is not None]
+    rest = [member.name for member in check.truss.members if member.name not in set(checked)]
+    count = f"{len(checked)} of {len(check.truss.members)} members"
+    balance = ", equilibrium of every joint" if check.statics.determinate else ""
+    items = [
+        ("Checked", f"axial force in {count} ({listed(map(bar, checked)) or 'none'}), all reactions{balance}; this load case only"),
+        ("Not checked", f"{counted(len(rest), 'member')}{': ' + listed(map(bar, rest)) if rest else ''}; other load cases"),
+        ("Not covered", "strength, buckling, connections, fatigue, bracing, foundations, deflection"),
+        (
+            "Limit",
+            "both routes use the same geometry, supports and loads: an error there passes both. Compare the input "
+            "with the drawings.",
+        ),
+    ]
+    return [Heading(2, "Scope"), Items(tuple((term, (Run(text),)) for term, text in items)), Seal()]

@@ -1,0 +1,161 @@
+"""Numbers on their way to paper: exact where it can be read, decimals rounded once, differences without noise."""
+
+from __future__ import annotations
+
+import math
+from decimal import ROUND_HALF_EVEN, Context, Decimal
+from fractions import Fraction
+from typing import Final
+
+from trusscalc.exact import Exact, approximate, rational, rounded
+from trusscalc.exacttext import to_text
+from trusscalc.loads import LoadCase
+from trusscalc.sheet.blocks import Bracket, Decimals, Formula, Name, Power, Product, Value
+
+LONGEST_EXACT: Final = 60
+"""Characters of exact text beyond which nobody reads it."""
+DIGITS: Final = 10
+"""Significant digits printed instead of such a number."""
+WIDE: Final = Context(prec=400, rounding=ROUND_HALF_EVEN)
+
+Number = Value | Decimals
+
+
+def is_readable(value: Exact) -> bool:
+    """Return whether a number is printed exactly: not too long, and no angle rounded to 30 digits in it."""
+    text = to_text(value)
+    if value.rounded:
+        return value.is_rational and len(text) <= DIGITS
+    return len(text) <= LONGEST_EXACT
+
+
+def printed(value: Exact, case: LoadCase, *, decimal: bool = True) -> Number:
+    """Return a number as it stands in an equation: exact, or with ``DIGITS`` significant digits.
+
+    Parameters
+    ----------
+    value : Exact
+        May hold symbols.
+    case : LoadCase
+        Gives the symbols' values when a decimal has to be printed.
+    decimal : bool
+        Write 2.5 rather than 5/2: lengths and forces yes, cosines no.
+    """
+    if is_readable(value):
+        return Value(value, decimal)
+    at_values = case.value(value)
+    if is_readable(at_values):
+        return Value(at_values, decimal)
+    size = approximate(at_values, DIGITS + 5)
+    places = max(0, DIGITS - 1 - size.adjusted())
+    text = f"{rounded(at_values, places):f}"
+    return Decimals(text.rstrip("0").rstrip(".") if "." in text else text)
+
+
+def decimal_text(value: Exact, places: int) -> str:
+    """Return a decimal rounded once from the exact value, half to even, without a minus sign before zero."""
+    return _plain(rounded(value, places))
+
+
+def float_text(value: float, places: int, slack: float) -> str:
+    """Return a float of the numeric route as a decimal.
+
+    Parameters
+    ----------
+    value : float
+        What the numeric route gave.
+    places : int
+        Decimal places.
+    slack : float
+        How far the float can be off by rounding errors alone; what lies below is noise that differs from
+        machine to machine, so it is taken off first (62.5 that came out as 62.50000000001 is no reason to
+        round up).
+    """
+    if not math.isfinite(value):
+        return "not a number"
+    number = Decimal(value)
+    if 0 < slack < math.inf:
+        digits = max(places, -math.floor(math.log10(slack)) - 1)
+        number = number.quantize(Decimal(1).scaleb(-digits), context=WIDE)
+    return _plain(number.quantize(Decimal(1).scaleb(-places), context=WIDE))
+
+
+def _plain(number: Decimal) -> str:
+    return f"{number if number else abs(number):f}"
+
+
+def bound(size: float) -> Power:
+    """Return ``< 10^n``, the largest power of ten not above a positive size."""
+    return Power("", math.floor(math.log10(size)), below=True)
+
+
+def scientific(size: float, digits: int) -> Power:
+    """Return a positive size with so many significant digits and its power of ten."""
+    mantissa, _, exponent = f"{size:.{digits - 1}e}".partition("e")
+    return Power(mantissa, int(exponent))
+
+
+def difference(value: float, tolerance: float, places: int) -> Power | Decimals:
+    """Return a difference of two routes as it is printed.
+
+    Parameters
+    ----------
+    value : float
+        Hand value minus numeric value.
+    tolerance : float
+        Up to which they agree, in the same unit.
+    places : int
+        Decimal places of the table.
+
+    Notes
+    -----
+    Noise of floats is not printed: below the largest power of ten within the tolerance only that is said; up
+    to the tolerance one digit; beyond it the signed difference, with as many places as it takes to see it.
+    """
+    if not math.isfinite(value):
+        return Decimals("not a number")
+    if 0 < tolerance < math.inf and abs(value) <= tolerance:
+        limit = bound(tolerance)
+        return limit if abs(value) < 10.0**limit.exponent else scientific(abs(value), 1)
+    if value == 0:
+        return Decimals("0")
+    needed = places if abs(value) >= 10.0**-places else -math.floor(math.log10(abs(value))) + 1
+    return Decimals(_plain(Decimal(value).quantize(Decimal(1).scaleb(-needed), context=WIDE)))
+
+
+def holds_decimals(products: tuple[Product, ...]) -> bool:
+    """Return whether a rounded decimal stands in a sum."""
+    return any(
+        isinstance(factor, Decimals) or (isinstance(factor, Bracket) and holds_decimals(factor.terms))
+        for product in products
+        for factor in product.factors
+    )
+
+
+def pencil_sum(products: tuple[Product, ...], case: LoadCase) -> Exact:
+    """Return what a reader gets who adds up a written sum with the digits printed."""
+    total = rational(0)
+    for product in products:
+        amount = rational(1)
+        for factor in product.factors:
+            amount = amount * _read(factor, case)
+        total = total - amount if product.negative else total + amount
+    return total
+
+
+def _read(factor: Value | Decimals | Name | Bracket, case: LoadCase) -> Exact:
+    match factor:
+        case Value(value):
+            return case.value(value)
+        case Decimals(text):
+            return rational(Fraction(text))
+        case Bracket(terms):
+            return pencil_sum(terms, case)
+        case _:
+            message = f"{factor!r} has no value of its own"
+            raise TypeError(message)
+
+
+def formula(left: tuple[Product, ...], right: tuple[Product, ...]) -> Formula:
+    """Return a written line, its relation sign chosen by what stands in it."""
+    return Formula(left, right, approximately=holds_decimals(left) or holds_decimals(right))
