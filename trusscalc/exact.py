@@ -533,8 +533,11 @@ def _root_in(tower: tuple[Exact, ...], radicand: Exact) -> tuple[tuple[Exact, ..
         message = f"more than {MOST_NESTED_ROOTS} independent nested roots in one number; use fewer"
         raise InexactNumberError(message)
     content, primitive = _without_content(radicand)
+    try:
+        outside = _rational_root(content, proven=True)
+    except InexactNumberError:  # it stays inside, which reads worse and is as right
+        outside, primitive = ONE, radicand
     higher = (*tower, Exact(primitive.terms, tower))
-    outside = _rational_root(content, proven=True)
     return higher, Exact({(1, 1 << len(tower)): QQ(1)}, higher) * outside
 
 
@@ -560,9 +563,10 @@ def _known_root(value: Exact) -> Exact | None:
     a = (value + other) / 2
     rest = (value - other) / 2
     norm = value * other
-    n = _known_root(norm)
     # n has to lie in the field below, or the descent would not end
-    if n is None or not _group(n) <= _group(value) - {_outermost_root(value)}:
+    below = _group(value) - {_outermost_root(value)}
+    n = _root_over(norm.as_fraction(), below) if norm.is_rational else _known_root(norm)
+    if n is None or not _group(n) <= below:
         return None
     for half in ((a + n) / 2, (a - n) / 2):
         root = _known_root(half) if half else None
@@ -598,6 +602,21 @@ def _group(value: Exact) -> set[int]:
             if mask >> index & 1:
                 found |= {-1 - index} | _group(value.tower[index])
     return found
+
+
+def _root_over(value: Fraction, group: set[int]) -> Exact | None:
+    """Return the root of a fraction if the roots of the group's primes suffice for it; nothing is factored."""
+    rest, kept = value.numerator * value.denominator, 1
+    for prime in group:
+        if prime > 1:
+            while rest and rest % (prime * prime) == 0:
+                rest //= prime * prime
+            if rest % prime == 0:
+                rest, kept = rest // prime, kept * prime
+    if rest < 0 or math.isqrt(rest) ** 2 != rest:
+        return None
+    factor = math.isqrt(value.numerator * value.denominator // kept)
+    return Exact({(kept, 0): QQ(factor, value.denominator)}) if factor else ZERO
 
 
 def _rational_root(value: Fraction, *, proven: bool) -> Exact:
