@@ -178,16 +178,28 @@ def _signed(text: str) -> Node:
 def _number(item: Value) -> Node:
     """Return an exact number: terms over one another's denominators, roots, symbols."""
     value = item.value
-    if item.decimal and value.is_rational:
+    if item.role != "cosine" and value.is_rational:
         short = _short_decimal(value.as_fraction())
         if short:
             return _signed(short)
     terms = [_term(key, coefficient, value.tower) for key, coefficient in ordered_terms(value)]
+    if item.role != "amount" and len(value.terms) == 1 and not value.symbols:
+        terms = [_root_below(value) or terms[0]]
     if not terms:
         return ZERO
     if len(terms) == 1 and not terms[0][0]:
         return terms[0][1]
     return Sum(tuple(terms))
+
+
+def _root_below(value: Exact) -> tuple[bool, Node] | None:
+    """Return 3√13/13 as 3/√13, where the denominator allows it."""
+    ((n, mask), coefficient) = next(iter(value.terms.items()))
+    top, below = int(coefficient.numerator), int(coefficient.denominator)
+    if n == 1 or mask or below % n:
+        return None
+    factors: list[Node] = [Digits(str(below // n))] if below != n else []
+    return top < 0, Over(Digits(str(abs(top))), _beside([*factors, Root(Digits(str(n)))]))
 
 
 def _short_decimal(value: Fraction) -> str:
@@ -203,7 +215,7 @@ def _term(key: tuple[int, int], coefficient: Any, tower: tuple[Exact, ...]) -> t
     """Return one term: whether it is negative, and its size."""
     n, mask = key
     roots: list[Node] = [Root(Digits(str(n)))] if n > 1 else []
-    roots += [Root(_number(Value(r, decimal=False))) for index, r in enumerate(tower) if mask >> index & 1]
+    roots += [Root(_number(Value(r, "cosine"))) for index, r in enumerate(tower) if mask >> index & 1]
     if isinstance(coefficient, FracElement):
         return _with_symbols(coefficient, roots)
     top, below = int(coefficient.numerator), int(coefficient.denominator)
@@ -242,7 +254,8 @@ def _polynomial(polynomial: Any) -> tuple[bool, Node]:
         return False, ZERO
     if len(terms) == 1:
         return terms[0]
-    return False, Sum(tuple((bool(negative), node) for negative, node in terms))
+    backwards = all(negative for negative, _ in terms)
+    return backwards, Sum(tuple((bool(negative) and not backwards, node) for negative, node in terms))
 
 
 def _beside(factors: list[Node]) -> Node:
@@ -362,7 +375,7 @@ class Plain(Language):
         first, second = self.write(top), self.write(below)
         if isinstance(top, (Sum, Over)):
             first = f"({first})"
-        if not isinstance(below, (Digits, Letter)):
+        if not isinstance(below, (Digits, Letter)) and not (isinstance(below, Root) and isinstance(below.inside, Digits)):
             second = f"({second})"
         return f"{first}/{second}"
 

@@ -272,7 +272,7 @@ def _wrapped(written: str, room: int) -> list[str]:
     """Return a text in lines; a word longer than the line is cut, never lost."""
     lines: list[str] = []
     line = ""
-    for word in written.split(" "):
+    for word in written.rstrip().split(" "):
         candidate = f"{line} {word}" if line else word
         if width(candidate) <= room:
             line = candidate

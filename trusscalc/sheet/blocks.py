@@ -18,10 +18,14 @@ from trusscalc.sheet.marks import Figure
 
 @dataclass(frozen=True, slots=True)
 class Value:
-    """An exact number, printed in full; ``decimal``: a short terminating fraction is written 2.5, not 5/2."""
+    """An exact number, printed in full.
+
+    ``role`` says how it reads best: an amount or an arm as a short decimal where that is exact (2.5), a cosine as
+    a fraction (4/5); arms and cosines with their root below (3/√13), as on a slope triangle.
+    """
 
     value: Exact
-    decimal: bool = True
+    role: Literal["amount", "arm", "cosine"] = "amount"
 
 
 @dataclass(frozen=True, slots=True)

@@ -12,9 +12,8 @@ from trusscalc.loads import LoadCase
 from trusscalc.membercheck import MemberCheck
 from trusscalc.project import LINES, Project
 from trusscalc.sheet import figures, front, record
-from trusscalc.sheet.blocks import Block, Heading, Origin, Picture, Sheet
+from trusscalc.sheet.blocks import Block, Derivation, Heading, Origin, Picture, Sheet
 from trusscalc.sheet.derivation import Writer, writer_of
-from trusscalc.statics.steps import Step
 from trusscalc.truss import Truss
 
 MOST_PLACES = 12
@@ -58,9 +57,10 @@ def compose(
     project = project or (stated.project if stated else Project())
     text = truss_text or writes(TrussFile(check.truss, (check.case,), (), project))
     writer = writer_of(check, places)
-    summary = tuple([*front.opening(check, project), *front.summary(writer)])
+    summary = tuple(front.summary(writer))
     blocks: list[Block] = [
         front.title_block(check, project),
+        *front.opening(check, project),
         *summary,
         *([Picture((figures.elevation(check),))] if drawings else []),
         *front.scope(check),
@@ -89,13 +89,28 @@ def derivations(writer: Writer, *, drawings: bool = True) -> list[Block]:
         if wanted != heading:
             heading = wanted
             blocks.append(Heading(2, heading))
-        blocks.append(writer.derivation(step, step_figures(writer, step) if drawings else ()))
+        blocks.append(writer.derivation(step, figures.free_body(writer.check, step) if drawings else ()))
     return blocks
 
 
-def step_figures(writer: Writer, step: Step) -> tuple[figures.Figure, ...]:
-    """Return the free bodies of a step."""
-    return figures.free_body(writer.check, step)
+def derivation(check: MemberCheck, number: int, *, places: int = 3, drawings: bool = True) -> Derivation:
+    """Return one step of a check as a block.
+
+    Raises
+    ------
+    InputError
+        When there is no step of that number.
+    """
+    for step in check.steps:
+        if step.number == number:
+            return writer_of(check, places).derivation(step, figures.free_body(check, step) if drawings else ())
+    message = f"there is no step {number}; the steps are 1 to {len(check.steps)}"
+    raise InputError(message)
+
+
+def summary(check: MemberCheck, places: int = 3) -> tuple[Block, ...]:
+    """Return conclusion, summary table and notes alone."""
+    return tuple(front.summary(writer_of(check, places)))
 
 
 def _stated(check: MemberCheck, truss_text: str) -> TrussFile:

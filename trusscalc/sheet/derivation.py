@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from typing import Final
 
 from trusscalc.errors import TrusscalcError
-from trusscalc.exact import ONE, ZERO, Exact, rational, sqrt
+from trusscalc.exact import ONE, ZERO, Exact, rational, sqrt, symbol
 from trusscalc.membercheck import ForceCheck, MemberCheck
 from trusscalc.sheet.blocks import (
     Bracket,
@@ -43,7 +43,7 @@ from trusscalc.sheet.values import (
     printed,
     scientific,
 )
-from trusscalc.sheet.words import Symbols, Teller, about_words, bar, letters_of, sum_label, symbols_of
+from trusscalc.sheet.words import Symbols, Teller, about_words, bar, found_in, letters_of, listed, sum_label, symbols_of
 from trusscalc.statics.cuts import structure_of
 from trusscalc.statics.steps import Equation, Step, Term, points_backwards
 
@@ -128,9 +128,11 @@ class Writer:
         )
 
     def _right(self, step: Step) -> str:
-        return "   ".join(self._told(step, name) for name in step.solves)
+        return "   ".join(self._told(step, name) for name in found_in(step))
 
     def _told(self, step: Step, name: str) -> str:
+        if name in step.partial:
+            return f"in terms of {listed(set_of_carried(self.check, step.partial[name]))}"
         value = self.check.case.value(step.results[name])
         words = [decimal_text(value, self.places).replace("-", "−"), self.check.truss.force]
         return " ".join(words + ([] if self.teller.is_link(name) else [sense(value)]))
@@ -146,16 +148,17 @@ class Writer:
         notes: list[str | Paragraph] = []
         tables: list[Table] = []
         for equation in step.equations:
-            entries, table = self._entries(equation, step.solves)
+            entries, table = self._entries(equation, () if step.kind == "close" else found_in(step))
             tables += [table] if table else []
             label = sum_label(equation, self.teller.body(equation.cut))
-            lines.append(Labelled(label, formula(self.in_symbols(equation, entries), _number(Value(ZERO)))))
+            lines.append(Labelled(label, formula(self._in_symbols(equation, entries), _number(Value(ZERO)))))
             if any(not entry.symbol.sought for entry in entries):
                 written, sought = self._with_values(equation, entries)
                 lines.append(Labelled("with values", formula((*written, *sought), _number(Value(ZERO)))))
         hence, hence_notes = self._hence(step)
         notes += hence_notes
-        return lines + hence, notes, tables
+        written = {line.formula for line in lines}
+        return lines + [line for line in hence if line.formula not in written], notes, tables
 
     def _entries(self, equation: Equation, solves: Sequence[str]) -> tuple[list[Entry], Table | None]:
         """Return an equation's terms as they are written, many loads collected to their resultant."""
@@ -173,7 +176,7 @@ class Writer:
             entries.append(Entry(term.coefficient, symbol, term.force, plain=term.kind == "load"))
         return entries, table
 
-    def in_symbols(self, equation: Equation, entries: Sequence[Entry]) -> tuple[Product, ...]:
+    def _in_symbols(self, equation: Equation, entries: Sequence[Entry]) -> tuple[Product, ...]:
         """Return the sum in symbols."""
         return tuple(self._product(equation, entry, entry.symbol) for entry in entries)
 
@@ -182,11 +185,11 @@ class Writer:
     ) -> tuple[tuple[Product, ...], tuple[Product, ...]]:
         """Return the known terms with their values, and the sought ones in symbols."""
         known = [entry for entry in entries if not entry.symbol.sought]
-        written = self.valued(equation, known)
+        written = self._valued(equation, known)
         sought = tuple(self._product(equation, entry, entry.symbol) for entry in entries if entry.symbol.sought)
         return written, sought
 
-    def valued(self, equation: Equation, entries: Sequence[Entry]) -> tuple[Product, ...]:
+    def _valued(self, equation: Equation, entries: Sequence[Entry]) -> tuple[Product, ...]:
         """Return terms with their values, runs of equal loads written once."""
         written: list[Product] = []
         place = 0
@@ -201,8 +204,8 @@ class Writer:
             place += len(alike)
         return tuple(written)
 
-    def _number_of(self, value: Exact, *, decimal: bool = True) -> Value | Decimals:
-        return printed(value, self.check.case, decimal=decimal)
+    def _number_of(self, value: Exact) -> Value | Decimals:
+        return printed(value, self.check.case)
 
     def _product(self, equation: Equation, entry: Entry, force: Name | Value | Decimals) -> Product:
         size = abs(entry.coefficient)
@@ -212,7 +215,7 @@ class Writer:
         return Product(negative, (self._coefficient(equation, size), force))
 
     def _coefficient(self, equation: Equation, size: Exact) -> Value | Decimals:
-        return self._number_of(size, decimal=equation.about.sum == "moment")
+        return printed(size, self.check.case, "arm" if equation.about.sum == "moment" else "cosine")
 
     def _together(self, equation: Equation, alike: Sequence[Entry]) -> Product:
         """Return equal loads as one product: sum of arms, or their count, times the load."""
@@ -230,18 +233,44 @@ class Writer:
     # --- hence --------------------------------------------------------------------------------------------
 
     def _hence(self, step: Step) -> tuple[list[Labelled], list[str | Paragraph]]:
+        if step.kind == "close":
+            return self._hence_closed(step), []
         if len(step.equations) == 1:
-            return self._hence_one(step.equations[0], step.solves[0])
+            return self._hence_one(step.equations[0], found_in(step)[0])
         if len(step.equations) == 2:  # noqa: PLR2004 - a pair
             return self._hence_two(step), []
         lines = [
             Labelled(
                 f"hence, from the {len(step.equations)} equations together" if place == 0 else "",
-                formula((Product(False, (self._sought(step, name),)),), _number(self._number_of(step.results[name]))),
+                formula((Product(False, (self._sought(step, name),)),), _number(self._number_of(found(step, name)))),
             )
-            for place, name in enumerate(step.solves)
+            for place, name in enumerate(found_in(step))
         ]
         return lines, []
+
+    def _hence_closed(self, step: Step) -> list[Labelled]:
+        """Collect each equation in the carried forces, then tell what they are."""
+        letters = {name: letter for earlier in self.check.steps for name, letter in earlier.carries.items()}
+        zeros = {letters[name]: ZERO for name in step.solves}
+        lines = []
+        for place, equation in enumerate(step.equations):
+            factor = sqrt(equation.terms[0].scale, proven=False) / equation.terms[0].scale
+            total = equation.residual * factor
+            constant = total.substitute(zeros)
+            left = []
+            for name in step.solves:
+                size = total.substitute({**zeros, letters[name]: ONE}) - constant
+                if size:
+                    written = self._product(equation, Entry(size, Name("", ""), ZERO), Value(symbol(letters[name])))
+                    left.append(written)
+            label = "hence, collected" if place == 0 else ""
+            lines.append(Labelled(label, formula(tuple(left), _number(self._number_of(-constant)))))
+        label = "hence" if len(step.solves) == 1 else f"hence, from the {len(step.equations)} equations together"
+        for name in step.solves:
+            own = (Product(False, (self._sought(step, name),)),)
+            lines.append(Labelled(label, formula(own, _number(self._number_of(step.results[name])))))
+            label = ""
+        return lines
 
     def _hence_one(self, equation: Equation, name: str) -> tuple[list[Labelled], list[str | Paragraph]]:
         entries, _ = self._entries(equation, (name,))
@@ -284,9 +313,12 @@ class Writer:
 
     def _hence_two(self, step: Step) -> list[Labelled]:
         """Eliminate the unknown that leaves the first of ``solves``, then put that into one equation."""
-        first, second = step.solves
-        rows = [({t.name: t for t in e.terms if t.kind != "load"}, _minus_rest(e, step.solves), e) for e in step.equations]
-        coefficients = [[_coefficient_of(terms, name) for name in step.solves] for terms, _, _ in rows]
+        first, second = found_in(step)
+        rows = [
+            ({t.name: t for t in e.terms if t.kind != "load"}, _minus_rest(e, (first, second)), e)
+            for e in step.equations
+        ]
+        coefficients = [[_coefficient_of(terms, name) for name in (first, second)] for terms, _, _ in rows]
         (a1, b1), (a2, b2) = coefficients
         r1, r2 = rows[0][1], rows[1][1]
         equation = rows[1][2]
@@ -296,13 +328,13 @@ class Writer:
             alone, amount, label = a2, r2, "hence, from the second equation"
         else:
             alone, amount, label = a2 - b2 * a1 / b1, r2 - b2 * r1 / b1, "hence, with the first equation"
-        found = step.results[first]
-        _must_hold(alone * found == amount, first)
+        first_force = found(step, first)
+        _must_hold(alone * first_force == amount, first)
         lines = [self._solved_line(label, equation, alone, self._sought(step, first), amount)]
         place = 0 if b1 else 1
         b, a, r = ((b1, a1, r1), (b2, a2, r2))[place]
-        rest = r - a * found
-        _must_hold(b * step.results[second] == rest, second)
+        rest = r - a * first_force
+        _must_hold(b * found(step, second) == rest, second)
         which = ("first", "second")[place]
         label = f"and from the {which} equation"
         return [*lines, self._solved_line(label, rows[place][2], b, self._sought(step, second), rest)]
@@ -357,18 +389,43 @@ class Writer:
 
     def _result(self, step: Step) -> Table:
         rows, strong = [], []
-        for place, name in enumerate(step.solves):
-            found = self.forces(name)
-            if found is not None and found.verdict != "agrees":
+        told = {**step.results, **step.partial}
+        if step.kind == "close":
+            told |= self._now_decided(step)
+        for place, (name, force) in enumerate(told.items()):
+            judged = self.forces(name)
+            if name in step.partial:
+                rows.append((Run(bar(name)), self._number_of(force), *[None] * 5))
+                continue
+            if judged is not None and judged.verdict != "agrees":
                 strong.append(place)
-            rows.append((Run(bar(name)), *self.result_cells(name, step.results[name], found)))
-        caption = "" if all(self.forces(name) for name in step.solves) else (
-            "Without a stiffness value: found on the way to a member asked for; the equilibrium of its joints is in the cross-check."
-        )
-        columns = (Column("reaction" if self.teller.is_link(step.solves[0]) else "member"), *RESULT_COLUMNS)
+            rows.append((Run(bar(name)), *self.result_cells(name, force, judged)))
+        links = all(self.teller.is_link(name) for name in told)
+        caption = ""
+        if any(self.forces(name) is None for name in told if name not in step.partial):
+            caption = (
+                "Without a stiffness value: found on the way to a member asked for; the cross-check closes its joints."
+            )
+        if step.kind == "close" and len(told) > len(step.solves):
+            caption = f"The forces told in terms of what was carried, with its value put in. {caption}".strip()
+        columns = (Column("reaction" if links else "member"), *RESULT_COLUMNS)
+        if links:
+            columns, rows = without_sense(columns, rows)
         return Table(columns, tuple(rows), caption, tuple(strong), role="result")
 
-    def result_cells(self, name: str, exact: Exact | None, found: ForceCheck | None) -> tuple[Inline | None, ...]:
+    def _now_decided(self, step: Step) -> dict[str, Exact]:
+        """Return the forces that were told in terms of what a closing step decides."""
+        letters = {name: letter for earlier in self.check.steps for name, letter in earlier.carries.items()}
+        values = {letters[name]: force for name, force in step.results.items()}
+        return {
+            name: force.substitute(values)
+            for earlier in self.check.steps
+            if earlier.number < step.number
+            for name, force in earlier.partial.items()
+            if set(force.symbols) & set(values)
+        }
+
+    def result_cells(self, name: str, exact: Exact | None, judged: ForceCheck | None) -> tuple[Inline | None, ...]:
         """Return exact, decimal, sense, stiffness value, difference and verdict of a force."""
         check = self.check
         slack = check.tolerance * check.largest_force
@@ -377,18 +434,19 @@ class Writer:
             value = check.case.value(exact)
             letter = None if self.teller.is_link(name) else Run(sense(value))
             cells = [self._number_of(exact), Decimals(decimal_text(value, self.places)), letter]
-        if found is None:
+        if judged is None:
             return (*cells, None, None, None)
-        numeric = None if found.stiffness is None else Decimals(float_text(found.stiffness, self.places, slack))
-        apart = None if found.difference is None else difference(found.difference, slack, self.places)
-        return (*cells, numeric, apart, Run(found.verdict))
+        numeric = None if judged.stiffness is None else Decimals(float_text(judged.stiffness, self.places, slack))
+        apart = None if judged.difference is None else difference(judged.difference, slack, self.places)
+        return (*cells, numeric, apart, Run(judged.verdict))
 
     def _check(self, step: Step) -> tuple[list[Labelled], list[str | Paragraph]]:
         equation = step.check
         if equation is None:
-            return [], ["No further equation with known forces alone is left here for a check; see the cross-check."]
+            where = "the sums under Reactions" if step.kind == "whole" else "the cross-check"
+            return [], [f"No other equation of this free body holds known forces alone; see {where}."]
         entries, _ = self._entries(equation, ())
-        written = self.valued(equation, entries)
+        written = self._valued(equation, entries)
         where = self.teller.body(equation.cut)
         label = f"Check, not used before: {where}, {about_words(equation.about)}"
         values = tuple(self._evaluated(product) for product in written)
@@ -435,10 +493,29 @@ class Writer:
 def writer_of(check: MemberCheck, places: int = 3) -> Writer:
     """Return the writer of a check's steps."""
     structure = structure_of(check.truss, check.case)
-    solved_in = {name: step.number for step in check.steps for name in step.solves}
+    solved_in = {name: step.number for step in check.steps for name in found_in(step)}
     groups: Mapping[str, str] = {member.name: member.group for member in check.truss.members}
     teller = Teller(structure, letters_of(structure, check.steps), solved_in, groups)
     return Writer(check, teller, symbols_of(structure), places)
+
+
+def without_sense(
+    columns: tuple[Column, ...], rows: Sequence[tuple[Inline | None, ...]]
+) -> tuple[tuple[Column, ...], list[tuple[Inline | None, ...]]]:
+    """Return a table of reactions without the column T/C, which is for members."""
+    place = next(n for n, column in enumerate(columns) if column.head == "T/C")
+    return (*columns[:place], *columns[place + 1 :]), [(*row[:place], *row[place + 1 :]) for row in rows]
+
+
+def found(step: Step, name: str) -> Exact:
+    """Return the force a step finds, in terms of carried forces where it is."""
+    return step.results[name] if name in step.results else step.partial[name]
+
+
+def set_of_carried(check: MemberCheck, value: Exact) -> list[str]:
+    """Return the carried forces that stand in a value."""
+    letters = {letter for step in check.steps for letter in step.carries.values()}
+    return [name for name in value.symbols if name in letters]
 
 
 def sense(value: Exact) -> str:
@@ -449,8 +526,8 @@ def sense(value: Exact) -> str:
 def _number(number: Value | Decimals) -> tuple[Product, ...]:
     """Return a number as the right side of a line."""
     match number:
-        case Value(value, decimal) if points_backwards(value):
-            return (Product(True, (Value(-value, decimal),)),)
+        case Value(value, role) if points_backwards(value):
+            return (Product(True, (Value(-value, role),)),)
         case Decimals(text) if text.startswith("-"):
             return (Product(True, (Decimals(text[1:]),)),)
     return (Product(False, (number,)),)
@@ -495,4 +572,4 @@ def _must_hold(holds: bool, what: str) -> None:
         raise WrittenLineError(message)
 
 
-__all__ = ["RESULT_COLUMNS", "Writer", "WrittenLineError", "sense", "writer_of"]
+__all__ = ["RESULT_COLUMNS", "Writer", "WrittenLineError", "sense", "without_sense", "writer_of"]

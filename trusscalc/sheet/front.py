@@ -13,12 +13,13 @@ from trusscalc.sheet.blocks import (
     Inline,
     Items,
     Paragraph,
+    Power,
     Run,
     Seal,
     Table,
     TitleBlock,
 )
-from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer
+from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, sense
 from trusscalc.sheet.values import bound, decimal_text, difference, scientific
 from trusscalc.sheet.words import bar, capital, counted, listed
 
@@ -82,11 +83,11 @@ def summary_table(writer: Writer) -> Table:
     rows, strong = [], []
     for place, (name, found) in enumerate(check.members.items()):
         step = by_number[found.steps[-1]] if found.steps else None
-        source = Run(f"{writer.teller.found_by(step)}, step {step.number}") if step else Run("not decided by statics")
-        rows.append((Run(bar(name)), source, *writer.result_cells(name, found.exact, found)))
+        source = Run(writer.teller.found_by(step)) if step else Run("not decided by statics")
+        rows.append((Run(bar(name)), source, Run(str(step.number)) if step else None, *writer.result_cells(name, found.exact, found)))
         if found.verdict == "differs":
             strong.append(place)
-    columns = (Column("member"), Column("derived by"), *RESULT_COLUMNS)
+    columns = (Column("member"), Column("derived by"), Column("step", "right"), *RESULT_COLUMNS)
     return Table(columns, tuple(rows), strong_rows=tuple(strong))
 
 
@@ -186,7 +187,7 @@ def _sense(check: MemberCheck, name: str) -> str | None:
         return check.members[name].sense
     for step in check.steps:
         if name in step.results:
-            return ("0", "T", "C")[check.case.value(step.results[name]).sign()]
+            return sense(check.case.value(step.results[name]))
     return "0" if name in check.zero_members else None
 
 
@@ -243,7 +244,7 @@ def _notes(check: MemberCheck) -> list[Block]:
             Run(f" {force}, that is "),
             scientific(check.tolerance, 2),
             Run(" of the largest force; a difference below "),
-            bound(slack).__class__("", bound(slack).exponent),
+            Power("", bound(slack).exponent),
             Run(" is not told digit by digit. "),
         ]
     if check.statics.determinate and not check.residuals:

@@ -20,9 +20,8 @@ from trusscalc.sheet.blocks import (
     Power,
     Run,
     Table,
-    Value,
 )
-from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer
+from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, without_sense
 from trusscalc.sheet.front import length_of
 from trusscalc.sheet.values import decimal_text, printed, scientific
 from trusscalc.sheet.words import bar, counted, listed
@@ -206,11 +205,10 @@ def reactions(writer: Writer) -> list[Block]:
     for place, (name, found) in enumerate(check.reactions.items()):
         cells = writer.result_cells(name, found.exact, found)
         source = f"step {found.steps[-1]}" if found.steps else "not decided by statics"
-        rows.append((Run(bar(name)), Run(source), cells[0], cells[1], *cells[3:]))
+        rows.append((Run(bar(name)), Run(source), *cells))
         if found.verdict == "differs":
             strong.append(place)
-    kept = [column for column in RESULT_COLUMNS if column.head != "T/C"]
-    columns = (Column("reaction"), Column("derived by"), *kept)
+    columns, rows = without_sense((Column("reaction"), Column("derived by"), *RESULT_COLUMNS), rows)
     table = Table(columns, tuple(rows), f"Forces on the truss in {check.truss.force}.", tuple(strong))
     return [Heading(2, "Reactions"), table, *_balance(writer)]
 
@@ -308,7 +306,6 @@ def revisions(project: Project) -> list[Block]:
 
 
 __all__ = [
-    "Value",
     "basis",
     "cautions",
     "cross_check",

@@ -5,9 +5,9 @@ from __future__ import annotations
 import math
 from decimal import ROUND_HALF_EVEN, Context, Decimal
 from fractions import Fraction
-from typing import Final
+from typing import Final, Literal
 
-from trusscalc.exact import Exact, approximate, rational, rounded
+from trusscalc.exact import ONE, ZERO, Exact, approximate, rational, rounded, symbol
 from trusscalc.exacttext import to_text
 from trusscalc.loads import LoadCase
 from trusscalc.sheet.blocks import Bracket, Decimals, Formula, Name, Power, Product, Value
@@ -18,7 +18,7 @@ DIGITS: Final = 10
 """Significant digits printed instead of such a number."""
 WIDE: Final = Context(prec=400, rounding=ROUND_HALF_EVEN)
 
-Number = Value | Decimals
+Number = Value | Decimals | Bracket
 
 
 def is_readable(value: Exact) -> bool:
@@ -29,7 +29,7 @@ def is_readable(value: Exact) -> bool:
     return len(text) <= LONGEST_EXACT
 
 
-def printed(value: Exact, case: LoadCase, *, decimal: bool = True) -> Number:
+def printed(value: Exact, case: LoadCase, role: Literal["amount", "arm", "cosine"] = "amount") -> Number:
     """Return a number as it stands in an equation: exact, or with ``DIGITS`` significant digits.
 
     Parameters
@@ -38,18 +38,34 @@ def printed(value: Exact, case: LoadCase, *, decimal: bool = True) -> Number:
         May hold symbols.
     case : LoadCase
         Gives the symbols' values when a decimal has to be printed.
-    decimal : bool
-        Write 2.5 rather than 5/2: lengths and forces yes, cosines no.
+    role : str
+        ``amount``, ``arm`` or ``cosine``, see ``Value``.
     """
     if is_readable(value):
-        return Value(value, decimal)
+        return Value(value, role)
     at_values = case.value(value)
     if is_readable(at_values):
-        return Value(at_values, decimal)
+        return Value(at_values, role)
+    if at_values.symbols:
+        return _in_carried_forces(at_values)
     size = approximate(at_values, DIGITS + 5)
     places = max(0, DIGITS - 1 - size.adjusted())
     text = f"{rounded(at_values, places):f}"
     return Decimals(text.rstrip("0").rstrip(".") if "." in text else text)
+
+
+def _in_carried_forces(value: Exact) -> Value | Bracket:
+    """Return a number that still holds carried forces: rounded constant plus rounded multiples of them."""
+    zeros = dict.fromkeys(value.symbols, ZERO)
+    constant = value.substitute(zeros)
+    parts = [(name, value.substitute({**zeros, name: ONE}) - constant) for name in value.symbols]
+    if constant + sum((size * symbol(name) for name, size in parts), start=ZERO) != value:
+        return Value(value)  # not linear: printed in full, however long
+    case = LoadCase("", {})
+    products = [Product(constant.sign() < 0, (printed(abs(constant), case),))] if constant else []
+    for name, size in parts:
+        products.append(Product(size.sign() < 0, (printed(abs(size), case, "cosine"), Value(symbol(name)))))
+    return Bracket(tuple(products))
 
 
 def decimal_text(value: Exact, places: int) -> str:
@@ -134,9 +150,9 @@ def holds_decimals(products: tuple[Product, ...]) -> bool:
 
 def pencil_sum(products: tuple[Product, ...], case: LoadCase) -> Exact:
     """Return what a reader gets who adds up a written sum with the digits printed."""
-    total = rational(0)
+    total = ZERO
     for product in products:
-        amount = rational(1)
+        amount = ONE
         for factor in product.factors:
             amount = amount * _read(factor, case)
         total = total - amount if product.negative else total + amount

@@ -202,6 +202,11 @@ def sum_label(equation: Equation, where: str) -> str:
 # --- why this cut -----------------------------------------------------------------------------------------
 
 
+def found_in(step: Step) -> tuple[str, ...]:
+    """Return what a step finds, also where only in terms of a carried force."""
+    return (*step.solves, *step.solves_in)
+
+
 @dataclass(frozen=True, slots=True)
 class Teller:
     """Tells of steps; holds what all sentences need.
@@ -242,16 +247,17 @@ class Teller:
 
     def title(self, step: Step) -> str:
         """Return a step's heading: what it finds, in trade words."""
-        names = [bar(name) for name in step.solves]
-        if all(self.is_link(name) for name in step.solves):
+        names = [bar(name) for name in found_in(step)]
+        if all(self.is_link(name) for name in found_in(step)):
             return f"Reaction{'s' if len(names) > 1 else ''} {listed(names)}"
-        groups = {self.groups.get(name, "") for name in step.solves}
+        groups = {self.groups.get(name, "") for name in found_in(step)}
         group = groups.pop() if len(groups) == 1 else ""
         if not group:
             return f"Member{'s' if len(names) > 1 else ''} {listed(names)}"
         *first, last = group.split(" ")
         if len(names) == 1:
-            last = ONE_OF.get(last.lower(), last)
+            before, hyphen, plural = last.rpartition("-")
+            last = before + hyphen + ONE_OF.get(plural.lower(), plural)
         return f"{capital(' '.join([*first, last]))} {listed(names)}"
 
     def found_by(self, step: Step) -> str:
@@ -260,8 +266,9 @@ class Teller:
         for equation in step.equations:
             cut = equation.cut
             letter = self.letters.get(members_cut(self.structure, cut), "")
-            words.append(f"section {section(letter)}" if letter and cut.kind == "section" else self.body(cut))
-        return listed(dict.fromkeys(words))
+            words.append(section(letter) if letter and cut.kind == "section" else self.body(cut))
+        told = listed(dict.fromkeys(words))
+        return f"section {told}" if len(words) == 1 and step.kind == "section" else told
 
     def body(self, cut: Cut) -> str:
         """Return what a free body is called."""
@@ -269,11 +276,20 @@ class Teller:
 
     def reason(self, step: Step) -> str:
         """Return why this cut: which forces it meets, which drop out, what is left."""
+        carried = "".join(
+            f"No equation gives another force alone, so the force in {bar(name)} is carried as {letter} until one decides it. "
+            for name, letter in step.carries.items()
+        )
+        if step.kind == "close":
+            return carried + self._reason_of_closing(step)
         if len(step.equations) > 1:
-            return self._reason_of_several(step)
+            return carried + self._reason_of_several(step)
+        return carried + self._reason_of_one(step)
+
+    def _reason_of_one(self, step: Step) -> str:
         equation = step.equations[0]
         dropped = self._dropped(equation, step)
-        sought = self.force(step.solves[0])
+        sought = self.force(found_in(step)[0])
         only = f"only {sought} is unknown"
         opening = self._opening(equation.cut)
         if dropped:
@@ -284,9 +300,18 @@ class Teller:
             text = f"{opening}{_in_the_sum(equation.about)} {only}."
         return text + self._known(step)
 
+    def _reason_of_closing(self, step: Step) -> str:
+        bodies = listed(dict.fromkeys(f"{_the_sum(e.about)} {self.found_by_one(e)}" for e in step.equations))
+        names = listed(bar(name) for name in step.solves)
+        verb = "decide" if len(step.equations) > 1 else "decides"
+        return (
+            f"Every force there is known by now, or told in terms of what is carried for {names}; "
+            f"{bodies} {verb} it." + self._known(step)
+        )
+
     def _opening(self, cut: Cut) -> str:
         if cut.kind == "joint":
-            return f"At joint {cut.kept[0]} "
+            return f"At joint {cut.kept[0]}, "
         if cut.kind == "whole":
             return f"The whole truss is held by {self.forces(cut.bars)}; "
         letter = self.letters.get(members_cut(self.structure, cut), "")
@@ -294,8 +319,12 @@ class Teller:
         return f"{f'Section {section(letter)}' if letter else 'The cut'} goes through {members}; "
 
     def _dropped(self, equation: Equation, step: Step) -> str:
-        """Return why the other unknowns have no coefficient, or ''."""
-        unknown = [name for name in equation.dropped if self.solved_in.get(name, step.number) >= step.number]
+        """Return why the other members, and reactions not yet known, have no coefficient, or ''."""
+        unknown = [
+            name
+            for name in equation.dropped
+            if not self.is_link(name) or self.solved_in.get(name, step.number) >= step.number
+        ]
         if not unknown:
             return ""
         about = equation.about
@@ -338,12 +367,16 @@ class Teller:
             sums = _the_sum(equation.about)
             told.append(f"{where}, {dropped}, so {sums} holds no more unknowns" if dropped else f"{where}, {sums}")
         count = counted(len(told), "equation")
-        return f"{self.forces(step.solves)} are found together, from {count}: {'; '.join(told)}." + self._known(step)
+        return f"{_sentence(self.forces(found_in(step)))} are found together, from {count}: {'; '.join(told)}." + self._known(step)
 
     def found_by_one(self, equation: Equation) -> str:
         """Return where an equation is written: ``at joint M1``, ``for the left part of b–b``."""
         where = self.body(equation.cut)
         return f"at {where}" if equation.cut.kind == "joint" else f"for the {where}"
+
+
+def _sentence(text: str) -> str:
+    return f"The {text[4:]}" if text.startswith("the reaction") else text
 
 
 def _the_sum(about: About) -> str:
