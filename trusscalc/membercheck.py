@@ -13,12 +13,12 @@ from typing import Literal
 
 from trusscalc import stiffness
 from trusscalc.errors import InputError
-from trusscalc.exact import ONE, ZERO, Exact
+from trusscalc.exact import ONE, ZERO, Exact, symbol
 from trusscalc.loads import LoadCase
 from trusscalc.statics import matrix
 from trusscalc.statics.cuts import Structure, structure_of
-from trusscalc.statics.plan import plan
-from trusscalc.statics.steps import Step, section_letter, write_step
+from trusscalc.statics.plan import PlannedStep, plan
+from trusscalc.statics.steps import Step, carried_letter, section_letter, write_close, write_step
 from trusscalc.truss import Truss
 
 Verdict = Literal["agrees", "differs", "undecided"]
@@ -217,18 +217,46 @@ def _derivation(
     structure: Structure, equilibrium: matrix.Equilibrium, wanted: list[str], case: LoadCase
 ) -> tuple[tuple[Step, ...], dict[str, Exact]]:
     """Write the planned steps one after the other; a value enters an equation only after its own step."""
-    steps: list[Step] = []
-    tensions: dict[str, Exact] = {}
-    letters: dict[tuple[str, ...], str] = {}
-    for number, planned in enumerate(plan(structure, equilibrium, wanted, case.as_floats()), 1):
+    writer = _Writer(structure)
+    for planned in plan(structure, equilibrium, wanted, case.as_floats()):
+        writer.write(planned)
+    return tuple(writer.steps), writer.tensions
+
+
+class _Writer:
+    """Writes steps one after the other: letters of sections, letters of carried forces, values found so far."""
+
+    def __init__(self, structure: Structure) -> None:
+        self.structure = structure
+        self.steps: list[Step] = []
+        self.tensions: dict[str, Exact] = {}
+        self.sections: dict[tuple[str, ...], str] = {}
+        self.carried: dict[str, str] = {}
+
+    def write(self, planned: PlannedStep) -> None:
+        """Write one step and take over what it finds."""
         letter = ""
         for cut, _ in planned.bodies:
             if cut.kind == "section":
-                letter = letters.setdefault(cut.bars, section_letter(len(letters)))
-        step, found = write_step(structure, number, planned.bodies, planned.solves, tensions, letter=letter)
-        steps.append(step)
-        tensions.update(found)
-    return tuple(steps), tensions
+                letter = self.sections.setdefault(cut.bars, section_letter(len(self.sections)))
+        carries = {name: carried_letter(len(self.carried) + place) for place, name in enumerate(planned.carries)}
+        self.carried |= carries
+        for name, force in carries.items():
+            self.tensions[name] = symbol(force) / self.structure.bars[name].length
+        number = len(self.steps) + 1
+        if planned.closes:
+            carried = {name: self.carried[name] for name in planned.solves}
+            step, found = write_close(
+                self.structure, number, planned.bodies, carried, self.tensions, letter=letter, carries=carries
+            )
+            values = {carried[name]: force for name, force in step.results.items()}
+            self.tensions = {name: tension.substitute(values) for name, tension in self.tensions.items()}
+        else:
+            step, found = write_step(
+                self.structure, number, planned.bodies, planned.solves, self.tensions, letter=letter, carries=carries
+            )
+        self.steps.append(step)
+        self.tensions.update(found)
 
 
 def _residuals(
@@ -310,6 +338,6 @@ def _foundations(steps: tuple[Step, ...]) -> dict[str, tuple[int, ...]]:
             number = solved_in[name]
             own |= below[number] | {number}
         below[step.number] = own
-        for name in step.solves:
+        for name in (*step.carries, *step.solves_in, *step.solves):
             solved_in[name] = step.number
     return {name: (*sorted(below[number]), number) for name, number in solved_in.items()}

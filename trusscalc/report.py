@@ -62,11 +62,16 @@ def _member_data(item: ForceCheck) -> dict[str, Any]:
 
 def _step_data(step: Step, text: str) -> dict[str, Any]:
     data: dict[str, Any] = {"number": step.number, "kind": step.kind}
-    if step.kind != "pair":
+    several = len({equation.cut.kept for equation in step.equations}) > 1
+    if not several:
         data |= _cut_data(step.cut)
+    if step.carries:
+        data["carries"] = list(step.carries)
+    if step.solves_in:
+        data["solves_in"] = list(step.solves_in)
     data |= {
         "equations": [
-            {**_about_data(equation.about), **(_cut_data(equation.cut) if step.kind == "pair" else {})}
+            {**_about_data(equation.about), **(_cut_data(equation.cut) if several else {})}
             for equation in step.equations
         ],
         "solves": list(step.solves),

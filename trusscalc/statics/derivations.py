@@ -61,17 +61,21 @@ class Derivations:
         self.chosen: dict[int, Choice] = {}
         self.settled = 0
         self.solved = 0
+        self.exhausted = False
         self.candidates: list[Candidate] = []
         self._totals: dict[int, float] = {}
+        self._depths: dict[int, int] = {}
+        self._families: dict[int, int] = {}
 
     def propose(self, candidates: Iterable[Candidate]) -> None:
         """Add equations to choose from."""
         self.candidates.extend(candidates)
 
-    def run(self) -> None:
+    def run(self, *, pairs: bool = True) -> None:
         """Choose until a whole round changes nothing."""
         self._direct()
-        self._pairs()
+        if pairs:
+            self._pairs()
         for _ in range(MOST_ROUNDS):
             if not self._round():
                 return
@@ -81,7 +85,8 @@ class Derivations:
         self.solved |= 1 << bar
         if natural:
             self.settled |= 1 << bar
-        self._totals.clear()
+        for memory in (self._totals, self._depths, self._families):
+            memory.clear()
 
     def _direct(self) -> None:
         """Take the best equation that needs only what is given."""
@@ -171,6 +176,9 @@ class Derivations:
         if price > limit + SMALL:
             return
         needs = candidate.live & ~self.given & ~(1 << bar)
+        # a whole derivation costs at least its own price and that of the dearest result in it
+        if price + max((self.total(other) for other in bits(needs)), default=0.0) > limit + SMALL:
+            return
         family = self.ancestors(needs)
         if family >> bar & 1:
             return
@@ -183,15 +191,24 @@ class Derivations:
 
     def ancestors(self, needs: int) -> int:
         """Return everything the needed bars rest on, themselves included."""
-        found, waiting = needs, needs
-        while waiting:
-            low = waiting & -waiting
-            waiting ^= low
-            choice = self.chosen[low.bit_length() - 1]
-            more = (choice.needs | choice.partner) & ~found
-            found |= more
-            waiting |= more
+        found = 0
+        for bar in bits(needs):
+            found |= self._family(bar)
         return found
+
+    def _family(self, bar: int) -> int:
+        """Return a bar and everything it rests on."""
+        if bar not in self._families:
+            found = waiting = 1 << bar
+            while waiting:
+                low = waiting & -waiting
+                waiting ^= low
+                choice = self.chosen[low.bit_length() - 1]
+                more = (choice.needs | choice.partner) & ~found
+                found |= more
+                waiting |= more
+            self._families[bar] = found
+        return self._families[bar]
 
     def _leans_on(self, needs: int, bar: int) -> bool:
         return bool(self.ancestors(needs) >> bar & 1)
@@ -204,8 +221,10 @@ class Derivations:
         return total + DEPTH * (1 + max(self._depth(bar) for bar in bits(needs)))
 
     def _depth(self, bar: int) -> int:
-        needs = self.chosen[bar].needs
-        return 1 + max(self._depth(other) for other in bits(needs)) if needs else 0
+        if bar not in self._depths:
+            needs = self.chosen[bar].needs
+            self._depths[bar] = 1 + max(self._depth(other) for other in bits(needs)) if needs else 0
+        return self._depths[bar]
 
     def total(self, bar: int) -> float:
         """Return the price of a bar's whole derivation."""

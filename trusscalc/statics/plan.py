@@ -8,7 +8,7 @@ bar that one equation can give, whatever its body looks like.
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from trusscalc.errors import NoCutError
 from trusscalc.statics.bodies import (
@@ -22,6 +22,7 @@ from trusscalc.statics.bodies import (
     window_round,
 )
 from trusscalc.statics.bridges import bridge_bodies
+from trusscalc.statics.carrying import Carried, carry
 from trusscalc.statics.cuts import (
     SUM_X,
     SUM_Y,
@@ -49,6 +50,12 @@ class PlannedStep:
 
     bodies: tuple[tuple[Cut, About], ...]
     solves: tuple[str, ...]
+    carries: tuple[str, ...] = ()
+    """Bars whose force is first called X, Y, ... here."""
+    provisional: bool = False
+    """What it finds may still hold a carried force."""
+    closes: bool = False
+    """It solves for the carried forces."""
 
 
 def plan(
@@ -92,30 +99,79 @@ class _Search:
         self.decided = sum(1 << self.index[name] for name in equilibrium.tensions)
         self.prices = Prices(self.layout, zero)
         self.priced: dict[int, list[Candidate]] = {}
+        self.tables: dict[tuple[Window, int], Derivations] = {}
 
     def plan(self, wanted: Sequence[str]) -> tuple[PlannedStep, ...]:
         layout = self.layout
         links = [bar for bar in range(len(layout.bars)) if layout.ends[bar][1] < 0 and self.decided >> bar & 1]
         reactions = self._reactions(links)
-        targets = [self.index[name] for name in wanted]
-        steps = [step for bar in links if reactions.solved >> bar & 1 for step in reactions.steps_to(bar, 0)]
-        steps = list(dict.fromkeys(steps))
-        given = found_by(steps)
-        done, lost = given, []
-        tables: dict[Window, Derivations] = {}
-        for bar in (*links, *targets):
+        found = [step for bar in links if reactions.solved >> bar & 1 for step in reactions.steps_to(bar, 0)]
+        found = list(dict.fromkeys(found))
+        given = done = found_by(found)
+        steps = [self._step(step) for step in found]
+        goals = [*links, *(self.index[name] for name in wanted)]
+        while goals:
+            more, lost = self._reached(goals, given, done)
+            steps += [self._step(step) for step in more]
+            done |= found_by(more)
+            if not lost:
+                break
+            carried = self._carried(given)
+            if carried is None:
+                raise _unreachable([layout.bars[bar] for bar in lost])
+            steps += self._chain(carried, done)
+            given |= sum(1 << bar for bar in carried.bars)
+            done |= given
+            goals = lost
+        return tuple(steps)
+
+    def _reached(self, goals: Sequence[int], given: int, done: int) -> tuple[list[Found], list[int]]:
+        """Return the steps that reach what single equations and pairs reach, and the bars they do not reach."""
+        steps: list[Found] = []
+        lost = []
+        for bar in goals:
             if done >> bar & 1:
                 continue
-            table = self._table_for(bar, given, tables)
+            table = self._table_for(bar, given)
             if table is None:
-                lost.append(layout.bars[bar])
+                lost.append(bar)
                 continue
             more = table.steps_to(bar, done)
             done |= found_by(more)
             steps += more
-        if lost:
-            raise _unreachable(lost)
-        return tuple(self._step(step) for step in steps)
+        return steps, lost
+
+    # --- carried unknowns -------------------------------------------------------------------------------
+
+    def _carried(self, given: int) -> Carried | None:
+        base = self._table(whole_window(self.layout), given)
+        while not base.exhausted:
+            self._widen(base)
+        return carry(base, self.decided)
+
+    def _chain(self, carried: Carried, done: int) -> list[PlannedStep]:
+        """Return the steps from the carried bars to the equations that close."""
+        table = carried.table
+        held = sum(1 << bar for bar in carried.bars)
+        reached = done | held
+        chain: list[Found] = []
+        for candidate in carried.closing:
+            for bar in bits(candidate.live & ~table.given):
+                more = table.steps_to(bar, reached)
+                reached |= found_by(more)
+                chain += more
+        chain.append(Found(carried.closing, carried.bars))
+        steps, introduced = [], 0
+        for step in chain:
+            live = 0
+            for candidate in step.candidates:
+                live |= candidate.live
+            new = live & held & ~introduced
+            introduced |= new
+            carries = tuple(self.layout.bars[bar] for bar in bits(new))
+            steps.append(replace(self._step(step), carries=carries, provisional=step.solves != carried.bars))
+        steps[-1] = replace(steps[-1], closes=True)
+        return steps
 
     # --- reactions --------------------------------------------------------------------------------------
 
@@ -133,33 +189,43 @@ class _Search:
 
     # --- members ----------------------------------------------------------------------------------------
 
-    def _table_for(self, bar: int, given: int, tables: dict[Window, Derivations]) -> Derivations | None:
+    def _table_for(self, bar: int, given: int) -> Derivations | None:
         """Return a table that holds the bar: from a window round it, wider ones, and at last from bridges."""
         layout = self.layout
         size = WINDOW_JOINTS if len(layout.joints) > SMALL_TRUSS else len(layout.joints)
         while True:
             window = window_round(layout, bar, size) if size < len(layout.joints) else whole_window(layout)
-            if window not in tables:
-                table = Derivations(self.prices, given)
-                table.propose(self._priced(bodies_in(layout, window)))
-                table.run()
-                tables[window] = table
-            table = tables[window]
+            table = self._table(window, given)
             if table.solved >> bar & 1:
                 return table
             if not window.far or size > SMALL_TRUSS:
                 return self._with_bridges(table, bar)
             size *= 2
 
+    def _table(self, window: Window, given: int) -> Derivations:
+        """Return the derivations found in a window, worked out once."""
+        key = (window, given)
+        if key not in self.tables:
+            table = Derivations(self.prices, given)
+            table.propose(self._priced(bodies_in(self.layout, window)))
+            table.run()
+            self.tables[key] = table
+        return self.tables[key]
+
     def _with_bridges(self, table: Derivations, bar: int) -> Derivations | None:
         """Widen a table by every bar that one equation of any body gives, until it holds the bar."""
         while not table.solved >> bar & 1:
-            before = table.solved
-            table.propose(self._priced(bridge_bodies(self.layout, table.given | table.solved, self.decided)))
-            table.run()
-            if table.solved == before:
+            if table.exhausted:
                 return None
+            self._widen(table)
         return table
+
+    def _widen(self, table: Derivations) -> None:
+        """Add every bar that one equation of any body gives; the table is exhausted when there is none."""
+        before = table.solved
+        table.propose(self._priced(bridge_bodies(self.layout, table.given | before, self.decided)))
+        table.run()
+        table.exhausted = table.solved == before
 
     def _priced(self, bodies: Sequence[Body]) -> list[Candidate]:
         found: list[Candidate] = []

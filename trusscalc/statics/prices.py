@@ -118,11 +118,12 @@ class Prices:
 
     def independent(self, first: Candidate, second: Candidate, e: int, f: int) -> bool:
         """Return whether two equations in the same two unknowns decide both."""
-        a, b = (self._coefficient(first, bar) for bar in (e, f))
-        c, d = (self._coefficient(second, bar) for bar in (e, f))
+        a, b = (self.coefficient(first, bar) for bar in (e, f))
+        c, d = (self.coefficient(second, bar) for bar in (e, f))
         return bool((a * d - b * c) % self.layout.prime)
 
-    def _coefficient(self, candidate: Candidate, bar: int) -> int:
+    def coefficient(self, candidate: Candidate, bar: int) -> int:
+        """Return the lever of a bar in an equation, modulo the prime."""
         px, py, pw = candidate.point
         c, dx, dy = self.layout.lines[bar]
         sign = 1 if candidate.body.kept >> self.layout.ends[bar][0] & 1 else -1

@@ -9,7 +9,7 @@ from __future__ import annotations
 
 from collections import ChainMap
 from collections.abc import Mapping
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 from typing import Literal
 
 from trusscalc.errors import TrusscalcError
@@ -130,6 +130,12 @@ class Step:
         The section's letter, '' for joints and the whole truss.
     check : Equation or None
         An equation not used before, with all values known, that sums to zero.
+    carries : dict of str to str
+        Members whose force is called X, Y, ... from this step on.
+    solves_in : tuple of str
+        Members found here only in terms of carried forces.
+    partial : dict of str to Exact
+        Their forces, with the symbols X, Y, ... in them.
     """
 
     number: int
@@ -140,6 +146,9 @@ class Step:
     results: Mapping[str, Exact]
     letter: str = ""
     check: Equation | None = None
+    carries: Mapping[str, str] = field(default_factory=dict)
+    solves_in: tuple[str, ...] = ()
+    partial: Mapping[str, Exact] = field(default_factory=dict)
 
     @property
     def cut(self) -> Cut:
@@ -230,6 +239,7 @@ def write_step(
     known: dict[str, Exact],
     *,
     letter: str = "",
+    carries: Mapping[str, str] | None = None,
 ) -> tuple[Step, dict[str, Exact]]:
     """Return a step, and the tension coefficients it found.
 
@@ -247,6 +257,8 @@ def write_step(
         t of everything solved before.
     letter : str
         The section's letter.
+    carries : mapping of str to str, optional
+        Members carried from this step on, and the letters of their forces; ``known`` holds them already.
 
     Raises
     ------
@@ -263,12 +275,96 @@ def write_step(
         if equation.residual:
             message = f"step {number}: the terms do not sum to zero"
             raise StepError(message)
+    carries = dict(carries or {})
+    open_forces = {name for name in solves if set(found[name].symbols) & CARRIED_LETTERS}
+    forces = {name: found[name] * structure.bars[name].length for name in solves}
+    step = Step(
+        number=number,
+        kind=_kind(bodies),
+        equations=equations,
+        solves=tuple(name for name in solves if name not in open_forces),
+        uses=_uses(structure, equations, {*solves, *carries}),
+        results={name: force for name, force in forces.items() if name not in open_forces},
+        letter=letter,
+        check=None if open_forces else unused_check(structure, equations, values),
+        carries=carries,
+        solves_in=tuple(name for name in solves if name in open_forces),
+        partial={name: force for name, force in forces.items() if name in open_forces},
+    )
+    return step, found
+
+
+def carried_letter(count: int) -> str:
+    """Return the letter of the n-th carried force (0, 1, ...): X, Y, Z, then X4, X5, ..."""
+    return "XYZ"[count] if count < 3 else f"X{count + 1}"  # noqa: PLR2004 - the alphabet ends
+
+
+CARRIED_LETTERS = frozenset(carried_letter(count) for count in range(100))
+"""Symbols that stand for carried forces, and can stand for nothing else."""
+
+
+def write_close(
+    structure: Structure,
+    number: int,
+    bodies: tuple[tuple[Cut, About], ...],
+    carried: Mapping[str, str],
+    known: dict[str, Exact],
+    *,
+    letter: str = "",
+    carries: Mapping[str, str] | None = None,
+) -> tuple[Step, dict[str, Exact]]:
+    """Return the step that solves for the carried forces, and their tension coefficients.
+
+    Parameters
+    ----------
+    structure, number, bodies, letter, carries
+        As in ``write_step``.
+    carried : mapping of str to str
+        The carried members and the letters of their forces.
+    known : dict of str to Exact
+        t of everything solved before, with the letters in it where they are still open.
+
+    Raises
+    ------
+    StepError
+        When the equations do not decide the carried forces: 0 X = 0 occurs, and is caught here.
+    """
+    equations = tuple(write_equation(structure, cut, about, known, tuple(carried)) for cut, about in bodies)
+    rows = []
+    for equation in equations:
+        rest = equation.residual.substitute(dict.fromkeys(carried.values(), ZERO))
+        row = []
+        for sought in carried.values():
+            unit = {other: ONE if other == sought else ZERO for other in carried.values()}
+            row.append(equation.residual.substitute(unit) - rest)
+        rows.append([*row, -rest])
+    results = dict(zip(carried, eliminated(rows, tuple(carried)), strict=True))
+    values = {carried[name]: force for name, force in results.items()}
+    for equation in equations:
+        if equation.residual.substitute(values):
+            message = f"step {number}: the terms do not sum to zero"
+            raise StepError(message)
+    found = {name: force / structure.bars[name].length for name, force in results.items()}
+    step = Step(
+        number=number,
+        kind="close",
+        equations=equations,
+        solves=tuple(carried),
+        uses=_uses(structure, equations, set(carried)),
+        results=results,
+        letter=letter,
+        carries=dict(carries or {}),
+    )
+    return step, found
+
+
+def _kind(bodies: tuple[tuple[Cut, About], ...]) -> StepKind:
+    return bodies[0][0].kind if len({cut.kept for cut, _ in bodies}) == 1 else "pair"
+
+
+def _uses(structure: Structure, equations: tuple[Equation, ...], own: set[str]) -> tuple[str, ...]:
     used = {term.name for equation in equations for term in equation.terms if term.kind != "load"}
-    uses = tuple(name for name in structure.bars if name in used and name not in solves)
-    results = {name: found[name] * structure.bars[name].length for name in solves}
-    kind: StepKind = bodies[0][0].kind if len({cut.kept for cut, _ in bodies}) == 1 else "pair"
-    check = unused_check(structure, equations, values)
-    return Step(number, kind, equations, solves, uses, results, letter, check), found
+    return tuple(name for name in structure.bars if name in used and name not in own)
 
 
 def _completed(draft: Equation, found: Mapping[str, Exact]) -> Equation:
@@ -292,10 +388,15 @@ def _simultaneous(drafts: list[Equation], solves: tuple[str, ...]) -> dict[str, 
             if term.kind == "load" or term.name not in solves:
                 rest = rest + term.product
         rows.append([levers.get(name, ZERO) for name in solves] + [-rest])
-    for column in range(len(solves)):
+    return dict(zip(solves, eliminated(rows, solves), strict=True))
+
+
+def eliminated(rows: list[list[Exact]], names: tuple[str, ...]) -> list[Exact]:
+    """Return the solution of k equations in k unknowns (coefficients, then the right side, in each row)."""
+    for column in range(len(names)):
         pivot = next((row for row in range(column, len(rows)) if rows[row][column]), None)
         if pivot is None:
-            message = f"the equations do not decide {', '.join(solves)}"
+            message = f"the equations do not decide {', '.join(names)}"
             raise StepError(message)
         rows[column], rows[pivot] = rows[pivot], rows[column]
         head = rows[column][column].inverse()
@@ -304,7 +405,7 @@ def _simultaneous(drafts: list[Equation], solves: tuple[str, ...]) -> dict[str, 
             if row != column and rows[row][column]:
                 factor = rows[row][column]
                 rows[row] = [a - factor * b for a, b in zip(rows[row], rows[column], strict=True)]
-    return {name: rows[place][-1] for place, name in enumerate(solves)}
+    return [row[-1] for row in rows]
 
 
 def unused_check(structure: Structure, equations: tuple[Equation, ...], values: Mapping[str, Exact]) -> Equation | None:
