@@ -8,7 +8,6 @@ from __future__ import annotations
 
 import re
 import tomllib
-import unicodedata
 from collections.abc import Mapping
 from typing import Any, Final
 
@@ -109,8 +108,8 @@ def _lines(text: str) -> dict[str, int]:
     table, start, depth = "", "", 0
     for count, line in enumerate(text.split("\n"), 1):
         if not depth and (header := _HEADER.match(line)):
-            table = ".".join(_unquoted(key) for key in _KEYS.findall(header[1]))
-            parent, _, last = table.rpartition(".")
+            parts = [_unquoted(key) for key in _KEYS.findall(header[1])]
+            table, parent, last = ".".join(parts), ".".join(parts[:-1]), parts[-1]
             found.setdefault(f"[{table}]", count)
             found.setdefault(f"[{parent}] {last}" if parent else last, count)
             continue
@@ -140,11 +139,8 @@ def _line_of(problem: str, lines: Mapping[str, int]) -> int:
 
 
 def one_line(text: str) -> str:
-    """Return text that stays on one line of a terminal: control characters escaped, cut when too long."""
+    """Return text that stays on one line of a terminal: what does not print is escaped, and it is cut when too long."""
     shown = "".join(
-        f"\\u{{{ord(character):04x}}}"
-        if unicodedata.category(character)[0] == "C" or character in "\u2028\u2029"
-        else character
-        for character in text[:LONGEST_PROBLEM]
+        character if character.isprintable() else f"\\u{{{ord(character):04x}}}" for character in text[:LONGEST_PROBLEM]
     )
     return shown if len(text) <= LONGEST_PROBLEM else f"{shown}..."

@@ -93,10 +93,10 @@ class LoadCase:
         """Return what does not fit the truss: loads on joints that are not there."""
         known = [joint.name for joint in truss.joints]
         places = set(known)
+        missing = [load.joint for load in self.loads if load.joint not in places]
         return [
-            f"[cases.{self.name}] {load.joint}: there is no such joint{did_you_mean(load.joint, known)}"
-            for load in self.loads
-            if load.joint not in places
+            f"[cases.{self.name}] {joint}: there is no such joint{did_you_mean(joint, known, told=told)}"
+            for told, joint in enumerate(missing)
         ]
 
 

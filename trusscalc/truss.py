@@ -23,7 +23,8 @@ from trusscalc.units import FORCES, LENGTHS, unknown_unit
 
 LONGEST_NAME: Final = 40
 MOST_COMPARED: Final = 1000
-"""Names; looking for the nearest among more takes longer than it helps."""
+MOST_SUGGESTIONS: Final = 50
+"""Looking for the nearest of more names, or more often, takes longer than it helps."""
 MEMBER_ENDS: Final = 2
 PLANE: Final = 2
 
@@ -225,9 +226,9 @@ def _from_near_origin(joints: tuple[Joint, ...]) -> dict[str, tuple[float, float
     return {joint.name: (float(joint.x - first.x), float(joint.y - first.y)) for joint in joints}
 
 
-def did_you_mean(name: str, known: Iterable[str]) -> str:
-    """Return '; did you mean X?' for the nearest known name, or ''."""
-    known = list(known)
+def did_you_mean(name: str, known: Iterable[str], *, told: int = 0) -> str:
+    """Return '; did you mean X?' for the nearest known name, or '' (also after many problems have been told)."""
+    known = list(known) if told < MOST_SUGGESTIONS else []
     if len(known) > MOST_COMPARED:
         return ""
     near = difflib.get_close_matches(name[: 2 * LONGEST_NAME], known, n=1, cutoff=0.5)
@@ -318,7 +319,8 @@ def _members(
             unknown = [end for end in ends if end not in joints]
             if unknown:
                 problems += [
-                    f"{where} {name!r}: there is no joint {end!r}{did_you_mean(end, joints)}" for end in unknown
+                    f"{where} {name!r}: there is no joint {end!r}{did_you_mean(end, joints, told=len(problems))}"
+                    for end in unknown
                 ]
                 continue
             first, last = ends
@@ -343,7 +345,8 @@ def _supports(
     found = []
     for joint, stated in supports.items():
         if joint not in joints:
-            problems.append(f"[supports] {str(joint)[:60]}: there is no such joint{did_you_mean(str(joint), joints)}")
+            near = did_you_mean(str(joint), joints, told=len(problems))
+            problems.append(f"[supports] {str(joint)[:60]}: there is no such joint{near}")
             continue
         support = _support(joint, stated, problems)
         if support is not None:
@@ -407,12 +410,12 @@ def _behaviour(
     ends = {frozenset((member.start, member.end)) for member in members}
     for name in tension_only:
         if not isinstance(name, str) or frozenset(name.split("-")) not in ends:
-            near = did_you_mean(str(name), [member.name for member in members])
+            near = did_you_mean(str(name), [member.name for member in members], told=len(problems))
             problems.append(f"[behaviour] tension_only {str(name)[:90]!r}: there is no such member{near}")
     held = [support.joint for support in supports]
     for name in no_uplift:
         if name not in held:
-            near = did_you_mean(str(name), held)
+            near = did_you_mean(str(name), held, told=len(problems))
             problems.append(f"[behaviour] no_uplift {str(name)[:60]!r}: no support there{near}")
 
 

@@ -79,44 +79,34 @@ class TrussFile:
 
 def case_faults(joints: Sequence[str], cases: Sequence[LoadCase]) -> list[str]:
     """Return loads on joints that are not there, and case names stated twice."""
-    known = set(joints)
-    return [
-        f"[cases.{case.name}] {load.joint}: there is no such joint{did_you_mean(load.joint, joints)}"
-        for case in cases
-        for load in case.loads
-        if load.joint not in known
-    ] + [f"[cases] {name}: stated twice; rename one" for name in _twice(case.name for case in cases)]
+    missing = _missing(((case.name, load.joint) for case in cases for load in case.loads), joints)
+    problems = [f"[cases.{case}] {joint}: there is no such joint{near}" for case, joint, near in missing]
+    return problems + [f"[cases] {name}: stated twice; rename one" for name in _twice(case.name for case in cases)]
 
 
 def combination_faults(cases: Sequence[str], combinations: Sequence[Combination]) -> list[str]:
     """Return names that are also a case's, names stated twice, and cases that are not there."""
-    known = set(cases)
-    problems = [
-        f"[combinations] {combination.name}: is also the name of a case; rename one"
-        for combination in combinations
-        if combination.name in known
-    ]
-    problems += [f"[combinations] {name}: stated twice; rename one" for name in _twice(c.name for c in combinations)]
-    return problems + [
-        f"[combinations.{combination.name}] {case}: there is no such case{did_you_mean(case, cases)}"
-        for combination in combinations
-        for case, _ in combination.factors
-        if case not in known
-    ]
-
-
-def _twice(names: Iterable[str]) -> list[str]:
-    return [name for name, times in Counter(names).items() if times > 1]
+    missing = _missing(((each.name, case) for each in combinations for case, _ in each.factors), cases)
+    problems = [f"[combinations.{name}] {case}: there is no such case{near}" for name, case, near in missing]
+    names = [each.name for each in combinations]
+    problems += [f"[combinations] {name}: is also the name of a case; rename one" for name in names if name in cases]
+    return problems + [f"[combinations] {name}: stated twice; rename one" for name in _twice(names)]
 
 
 def name_faults(truss: Truss, project: Project) -> list[str]:
     """Return what the title block names that is no joint or member."""
-    if not project.names:
-        return []
     known = [joint.name for joint in truss.joints] + [member.name for member in truss.members]
-    names = {*known, *(f"{member.end}-{member.start}" for member in truss.members)}
-    return [
-        f"[project.names] {name}: there is no such joint or member{did_you_mean(name, known)}"
-        for name in project.names
-        if name not in names
-    ]
+    turned = {f"{member.end}-{member.start}" for member in truss.members}
+    missing = _missing((("project.names", name) for name in project.names if name not in turned), known)
+    return [f"[{table}] {name}: there is no such joint or member{near}" for table, name, near in missing]
+
+
+def _missing(asked: Iterable[tuple[str, str]], known: Sequence[str]) -> list[tuple[str, str, str]]:
+    """Return (where, name, nearest known name) for each asked name that is not known."""
+    there = set(known)
+    missing = [(where, name) for where, name in asked if name not in there]
+    return [(where, name, did_you_mean(name, known, told=told)) for told, (where, name) in enumerate(missing)]
+
+
+def _twice(names: Iterable[str]) -> list[str]:
+    return [name for name, times in Counter(names).items() if times > 1]
