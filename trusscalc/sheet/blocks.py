@@ -95,7 +95,7 @@ class Run:
     style: Literal["plain", "strong", "emphasis"] = "plain"
 
 
-Inline = Run | Formula | Value | Name | Decimals | Power
+Inline = Run | Formula | Value | Name | Decimals | Power | Bracket
 
 
 @dataclass(frozen=True, slots=True)

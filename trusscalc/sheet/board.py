@@ -23,9 +23,18 @@ TIE: Final = 0.45
 STRUT: Final = 1.15
 STRUT_INSIDE: Final = 0.62
 JOINT: Final = 1.5
+FORCE_SIZE: Final = 8.5
+VALUE_SIZE: Final = 8.0
+SMALL_SIZE: Final = 7.5
+SLOPE_SIZE: Final = 7.0
 CENTRE: Final = 3.5
 CENTRE_DOT: Final = 1.2
-MARGIN: Final = 1.0
+CENTRE_GAP: Final = CENTRE / 2 + 0.4
+"""Bars stop so far from a moment centre drawn at their joint."""
+FULL_WIDTH: Final = 170.0
+"""Text width of a sheet, mm."""
+HIGHEST: Final = 110.0
+MARGIN: Final = 0.5
 GRID: Final = 5.0
 """Heights of figures are multiples of this, so that text beside them keeps its lines."""
 LAYERS: Final = ("dimension", "bar", "inside", "symbol", "joint", "lettering")
@@ -52,12 +61,13 @@ def angle_between(first: Point, second: Point) -> float:
 
 
 class Board:
-    """Marks in layers, the room they take, and the labels that found none."""
+    """Marks in layers, the room they take, and the labels that found none (left out, or forced over a line)."""
 
     def __init__(self) -> None:
         self._layers: dict[str, list[Mark]] = {layer: [] for layer in LAYERS}
         self.obstacles = Obstacles()
         self.left_out: list[Label] = []
+        self.forced: list[Label] = []
 
     def put(self, layer: Layer, *marks: Mark, room: bool = True) -> None:
         """Draw marks; ``room`` False lets labels be written over them."""
@@ -131,6 +141,7 @@ class Board:
             return False
         if must and not best[0][0]:
             self.put("lettering", best[1])
+            self.forced.append(best[1])
         else:
             self.left_out.append(best[1])
         return False

@@ -7,14 +7,16 @@ from dataclasses import replace
 
 from trusscalc.errors import InputError, TrusscalcWarning
 from trusscalc.exacttext import to_text
-from trusscalc.files import TrussFile, reads, writes
+from trusscalc.files import reads, writes
 from trusscalc.loads import LoadCase
 from trusscalc.membercheck import MemberCheck
 from trusscalc.project import LINES, Project
 from trusscalc.sheet import figures, front, record
 from trusscalc.sheet.blocks import Block, Derivation, Heading, Origin, Picture, Sheet
 from trusscalc.sheet.derivation import Writer, writer_of
+from trusscalc.sheet.words import found_in
 from trusscalc.truss import Truss
+from trusscalc.trussfile import TrussFile
 
 MOST_PLACES = 12
 
@@ -83,7 +85,7 @@ def derivations(writer: Writer, *, drawings: bool = True) -> list[Block]:
     blocks: list[Block] = []
     heading = ""
     for step in writer.check.steps:
-        links = all(writer.teller.is_link(name) for name in step.solves)
+        links = all(writer.teller.is_link(name) for name in found_in(step))
         wanted = "Derivation of the reactions" if links and heading != "Derivation of the members" else ""
         wanted = wanted or "Derivation of the members"
         if wanted != heading:

@@ -9,10 +9,18 @@ from __future__ import annotations
 import itertools
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import Final
+from typing import Final, Literal
+
+from trusscalc.exact import ZERO, Exact
+from trusscalc.sheet.board import THIN, Board
+from trusscalc.sheet.lettering import Point
+from trusscalc.statics.cuts import Structure
+from trusscalc.statics.steps import Equation, Term, points_backwards
 
 GAP_WIDTH: Final = 9.0
 """Width on paper of a stretch left out, mm."""
+MOST_LOADS: Final = 8
+"""Loads in one equation beyond which they are collected to their resultant."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,7 +72,7 @@ class Fold:
         """The stretches left out, in mm before folding."""
         return tuple((first[1], second[0]) for first, second in itertools.pairwise(self.drawn))
 
-    def pieces(self, first: tuple[float, float], second: tuple[float, float]) -> list[tuple]:  # type: ignore[type-arg]
+    def pieces(self, first: tuple[float, float], second: tuple[float, float]) -> list[tuple[Point, Point]]:
         """Return the pieces of a line that lie in drawn stretches, folded."""
         if not self.drawn:
             return [(first, second)]
@@ -99,3 +107,59 @@ def folded(axis: int, wanted: Sequence[tuple[float, float]], whole: tuple[float,
     if len(merged) == 1 and merged[0][0] <= whole[0] and merged[0][1] >= whole[1]:
         return Fold(axis)
     return Fold(axis, tuple((low, high) for low, high in merged))
+
+
+@dataclass(frozen=True, slots=True)
+class Resultant:
+    """The resultant of parallel loads left out of a drawing.
+
+    Attributes
+    ----------
+    axis : str
+        ``x`` or ``y``: the direction of the loads.
+    size : Exact
+        Their sum, positive for the direction it is drawn in.
+    direction : (float, float)
+        Unit vector it acts along.
+    x, y : Exact
+        A point of its line of action.
+    joints : tuple of str
+        The loaded joints, in order along the body.
+    """
+
+    axis: Literal["x", "y"]
+    size: Exact
+    direction: Point
+    x: Exact
+    y: Exact
+    joints: tuple[str, ...]
+
+
+def collected(equation: Equation) -> tuple[Term, ...]:
+    """Return the load terms an equation writes as their resultant: all of them when they are many."""
+    loads = tuple(term for term in equation.terms if term.kind == "load")
+    return loads if len(loads) > MOST_LOADS else ()
+
+
+def resultant_of(structure: Structure, joints: Sequence[str], axis: Literal["x", "y"]) -> Resultant:
+    """Return the resultant of one component of the loads on several joints; size zero when they sum to zero."""
+    index = "xy".index(axis)
+    total, x, y = ZERO, ZERO, ZERO
+    for name in joints:
+        joint, size = structure.joints[name], structure.loads[name][index]
+        total, x, y = total + size, x + size * joint.x, y + size * joint.y
+    ordered = sorted(joints, key=lambda name: (float(structure.joints[name].x), float(structure.joints[name].y)))
+    way = (1.0, 0.0) if axis == "x" else (0.0, 1.0)
+    if not total or (x / total).symbols or (y / total).symbols:
+        return Resultant(axis, ZERO, way, ZERO, ZERO, tuple(ordered))
+    back = points_backwards(total)
+    direction = (-way[0], -way[1]) if back else way
+    return Resultant(axis, -total if back else total, direction, x / total, y / total, tuple(ordered))
+
+
+def break_line(board: Board, axis: int, place: float, low: float, high: float) -> None:
+    """Draw a break line across a body: straight with a zigzag in the middle."""
+    middle = (low + high) / 2
+    points = [(place, low), (place, middle - 1.5), (place + 1.3, middle - 0.5), (place - 1.3, middle + 0.5)]
+    points += [(place, middle + 1.5), (place, high)]
+    board.line(*(point if axis == 0 else (point[1], point[0]) for point in points), width=THIN)

@@ -19,12 +19,16 @@ from trusscalc.sheet.blocks import (
     Table,
     TitleBlock,
 )
-from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, sense
+from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, sense, tension_of
 from trusscalc.sheet.values import bound, decimal_text, difference, scientific
 from trusscalc.sheet.words import bar, capital, counted, listed
 
 TITLE = "Independent check of truss member forces"
 
+LIMIT = (
+    "both routes use the same geometry, supports and loads: an error there passes both. Compare the input with the "
+    "drawings."
+)
 FIELDS = (
     "project",
     "structure",
@@ -84,7 +88,14 @@ def summary_table(writer: Writer) -> Table:
     for place, (name, found) in enumerate(check.members.items()):
         step = by_number[found.steps[-1]] if found.steps else None
         source = Run(writer.teller.found_by(step)) if step else Run("not decided by statics")
-        rows.append((Run(bar(name)), source, Run(str(step.number)) if step else None, *writer.result_cells(name, found.exact, found)))
+        rows.append(
+            (
+                Run(bar(name)),
+                source,
+                Run(str(step.number)) if step else None,
+                *writer.result_cells(name, found.exact, found),
+            )
+        )
         if found.verdict == "differs":
             strong.append(place)
     columns = (Column("member"), Column("derived by"), Column("step", "right"), *RESULT_COLUMNS)
@@ -132,7 +143,9 @@ def _disagreements(check: MemberCheck) -> list[str]:
                 told.append(_one_verdict(check, what, verdict, names, found))
     if check.residuals:
         joints = listed(check.residuals)
-        told.append(f"Not in equilibrium with the values found by hand: joint{'s' * (len(check.residuals) > 1)} {joints}.")
+        told.append(
+            f"Not in equilibrium with the values found by hand: joint{'s' * (len(check.residuals) > 1)} {joints}."
+        )
     if not check.agreed and not told:
         told.append("The check did not agree.")
     return told
@@ -162,9 +175,7 @@ def _one_verdict(check: MemberCheck, what: str, verdict: str, names: list[str], 
 def _flags(writer: Writer) -> list[str]:
     check = writer.check
     told = []
-    pressed = [
-        f"{bar(name)} is in compression" for name in check.truss.tension_only if _sense(check, name) == "C"
-    ]
+    pressed = [f"{bar(name)} is in compression" for name in check.truss.tension_only if _sense(check, name) == "C"]
     unseen = [bar(name) for name in check.truss.tension_only if _sense(check, name) is None]
     if pressed:
         told.append(f"Flag: stated to take tension only, but {listed(pressed)}.")
@@ -195,20 +206,9 @@ def _pulls_down(check: MemberCheck, joint: str) -> bool:
     """Return whether the reactions at a joint together pull it down."""
     total: Exact = ZERO
     for link in check.truss.links:
-        found = check.reactions[link.name]
-        if link.joint != joint or found.exact is None:
-            continue
-        # the sign of R dy / L is that of R dy; several links are weighed by their lengths
-        value = check.case.value(found.exact) * link.dy
-        total = total + value / length_of(link.dx, link.dy)
-    return total.sign() < 0
-
-
-def length_of(dx: Exact, dy: Exact) -> Exact:
-    """Return the length of a direction."""
-    from trusscalc.exact import sqrt  # noqa: PLC0415 - a name that would read oddly above
-
-    return sqrt(dx * dx + dy * dy, proven=False)
+        if link.joint == joint:
+            total = total + (tension_of(check, link.name) or ZERO) * link.dy
+    return check.case.value(total).sign() < 0
 
 
 def _is_rounded(check: MemberCheck) -> bool:
@@ -222,9 +222,9 @@ def _largest(writer: Writer, names: list[str]) -> str:
     for letter, word in (("C", "compression"), ("T", "tension")):
         own = [name for name in names if check.members[name].sense == letter]
         if own:
-            sizes = {name: abs(check.case.value(check.members[name].exact or ZERO)) for name in own}
-            most = max(own, key=lambda name: sizes[name])
-            told.append(f"Largest {word}: {decimal_text(sizes[most], writer.places)} {check.truss.force} in {bar(most)}.")
+            most = max(own, key=lambda name: abs(check.members[name].decimal or 0.0))
+            size = decimal_text(check.case.value(check.members[most].exact or ZERO), writer.places).removeprefix("-")
+            told.append(f"Largest {word}: {size} {check.truss.force} in {bar(most)}.")
     return "".join(f"{text} " for text in told)
 
 
@@ -265,16 +265,22 @@ def scope(check: MemberCheck) -> list[Block]:
     """Return what was checked, what was not, and what no such check can see; with room to sign and to seal."""
     checked = [name for name, found in check.members.items() if found.exact is not None]
     rest = [member.name for member in check.truss.members if member.name not in set(checked)]
+    names = listed(map(bar, checked)) or "none"
     count = f"{len(checked)} of {len(check.truss.members)} members"
     balance = ", equilibrium of every joint" if check.statics.determinate else ""
     items = [
-        ("Checked", f"axial force in {count} ({listed(map(bar, checked)) or 'none'}), all reactions{balance}; this load case only"),
-        ("Not checked", f"{counted(len(rest), 'member')}{': ' + listed(map(bar, rest)) if rest else ''}; other load cases"),
+        (
+            "Checked",
+            f"axial force in {count} ({names}), all reactions{balance}; this load case only",
+        ),
+        (
+            "Not checked",
+            f"{counted(len(rest), 'member')}{': ' + listed(map(bar, rest)) if rest else ''}; other load cases",
+        ),
         ("Not covered", "strength, buckling, connections, fatigue, bracing, foundations, deflection"),
         (
             "Limit",
-            "both routes use the same geometry, supports and loads: an error there passes both. Compare the input "
-            "with the drawings.",
+            LIMIT,
         ),
     ]
     return [Heading(2, "Scope"), Items(tuple((term, (Run(text),)) for term, text in items)), Seal()]

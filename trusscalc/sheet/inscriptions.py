@@ -52,11 +52,19 @@ def amount(value: Exact, places: int = PLACES) -> str:
 
 
 def exact_text(value: Exact) -> str:
-    """Return exact text as an engineer letters it: ``5√3/2``, ``3P/2``."""
+    """Return exact text as an engineer letters it, a raised dot where a product could be misread.
+
+    Examples
+    --------
+    >>> from trusscalc.exacttext import parse
+    >>> exact_text(parse("5*sqrt(3)/2")), exact_text(parse("P*sqrt(3)/16", ["P"]))
+    ('5√3/2', 'P/16·√3')
+    """
     text = re.sub(r"sqrt\((\d+)\)", r"√\1", to_text(value))
     text = re.sub(r"sqrt\(", "√(", text)
-    text = re.sub(r"(\d)\*(?=[^\W\d]|√)", r"\1", text).replace("*", "·")
-    return text.replace("-", MINUS)
+    # after a denominator the product keeps its dot: P/16·√3 is not P/(16√3)
+    text = re.sub(r"(?<![\d/.])(\d+)\*(?=[^\W\d]|√)", r"\1", text)
+    return text.replace("*", "·").replace("-", MINUS)
 
 
 def arm(value: Exact) -> str:

@@ -7,6 +7,7 @@ decided by separating axes.
 
 from __future__ import annotations
 
+import itertools
 import math
 import unicodedata
 from collections.abc import Iterable, Iterator
@@ -176,7 +177,7 @@ def boxes_of(mark: Stroke | Arrow | Ring | Label) -> Iterator[Box]:
         yield line_box(neck, mark.tip, mark.head_width)
     else:
         points = (*mark.points, mark.points[0]) if mark.closed else mark.points
-        for start, end in zip(points, points[1:], strict=False):
+        for start, end in itertools.pairwise(points):
             yield line_box(start, end, mark.width)
 
 
@@ -186,10 +187,10 @@ class Obstacles:
     SQUARE: Final = 8.0
 
     def __init__(self) -> None:
-        self._squares: dict[tuple[int, int], list[tuple[Box, bool]]] = {}
+        self._squares: dict[tuple[int, int], list[tuple[Box, tuple[float, float, float, float], bool]]] = {}
 
-    def _covered(self, box: Box) -> Iterator[tuple[int, int]]:
-        left, lower, right, upper = box.bounds
+    def _covered(self, bounds: tuple[float, float, float, float]) -> Iterator[tuple[int, int]]:
+        left, lower, right, upper = bounds
         for column in range(math.floor(left / self.SQUARE), math.floor(right / self.SQUARE) + 1):
             for row in range(math.floor(lower / self.SQUARE), math.floor(upper / self.SQUARE) + 1):
                 yield column, row
@@ -198,15 +199,20 @@ class Obstacles:
         """Take up boxes; ``lettering`` marks those of labels, which may never be written over."""
         for box in boxes:
             for piece in _in_pieces(box, 2 * self.SQUARE):
-                for square in self._covered(piece):
-                    self._squares.setdefault(square, []).append((piece, lettering))
+                bounds = piece.bounds
+                for square in self._covered(bounds):
+                    self._squares.setdefault(square, []).append((piece, bounds, lettering))
 
     def hits(self, box: Box, gap: float = 0.25) -> tuple[int, int]:
         """Return how many labels and how many other boxes a box would touch."""
         letters: set[int] = set()
         lines: set[int] = set()
-        for square in self._covered(box):
-            for other, lettering in self._squares.get(square, ()):
+        left, lower, right, upper = box.bounds
+        left, lower, right, upper = left - gap, lower - gap, right + gap, upper + gap
+        for square in self._covered((left, lower, right, upper)):
+            for other, (west, south, east, north), lettering in self._squares.get(square, ()):
+                if west > right or east < left or south > upper or north < lower:
+                    continue
                 if touch(box, other, gap):
                     (letters if lettering else lines).add(id(other))
         return len(letters), len(lines)

@@ -21,8 +21,7 @@ from trusscalc.sheet.blocks import (
     Run,
     Table,
 )
-from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, without_sense
-from trusscalc.sheet.front import length_of
+from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, tension_of, without_sense
 from trusscalc.sheet.values import decimal_text, printed, scientific
 from trusscalc.sheet.words import bar, counted, listed
 
@@ -31,21 +30,44 @@ ASSUMPTIONS = (
     ("Loads and reactions act at joints only.", "A load between joints bends its member and is missing here."),
     ("Members are straight, their axes meet in the joints.", "Eccentric connections add bending."),
     ("Weight, where included, is put on the joints.", "A member's own weight between its joints bends it."),
-    ("Displacements are small; equilibrium is written on the undeformed truss.", "Slender trusses carry more than shown."),
-    ("Linear elastic material, the same EA in all members of the stiffness route.", "Without effect on a statically determinate truss."),
+    (
+        "Displacements are small; equilibrium is written on the undeformed truss.",
+        "Slender trusses carry more than shown.",
+    ),
+    (
+        "Linear elastic material, the same EA in all members of the stiffness route.",
+        "Without effect on a statically determinate truss.",
+    ),
     ("The truss is plane and held sideways by others.", "Wind, skew and lateral buckling are not seen."),
-    ("Supports are as stated, without friction or settlement.", "A stuck bearing adds forces that are missing here."),
+    (
+        "Supports are as stated, without friction or settlement.",
+        "A stuck bearing adds forces that are missing here.",
+    ),
 )
+NEVER_FED_ON = "no rounded number is calculated with"
+SIGNS = "tension positive; x to the right, y upwards; moments anticlockwise positive; every unknown is drawn as tension"
+SYMBOLS = "N axial force, R reaction on the truss, P load as drawn; subscripts name member, joint or support"
+METHOD = (
+    "by hand: joints and sections, one equation for one unknown where there is one, in exact arithmetic; "
+    "independently: displacement method in floating point. The two share the stated truss and loads only"
+)
+WELL_CONDITIONED = "what double precision keeps of a well-conditioned truss; more is a mistake, not a tolerance"
+ILL_CONDITIONED = "ten times the rounding error to be expected of the numeric route at the condition told below"
 
-CAUTIONS = (
+AXIAL_ONLY = (
     "This sheet checks axial forces of an ideal truss only. It says nothing about the strength, stability, "
-    "connections, fatigue or serviceability of any member.",
-    "A licensed engineer has to check it, decide whether its assumptions hold for the structure, and take "
-    "responsibility for its use under the law of the place.",
-    "Loads, load factors and combinations are the engineer's input. Local codes, in the editions adopted where the "
-    "structure stands, govern; this sheet gives no opinion on them.",
-    "Prepared for the project, load case and revision named above; not for use elsewhere.",
+    "connections, fatigue or serviceability of any member."
 )
+LICENSED = (
+    "A licensed engineer has to check it, decide whether its assumptions hold for the structure, and take "
+    "responsibility for its use under the law of the place."
+)
+CODES = (
+    "Loads, load factors and combinations are the engineer's input. Local codes, in the editions adopted where the "
+    "structure stands, govern; this sheet gives no opinion on them."
+)
+NOT_ELSEWHERE = "Prepared for the project, load case and revision named above; not for use elsewhere."
+CAUTIONS = (AXIAL_ONLY, LICENSED, CODES, NOT_ELSEWHERE)
 
 
 def program() -> str:
@@ -62,23 +84,22 @@ def basis(check: MemberCheck, truss_text: str, places: int) -> list[Block]:
     """Return assumptions, conventions, rounding, tolerance, program and digest."""
     rows = tuple((Run(str(place)), Run(a), Run(b)) for place, (a, b) in enumerate(ASSUMPTIONS, 1))
     table = Table((Column("no.", "right"), Column("assumption"), Column("consequence where it fails")), rows)
-    units = f"lengths in {check.truss.length}, forces in {check.truss.force}, moments in {check.truss.force} {check.truss.length}"
-    tolerance: list[Inline] = [Run("the two routes agree within "), scientific(check.tolerance, 2)]
-    if check.tolerance > TOLERANCE:
-        tolerance.append(
-            Run(" of the largest force: ten times the rounding error to be expected of the numeric route at the condition below")
-        )
-    else:
-        tolerance.append(
-            Run(" of the largest force: what double precision keeps of a well-conditioned truss; more is a mistake, not a tolerance")
-        )
+    length, force = check.truss.length, check.truss.force
+    units = f"lengths in {length}, forces in {force}, moments in {force} {length}"
+    rounding = f"round half to even, once, from the exact value, to {places} decimal places; {NEVER_FED_ON}"
+    reason = WELL_CONDITIONED if check.tolerance <= TOLERANCE else ILL_CONDITIONED
+    tolerance = (
+        Run("the two routes agree within "),
+        scientific(check.tolerance, 2),
+        Run(f" of the largest force: {reason}"),
+    )
     items: list[tuple[str, tuple[Inline, ...]]] = [
         ("Units", (Run(units),)),
-        ("Signs", (Run("tension positive; x to the right, y upwards; moments anticlockwise positive; every unknown is drawn as tension"),)),
-        ("Symbols", (Run("N axial force, R reaction on the truss, P load as drawn; subscripts name member, joint or support"),)),
-        ("Rounding", (Run(f"round half to even, once, from the exact value, to {places} decimal places; no rounded number is calculated with"),)),
-        ("Tolerance", tuple(tolerance)),
-        ("Method", (Run("by hand: joints and sections, one equation for one unknown where there is one, in exact arithmetic; independently: displacement method in floating point. The two share the stated truss and loads only"),)),
+        ("Signs", (Run(SIGNS),)),
+        ("Symbols", (Run(SYMBOLS),)),
+        ("Rounding", (Run(rounding),)),
+        ("Tolerance", tolerance),
+        ("Method", (Run(METHOD),)),
         ("Codes", (Run("none applied: loads and combinations are taken as stated"),)),
         ("Program", (Run(program()),)),
         ("Input digest", (Run(f"SHA-256 of the truss file: {digest(truss_text)}"),)),
@@ -91,19 +112,19 @@ def basis(check: MemberCheck, truss_text: str, places: int) -> list[Block]:
 
 def input_echo(writer: Writer, project: Project, truss_text: str) -> list[Block]:
     """Return joints, members with their lengths, supports, other names, and the truss file itself."""
-    check, places = writer.check, writer.places
-    truss, case = check.truss, check.case
+    check = writer.check
+    truss = check.truss
     other = project.names
     joints = tuple(
-        (Run(j.name), printed(j.x, case), _near(j.x, places), printed(j.y, case), _near(j.y, places), Run(other.get(j.name, "")))
-        for j in truss.joints
+        (Run(joint.name), *_both(writer, joint.x), *_both(writer, joint.y), Run(other.get(joint.name, "")))
+        for joint in truss.joints
     )
     bars = writer.teller.structure.bars
     members = []
     for member in truss.members:
         length = bars[member.name].length
         others = next((other[n] for n in (member.name, f"{member.end}-{member.start}") if n in other), "")
-        cells = (Run(bar(member.name)), Run(member.group), printed(length, case), _near(length, places), Run(others))
+        cells = (Run(bar(member.name)), Run(member.group), *_both(writer, length), Run(others))
         members.append((*cells, Run(_behaviour(check, member.name))))
     unit = truss.length
     blocks: list[Block] = [
@@ -138,6 +159,10 @@ def input_echo(writer: Writer, project: Project, truss_text: str) -> list[Block]
     return blocks
 
 
+def _both(writer: Writer, value: Exact) -> tuple[Inline, Inline]:
+    return printed(value, writer.check.case), _near(value, writer.places)
+
+
 def _near(value: Exact, places: int) -> Decimals:
     return Decimals(decimal_text(value, places))
 
@@ -154,7 +179,8 @@ def _supports(check: MemberCheck) -> Table:
         for place, link in enumerate(support.links):
             head = (Run(support.joint), Run(kind)) if place == 0 else (None, None)
             uplift = "no uplift" if place == 0 and support.joint in check.truss.no_uplift else ""
-            rows.append((*head, Run(bar(link.name)), printed(link.dx, check.case), printed(link.dy, check.case), Run(uplift)))
+            direction = (printed(link.dx, check.case), printed(link.dy, check.case))
+            rows.append((*head, Run(bar(link.name)), *direction, Run(uplift)))
     columns = (
         Column("support"),
         Column("kind"),
@@ -174,9 +200,7 @@ def loads(writer: Writer) -> list[Block]:
     check = writer.check
     case, force = check.case, check.truss.force
     symbolic = any(part.symbols for load in case.loads for part in (load.fx, load.fy))
-    rows: list[tuple[Inline | None, ...]] = []
-    for load in case.loads:
-        rows.append((Run(load.joint), *_force_cells(writer, load.fx, load.fy, symbolic)))
+    rows = [(Run(load.joint), *_force_cells(writer, load.fx, load.fy, symbolic)) for load in case.loads]
     fx = sum((load.fx for load in case.loads), start=ZERO)
     fy = sum((load.fy for load in case.loads), start=ZERO)
     rows.append((Run("total"), *_force_cells(writer, fx, fy, symbolic)))
@@ -215,14 +239,17 @@ def reactions(writer: Writer) -> list[Block]:
 
 def _balance(writer: Writer) -> list[Block]:
     check = writer.check
-    if any(found.exact is None for found in check.reactions.values()):
-        text = "Statics alone does not decide every reaction, so the balance of the whole truss cannot be closed exactly."
-        return [Paragraph((Run(text),))]
-    loads_sum = _resultant([(load.joint, load.fx, load.fy) for load in check.case.loads], check)
+    tensions = {link.name: tension_of(check, link.name) for link in check.truss.links}
     acting = []
     for link in check.truss.links:
-        share = (check.reactions[link.name].exact or ZERO) / length_of(link.dx, link.dy)
-        acting.append((link.joint, share * link.dx, share * link.dy))
+        tension = tensions[link.name]
+        if tension is None:
+            text = (
+                "Statics alone does not decide every reaction: the balance of the whole truss cannot be closed exactly."
+            )
+            return [Paragraph((Run(text),))]
+        acting.append((link.joint, tension * link.dx, tension * link.dy))
+    loads_sum = _resultant([(load.joint, load.fx, load.fy) for load in check.case.loads], check)
     reaction_sum = _resultant(acting, check)
     total = tuple(a + b for a, b in zip(loads_sum, reaction_sum, strict=True))
     rows = tuple(
@@ -256,7 +283,8 @@ def _resultant(forces: list[tuple[str, Exact, Exact]], check: MemberCheck) -> tu
 def cross_check(check: MemberCheck) -> list[Block]:
     """Return what the independent route says of itself."""
     statics = check.statics
-    count = f"{statics.members} members + {statics.reactions} reactions against 2 × {statics.joints} joints, rank {statics.rank}"
+    count = f"{statics.members} members + {statics.reactions} reactions against 2 × {statics.joints} joints"
+    count += f", rank {statics.rank}"
     if statics.determinate:
         count += ": stable and statically determinate"
     else:
@@ -267,13 +295,17 @@ def cross_check(check: MemberCheck) -> list[Block]:
     elif check.residuals:
         joints = f"NOT in equilibrium: {listed(check.residuals)}"
     else:
-        joints = f"loads and all member forces, by hand where found by hand, sum to exactly zero at each of the {statics.joints} joints"
+        forces = "loads, reactions and all member forces, those found above among them"
+        joints = f"{forces}, sum to exactly zero at each of the {statics.joints} joints"
     zero = listed(map(bar, check.zero_members)) or "none"
     items: list[tuple[str, tuple[Inline, ...]]] = [
         ("Count and rank", (Run(count),)),
         ("Joints", (Run(joints),)),
         ("No force in this case", (Run(zero),)),
-        ("Stiffness route", (Run("imbalance at the worst joint "), _small(check.stiffness_residual), Run(" of the largest force"))),
+        (
+            "Stiffness route",
+            (Run("imbalance at the worst joint "), _small(check.stiffness_residual), Run(" of the largest force")),
+        ),
         ("Condition", (Run("estimated condition number "), _size(check.condition))),
         ("Independence", (Run("the two routes share no arithmetic; they share geometry, supports and loads"),)),
     ]

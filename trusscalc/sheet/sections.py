@@ -1,8 +1,8 @@
 """The section line: one line on paper that crosses every cut bar once and no other bar.
 
-Tried in this order, everything in millimetres on paper: a straight upright line, a straight line at another angle, an upright or
-level line that steps aside for joints on the wrong side, and a chain through the cut bars in
-the order round the body. Whatever comes out is proven on the drawing: crossings are counted, and a line
+Tried in this order, everything in millimetres on paper: a straight upright line, a straight line at another
+angle, an upright or level line that steps aside for joints on the wrong side, and a chain through the cut
+bars in the order round the body. Whatever comes out is proven on the drawing: crossings are counted, and a line
 that meets a bar it should not is thrown away.
 """
 
@@ -28,10 +28,14 @@ STUB: Final = 7.0
 """How far from the kept part it runs in a free body."""
 STEP_HEIGHT: Final = 8.0
 BEYOND: Final = 9.0
-"""How far it reaches beyond the outermost bar."""
+SHORT_BEYOND: Final = 5.0
+"""How far it reaches beyond the outermost bar; the shorter one where other bars are near."""
 GOOD_GAP: Final = 5.0
 MOST_BARS_IN_A_CHAIN: Final = 7
+SLACK: Final = 1e-9
 DIRECTIONS: Final = 60
+STRAIGHT_TRIALS: Final = 6
+LEVEL_PENALTY: Final = 4.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -88,26 +92,32 @@ def section_line(
     if not cut:
         return None
     bars = CutBars(dict(cut), tuple(others))
-    for trial in _trials(bars, near_kept, share):
-        found = bars.proven(trial)
-        if found:
-            return found
+    for beyond in (BEYOND, SHORT_BEYOND):
+        for trial in _trials(bars, near_kept, share, beyond):
+            found = bars.proven(trial)
+            if found:
+                return found
     return _chain(bars, near_kept)
 
 
-def _trials(bars: CutBars, near_kept: bool, share: float) -> Iterator[Sequence[Point]]:
-    straight = list(_straight(bars, near_kept, share))
+def _trials(bars: CutBars, near_kept: bool, share: float, beyond: float) -> Iterator[Sequence[Point]]:
+    straight = list(_straight(bars, near_kept, share, beyond))
     good = [points for score, points in straight if score >= GOOD_GAP]
-    yield from good[:3]
+    yield from good[:STRAIGHT_TRIALS]
+    if len(bars.cut) == 1:
+        return
     yield from (
         points
-        for points in (_stepped(bars, near_kept, upright=True), _stepped(bars, near_kept, upright=False))
+        for points in (
+            _stepped(bars, near_kept, beyond, upright=True),
+            _stepped(bars, near_kept, beyond, upright=False),
+        )
         if points
     )
     yield from (points for score, points in straight if score < GOOD_GAP)
 
 
-def _straight(bars: CutBars, near_kept: bool, share: float) -> list[tuple[float, Sequence[Point]]]:
+def _straight(bars: CutBars, near_kept: bool, share: float, beyond: float) -> list[tuple[float, Sequence[Point]]]:
     """Return straight lines that part kept from other ends, with the width of the gap they run in, best first."""
     found = []
     for place in range(DIRECTIONS):
@@ -124,15 +134,19 @@ def _straight(bars: CutBars, near_kept: bool, share: float) -> list[tuple[float,
             offset = low + (min(gap / 2, STUB) if near_kept else gap * share)
             line = (sign * normal[0], sign * normal[1])
             tilt = abs(math.degrees(lean))
+            tilt = min(tilt, 90.0 - tilt + LEVEL_PENALTY)  # level is nearly as good as upright
             score = min(gap, 3 * STUB) - 0.25 * tilt
+            if len(bars.cut) == 1:  # a single bar is cut square
+                ((start, end),) = bars.cut.values()
+                score = 50.0 * abs(_dot(unit(start, end), normal))
             if place == 0 and gap >= GOOD_GAP:
                 score += 100.0
-            found.append((score, gap, _across(bars, line, offset)))
+            found.append((score, gap, _across(bars, line, offset, beyond)))
     found.sort(key=lambda item: -item[0])
     return [(gap, points) for _, gap, points in found]
 
 
-def _across(bars: CutBars, normal: Point, offset: float) -> tuple[Point, Point]:
+def _across(bars: CutBars, normal: Point, offset: float, beyond: float) -> tuple[Point, Point]:
     """Return the piece of a straight line that reaches beyond all cut bars."""
     direction = (-normal[1], normal[0])
     reaches = []
@@ -142,14 +156,14 @@ def _across(bars: CutBars, normal: Point, offset: float) -> tuple[Point, Point]:
         point = (start[0] + share * (end[0] - start[0]), start[1] + share * (end[1] - start[1]))
         reaches.append(_dot(point, direction))
     base = (normal[0] * offset, normal[1] * offset)
-    low, high = min(reaches) - BEYOND, max(reaches) + BEYOND
+    low, high = min(reaches) - beyond, max(reaches) + beyond
     return along(base, direction, low), along(base, direction, high)
 
 
 # --- a line that steps aside ------------------------------------------------------------------------------
 
 
-def _stepped(bars: CutBars, near_kept: bool, *, upright: bool) -> list[Point] | None:
+def _stepped(bars: CutBars, near_kept: bool, beyond: float, *, upright: bool) -> list[Point] | None:
     """Return an upright (or level) line that passes each joint on its right side, with soft steps between."""
 
     def turned(point: Point) -> Point:
@@ -165,10 +179,10 @@ def _stepped(bars: CutBars, near_kept: bool, *, upright: bool) -> list[Point] | 
     heights = sorted(levels)
     base = _base(levels, heights, near_kept)
     values = [_held(base, *levels[height]) for height in heights]
-    points: list[Point] = [(values[0], heights[0] - BEYOND)]
+    points: list[Point] = [(values[0], heights[0] - beyond)]
     for (v0, u0), (v1, u1) in itertools.pairwise(zip(heights, values, strict=True)):
         points += _soft_step(v0, u0, v1, u1)
-    points.append((values[-1], heights[-1] + BEYOND))
+    points.append((values[-1], heights[-1] + beyond))
     return [turned((side * u, v)) for u, v in points]
 
 
@@ -315,7 +329,7 @@ def crossing(first: Segment, second: Segment) -> Point | None:
         return None
     t = ((cx - ax) * (dy - cy) - (cy - ay) * (dx - cx)) / below
     s = ((cx - ax) * (by - ay) - (cy - ay) * (bx - ax)) / below
-    if 0 <= t < 1 and -1e-9 <= s <= 1 + 1e-9:
+    if 0 <= t < 1 and -SLACK <= s <= 1 + SLACK:
         return ax + t * (bx - ax), ay + t * (by - ay)
     return None
 

@@ -16,6 +16,7 @@ LONGEST_EXACT: Final = 60
 """Characters of exact text beyond which nobody reads it."""
 DIGITS: Final = 10
 """Significant digits printed instead of such a number."""
+PENCIL_DIGITS: Final = 40
 WIDE: Final = Context(prec=400, rounding=ROUND_HALF_EVEN)
 
 Number = Value | Decimals | Bracket
@@ -97,7 +98,7 @@ def float_text(value: float, places: int, slack: float) -> str:
 
 
 def _plain(number: Decimal) -> str:
-    return f"{number if number else abs(number):f}"
+    return f"{number or abs(number):f}"
 
 
 def bound(size: float) -> Power:
@@ -105,9 +106,9 @@ def bound(size: float) -> Power:
     return Power("", math.floor(math.log10(size)), below=True)
 
 
-def scientific(size: float, digits: int) -> Power:
-    """Return a positive size with so many significant digits and its power of ten."""
-    mantissa, _, exponent = f"{size:.{digits - 1}e}".partition("e")
+def scientific(size: float | Decimal, digits: int) -> Power:
+    """Return a size, whatever its sign, with so many significant digits and its power of ten."""
+    mantissa, _, exponent = f"{abs(size):.{digits - 1}e}".partition("e")
     return Power(mantissa, int(exponent))
 
 
@@ -148,23 +149,44 @@ def holds_decimals(products: tuple[Product, ...]) -> bool:
     )
 
 
-def pencil_sum(products: tuple[Product, ...], case: LoadCase) -> Exact:
-    """Return what a reader gets who adds up a written sum with the digits printed."""
-    total = ZERO
+def pencil_sum(products: tuple[Product, ...], case: LoadCase) -> Decimal:
+    """Return what a reader gets who adds up a written sum with the digits printed (roots to 40 digits).
+
+    Raises
+    ------
+    InexactNumberError
+        When a carried force stands in it.
+    """
+    total = Decimal(0)
     for product in products:
-        amount = ONE
-        for factor in product.factors:
-            amount = amount * _read(factor, case)
-        total = total - amount if product.negative else total + amount
-    return total
+        amount = _pencil_product(product, case)
+        total = WIDE.subtract(total, amount) if product.negative else WIDE.add(total, amount)
+    return total.quantize(Decimal(1).scaleb(-PENCIL_DIGITS // 2), context=WIDE)
 
 
-def _read(factor: Value | Decimals | Name | Bracket, case: LoadCase) -> Exact:
+def multiplied(product: Product, case: LoadCase) -> Decimals | None:
+    """Return a product with rounded digits in it as a pencil multiplies it out, None for an exact one."""
+    if not holds_decimals((product,)):
+        return None
+    amount = _pencil_product(product, case)
+    amount = -amount if product.negative else amount
+    number = printed(rational(Fraction(amount)), case)
+    return number if isinstance(number, Decimals) else Decimals(_plain(amount.normalize(WIDE)))
+
+
+def _pencil_product(product: Product, case: LoadCase) -> Decimal:
+    amount = Decimal(1)
+    for factor in product.factors:
+        amount = WIDE.multiply(amount, _read(factor, case))
+    return amount
+
+
+def _read(factor: Value | Decimals | Name | Bracket, case: LoadCase) -> Decimal:
     match factor:
         case Value(value):
-            return case.value(value)
+            return approximate(case.value(value), PENCIL_DIGITS)
         case Decimals(text):
-            return rational(Fraction(text))
+            return Decimal(text)
         case Bracket(terms):
             return pencil_sum(terms, case)
         case _:
