@@ -30,12 +30,12 @@ from trusscalc.sheet.blocks import (
     Listing,
     Paragraph,
     Picture,
-    Power,
     Product,
     Run,
     Seal,
     Table,
     TitleBlock,
+    Value,
 )
 from trusscalc.sheet.marks import Figure
 
@@ -46,7 +46,8 @@ PIXELS: Final = 96 / 25.4
 WIDEST_FORMULA: Final = 76
 """Characters of a line that is written in one piece; longer ones may be broken before each term."""
 SAFE: Final = frozenset(" ,;:()–—−·'’′“”./?!%=+-≈√")
-CARD: Final = "background-color: #ffffff; color: #1a1a1a; border: 1px solid #b8b8b4; padding: 12px 28px"
+CARD: Final = "border: 1px solid #b8b8b4; padding: 12px 28px"
+"""A step's card has no ground of its own: the front end's tables bring theirs, dark on a dark screen. Figures do."""
 SMALL: Final = "font-size: 0.9em"
 
 _latex, _plain = Latex(), Plain()
@@ -70,7 +71,7 @@ def markdown(blocks: Iterable[Block], svg: Svg) -> str:
     return "\n\n".join(_block(block, svg) for block in blocks)
 
 
-def _block(block: Block, svg: Svg) -> str:  # noqa: PLR0911 - one line for each kind of block
+def _block(block: Block, svg: Svg) -> str:  # noqa: C901, PLR0911 - one line for each kind of block
     match block:
         case Heading():
             return _heading(block)
@@ -140,10 +141,9 @@ def _piece(piece: Inline) -> str:
             return f"<{tag}>{written}</{tag}>"
         case Decimals(text):
             return text.replace("-", "−")
-        case Formula() | Power():
-            return f"${_latex.write(piece)}$"
-        case _:
-            return f"${_latex.write(piece)}$"
+        case Value():  # a stacked fraction in the size of running text is too small to read
+            return rf"$\displaystyle {_latex.write(piece)}$"
+    return f"${_latex.write(piece)}$"
 
 
 def _small(written: str) -> str:
@@ -189,7 +189,7 @@ def formula(item: Formula) -> str:
         return rf"$\displaystyle {_latex.write(item)}$"
     pieces = []
     for place, product in enumerate(item.left):
-        text = _latex.write(Formula((Product(False, product.factors),), ()))
+        text = _latex.write(Formula((Product(negative=False, factors=product.factors),), ()))
         sign = "-" if product.negative else "" if place == 0 else "+"
         pieces.append(f"{{}}{sign} {text}" if place else f"{sign}{text}")
     if item.right:

@@ -119,7 +119,9 @@ def check_source(origin: Origin) -> str:
     names = "".join(f"    {name!r},\n" for name in origin.members)
     show = "check" if origin.places == PLACES else f"check.sheet(places={origin.places}, drawings=False)"
     return (
-        f"members = [\n{names}]\ncheck = check_members(truss_file.truss, truss_file.case({origin.case!r}), members)\n{show}"
+        f"members = [\n{names}]\n"
+        f"check = check_members(truss_file.truss, truss_file.case({origin.case!r}), members)\n"
+        f"{show}"
     )
 
 

@@ -68,7 +68,7 @@ def _lines(blocks: Iterable[Block]) -> list[str]:
     return lines
 
 
-def _block(block: Block) -> list[str]:  # noqa: PLR0911 - one line for each kind of block
+def _block(block: Block) -> list[str]:  # noqa: C901, PLR0911 - one line for each kind of block
     match block:
         case Heading():
             return _heading(block)
@@ -132,14 +132,17 @@ def _paragraph(block: Paragraph) -> list[str]:
 
 
 def _items(block: Items) -> list[str]:
-    lines = []
+    lines: list[str] = []
     indent = min(24, max((width(term) for term, _ in block.items), default=0) + 2)
     for term, content in block.items:
         body = _wrapped(inline(content), WIDTH - indent)
         if width(term) + 2 > indent:
             lines.append(term)
             term = ""  # noqa: PLW2901 - a long term has a line of its own
-        lines += [(term + " " * (indent - width(term)) if place == 0 else " " * indent) + line for place, line in enumerate(body)]
+        lines += [
+            (term + " " * (indent - width(term)) if place == 0 else " " * indent) + line
+            for place, line in enumerate(body)
+        ]
     return [line.rstrip() for line in lines]
 
 
@@ -153,7 +156,7 @@ def _title_block(fields: Sequence[tuple[str, str]]) -> list[str]:
 
 
 def _formulas(block: Lines) -> list[str]:
-    lines = []
+    lines: list[str] = []
     for labelled in block.lines:
         if labelled.label:
             lines += _wrapped(labelled.label + ":", WIDTH)
@@ -165,8 +168,9 @@ def broken(formula: str, room: int) -> list[str]:
     """Return a formula in lines, broken before a plus, minus or relation sign only; the rest hangs."""
     if width(formula) <= room:
         return [formula]
-    lines, line, depth, start = [], "", 0, 0
-    pieces = []
+    lines: list[str] = []
+    pieces: list[str] = []
+    line, depth, start = "", 0, 0
     for place, character in enumerate(formula):
         depth += (character == "(") - (character == ")")
         if character == " " and depth == 0 and formula[place + 1 : place + 2] in ("+", "−", "=", "≈"):
@@ -206,7 +210,7 @@ def _table(block: Table) -> list[str]:
     rows = [["" if cell is None else inline([cell]) for cell in row] for row in block.rows]
     marks = bool(block.strong_rows)
     room = WIDTH - (2 if marks else 0)
-    widths = _widths(block.columns, heads, rows, room)
+    widths = _widths(heads, rows, room)
     rule = "-" * (sum(widths) + len(GAP) * (len(widths) - 1))
     lines = [*_row(heads, widths, block.columns), rule]
     for place, row in enumerate(rows):
@@ -218,13 +222,13 @@ def _table(block: Table) -> list[str]:
             written = [f"{mark if n == 0 else ' '} {line}" for n, line in enumerate(written)]
         lines += written
     if marks:
-        lines[: 2] = [f"  {line}" for line in lines[:2]]
+        lines[:2] = [f"  {line}" for line in lines[:2]]
     lines.append(rule if not marks else f"  {rule}")
     lines += _wrapped(block.caption, WIDTH)
     return [line.rstrip() for line in lines]
 
 
-def _widths(columns: Sequence[Column], heads: list[str], rows: list[list[str]], room: int) -> list[int]:
+def _widths(heads: list[str], rows: list[list[str]], room: int) -> list[int]:
     """Return column widths; when the table is too wide, the widest text columns are narrowed first."""
     widths = [max([width(head), *(width(row[place]) for row in rows)]) for place, head in enumerate(heads)]
     excess = sum(widths) + len(GAP) * (len(widths) - 1) - room
@@ -263,9 +267,7 @@ def _aligned(piece: str, size: int, align: str) -> str:
 
 def width(written: str) -> int:
     """Return how many columns a text takes: wide letters two, combining marks none."""
-    return sum(
-        0 if unicodedata.combining(c) else 2 if unicodedata.east_asian_width(c) in "WF" else 1 for c in written
-    )
+    return sum(0 if unicodedata.combining(c) else 2 if unicodedata.east_asian_width(c) in "WF" else 1 for c in written)
 
 
 def _wrapped(written: str, room: int) -> list[str]:
