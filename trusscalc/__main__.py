@@ -24,18 +24,41 @@ AGREED, DISAGREED, REFUSED = 0, 1, 2
 
 def main(argv: Sequence[str] | None = None) -> int:
     """Run one command and return its exit code."""
-    arguments = _parser().parse_args(argv)
+    try:
+        arguments = _parser().parse_args(argv)
+    except SystemExit as leaving:  # --help, or arguments that argparse has already complained about
+        return int(leaving.code or AGREED)
     with warnings.catch_warnings(record=True) as caught:
         warnings.simplefilter("always", TrusscalcWarning)
         try:
             code = int(arguments.run(arguments))
         except (TrusscalcError, OSError) as problem:
-            print(f"trusscalc: {problem}", file=sys.stderr)  # noqa: T201
+            _tell(str(problem))
             code = REFUSED
     for warning in caught:
         if issubclass(warning.category, TrusscalcWarning):
-            print(f"trusscalc: warning: {warning.message}", file=sys.stderr)  # noqa: T201
+            _tell(f"warning: {warning.message}")
     return code
+
+
+def _print(text: str) -> None:
+    """Print a result; characters the terminal does not have are escaped rather than fatal."""
+    encoding = sys.stdout.encoding or "utf-8"
+    print(text.encode(encoding, errors="backslashreplace").decode(encoding))  # noqa: T201
+
+
+def _prints(text: str) -> bool:
+    try:
+        text.encode(sys.stdout.encoding or "utf-8")
+    except UnicodeEncodeError:
+        return False
+    return True
+
+
+def _tell(problems: str) -> None:
+    """Print each problem on a line of its own."""
+    for problem in problems.split("\n"):
+        print(f"trusscalc: {problem}", file=sys.stderr)  # noqa: T201
 
 
 def _parser() -> argparse.ArgumentParser:
@@ -69,9 +92,9 @@ def _check(arguments: argparse.Namespace) -> int:
 
     _, check = _checked(arguments)
     if arguments.json:
-        print(json.dumps(check_data(check), ensure_ascii=False, indent=1))  # noqa: T201
+        _print(json.dumps(check_data(check), ensure_ascii=not _prints("é√"), indent=1))
     else:
-        print("\n".join(verdict_lines(check)))  # noqa: T201
+        _print("\n".join(verdict_lines(check)))
     return AGREED if check.agreed else DISAGREED
 
 

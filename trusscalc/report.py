@@ -4,12 +4,15 @@ from __future__ import annotations
 
 from typing import Any
 
+from trusscalc.exact import rounded
 from trusscalc.exacttext import to_text
 from trusscalc.membercheck import ForceCheck, MemberCheck
 from trusscalc.statics.cuts import About, Cut
-from trusscalc.statics.steps import Equation, Step
+from trusscalc.statics.steps import Step
 
 FORMAT = 1
+WIDEST_EXACT = 48
+"""Characters of an exact value in a terminal; JSON and sheets have all of them."""
 
 
 def check_data(check: MemberCheck, step_text: dict[int, str] | None = None) -> dict[str, Any]:
@@ -23,7 +26,7 @@ def check_data(check: MemberCheck, step_text: dict[int, str] | None = None) -> d
         Each step's lines as plain text, by number.
     """
     statics = check.statics
-    return {
+    data: dict[str, Any] = {
         "format": FORMAT,
         "title": check.truss.title,
         "case": check.case.name,
@@ -40,6 +43,16 @@ def check_data(check: MemberCheck, step_text: dict[int, str] | None = None) -> d
         "steps": [_step_data(step, (step_text or {}).get(step.number, "")) for step in check.steps],
         "agreed": check.agreed,
     }
+    if check.zero_members:
+        data["zero_members"] = dict(check.zero_members)
+    if check.redundancy is not None:
+        data["redundancy"] = {
+            "degree": check.redundancy.degree,
+            "external": check.redundancy.external,
+            "internal": check.redundancy.internal,
+            "sharing": [list(group) for group in check.redundancy.sharing],
+        }
+    return data
 
 
 def _reaction_data(item: ForceCheck) -> dict[str, Any]:
@@ -51,6 +64,16 @@ def _reaction_data(item: ForceCheck) -> dict[str, Any]:
         "verdict": item.verdict,
         "steps": list(item.steps),
     }
+    if item.coefficients:
+        data["coefficients"] = {
+            part.symbols: {
+                "exact": to_text(part.exact),
+                "decimal": part.decimal,
+                "stiffness": part.stiffness,
+                "agrees": part.agrees,
+            }
+            for part in item.coefficients
+        }
     if item.reason:
         data["reason"] = item.reason
     return data
@@ -91,13 +114,41 @@ def _about_data(about: About) -> dict[str, Any]:
 
 
 def verdict_lines(check: MemberCheck, places: int = 3) -> list[str]:
-    """Return the summary as lines of text for a terminal."""
-    from trusscalc.exact import rounded  # noqa: PLC0415
+    """Return the summary as aligned lines for a terminal: members, reactions, what to look at.
 
-    del places, rounded
-    return [f"{item.name}: {item.verdict}" for item in check.members.values()]
+    Parameters
+    ----------
+    check : MemberCheck
+        The result.
+    places : int
+        Decimal places; rounded once from the exact value, half to even.
+    """
+    unit = check.truss.force
+    head = ["member or reaction", "exact", f"decimal, {unit}", "T/C", f"stiffness, {unit}", "verdict"]
+    rows = [head] + [_verdict_row(check, item, places) for item in (*check.members.values(), *check.reactions.values())]
+    widths = [max(len(row[column]) for row in rows) for column in range(len(head))]
+    right = (1, 2, 4)
+    lines = [
+        "  ".join(
+            cell.rjust(width) if column in right else cell.ljust(width)
+            for column, (cell, width) in enumerate(zip(row, widths, strict=True))
+        ).rstrip()
+        for row in rows
+    ]
+    notes = [
+        f"{item.name}: {item.reason}" for item in (*check.members.values(), *check.reactions.values()) if item.reason
+    ]
+    notes += [f"joint {joint} is out of balance" for joint in check.residuals]
+    asked = len(check.members)
+    told = "all agree" if check.agreed else "not all agree"
+    return [*lines, *notes, f"{asked} of {check.statics.members} members checked: {told}"]
 
 
-def equation_data(equation: Equation) -> dict[str, Any]:
-    """Return one equation as data, with its body."""
-    return {**_about_data(equation.about), **_cut_data(equation.cut)}
+def _verdict_row(check: MemberCheck, item: ForceCheck, places: int) -> list[str]:
+    if item.exact is None:
+        return [item.name, "", "", "", "", item.verdict]
+    text = to_text(item.exact)
+    exact = text if len(text) <= WIDEST_EXACT else "(long)"
+    decimal = str(rounded(check.case.value(item.exact), places))
+    numeric = "" if item.stiffness is None else f"{item.stiffness:.{places}f}"
+    return [item.name, exact, decimal, item.sense or "", numeric, item.verdict]
