@@ -166,7 +166,7 @@ class Exact:
         if len(self.terms) == 1:
             ((n, mask), coefficient) = next(iter(self.terms.items()))
             if not mask:
-                return Exact({(n, 0): _plain(1 / (coefficient * n))}, self.tower, rounded=self.rounded)
+                return Exact({(n, 0): plain(1 / (coefficient * n))}, self.tower, rounded=self.rounded)
         conjugate = _conjugate(self)
         return conjugate * (self * conjugate).inverse()
 
@@ -379,16 +379,25 @@ def _operand(value: object) -> Exact | None:
 def _plus(left: Any, right: Any) -> Any:
     if isinstance(left, FracElement) and isinstance(right, FracElement) and left.field != right.field:
         left, right = _same_field(left, right)
-    return _plain(left + right)
+    return plain(left + right)
 
 
 def _times(left: Any, right: Any) -> Any:
     if isinstance(left, FracElement) and isinstance(right, FracElement) and left.field != right.field:
         left, right = _same_field(left, right)
-    return _plain(left * right)
+    return plain(left * right)
 
 
-def _plain(coefficient: Any) -> Any:
+def in_one_field(coefficients: Mapping[Any, Any]) -> dict[Any, Any]:
+    """Return coefficients with all rational functions of symbols in the field of all the symbols."""
+    found = {str(x) for c in coefficients.values() if isinstance(c, FracElement) for x in c.field.symbols}
+    if not found:
+        return dict(coefficients)
+    field = _field_of(tuple(sorted(found)))
+    return {key: c.set_field(field) if isinstance(c, FracElement) else c for key, c in coefficients.items()}
+
+
+def plain(coefficient: Any) -> Any:
     """Return a rational function whose symbols have cancelled as the rational number it is."""
     if isinstance(coefficient, FracElement) and coefficient.numer.is_ground and coefficient.denom.is_ground:
         return QQ.convert(coefficient.numer.LC) / QQ.convert(coefficient.denom.LC)

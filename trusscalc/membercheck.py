@@ -7,18 +7,22 @@ from __future__ import annotations
 
 import math
 import sys
-from collections.abc import Iterable, Mapping
-from dataclasses import dataclass
+from collections.abc import Collection, Iterable, Mapping
+from dataclasses import dataclass, field
 from typing import Literal
 
 from trusscalc import stiffness
-from trusscalc.errors import InputError
-from trusscalc.exact import ONE, ZERO, Exact, symbol
+from trusscalc.errors import InexactNumberError, InputError
+from trusscalc.exact import ZERO, Exact, symbol
 from trusscalc.loads import LoadCase
 from trusscalc.statics import matrix
 from trusscalc.statics.cuts import Structure, structure_of
+from trusscalc.statics.owncuts import OwnCut
 from trusscalc.statics.plan import PlannedStep, plan
+from trusscalc.statics.prices import Preference
 from trusscalc.statics.steps import Step, carried_letter, section_letter, write_close, write_step
+from trusscalc.statics.zeroforce import zero_force_members
+from trusscalc.symbolparts import Monomial, by_monomial, monomial_text, numeric_parts
 from trusscalc.truss import Truss
 
 Verdict = Literal["agrees", "differs", "undecided"]
@@ -28,6 +32,17 @@ TOLERANCE = 1e-9
 """Share of the largest force within which two routes agree: what floats of a well-conditioned truss reach."""
 WIDEST_TOLERANCE = 1e-6
 """Beyond this share the numeric route is too ill-conditioned to judge anything."""
+
+
+@dataclass(frozen=True, slots=True)
+class Coefficient:
+    """What stands before a product of symbols in a force, by both routes (the numeric one under unit values)."""
+
+    symbols: str
+    exact: Exact
+    decimal: float
+    stiffness: float
+    agrees: bool
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,6 +70,8 @@ class ForceCheck:
         Why it is undecided or differs, else ''.
     steps : tuple of int
         All steps the value rests on, the solving one last.
+    coefficients : tuple of Coefficient
+        For loads with symbols: the formula compared coefficient by coefficient.
     """
 
     name: str
@@ -66,6 +83,7 @@ class ForceCheck:
     verdict: Verdict
     reason: str
     steps: tuple[int, ...]
+    coefficients: tuple[Coefficient, ...] = ()
 
     @property
     def exactness(self) -> str:
@@ -83,6 +101,25 @@ class Statics:
     rank: int
     stable: bool
     determinate: bool
+
+
+@dataclass(frozen=True, slots=True)
+class Redundancy:
+    """Why statics alone does not decide everything.
+
+    Attributes
+    ----------
+    degree, external, internal : int
+        Degree of static indeterminacy, and its parts: what the reactions bring in, and self-stress of the
+        members alone.
+    sharing : tuple of tuple of str
+        Groups of members and reactions that share redundancies.
+    """
+
+    degree: int
+    external: int
+    internal: int
+    sharing: tuple[tuple[str, ...], ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -113,6 +150,10 @@ class MemberCheck:
         Largest joint imbalance of the numeric route over the largest force.
     agreed : bool
         True only if every member asked for, every reaction and every joint agree.
+    zero_members : dict of str to str
+        Members whose force is exactly zero, each with the reason.
+    redundancy : Redundancy or None
+        For a statically indeterminate truss: the degree, and who shares it.
     """
 
     truss: Truss
@@ -127,10 +168,18 @@ class MemberCheck:
     condition: float
     stiffness_residual: float
     agreed: bool
-    zero_members: tuple[str, ...] = ()
+    zero_members: Mapping[str, str] = field(default_factory=dict)
+    redundancy: Redundancy | None = None
 
 
-def check_members(truss: Truss, case: LoadCase, members: Iterable[str] | Literal["all"]) -> MemberCheck:
+def check_members(
+    truss: Truss,
+    case: LoadCase,
+    members: Iterable[str] | Literal["all"],
+    *,
+    cuts: Mapping[str, OwnCut] | None = None,
+    prefer: Preference = "",
+) -> MemberCheck:
     """Return the forces of chosen members by hand methods, each beside an independent stiffness value.
 
     Parameters
@@ -141,6 +190,11 @@ def check_members(truss: Truss, case: LoadCase, members: Iterable[str] | Literal
         Its loads.
     members : iterable of str, or "all"
         Member names, ends in either order; duplicates count once.
+    cuts : mapping of str to OwnCut, optional
+        For some members the cut to derive them from (``truss.cut(...)``); they need not be named in
+        ``members`` again.
+    prefer : str
+        ``sections`` or ``joints``: what to lean to where both are possible.
 
     Raises
     ------
@@ -151,7 +205,7 @@ def check_members(truss: Truss, case: LoadCase, members: Iterable[str] | Literal
     UnstableTrussError
         When the truss cannot resist every load.
     NoCutError
-        When a member cannot be reached by equations with one unknown.
+        When a cut given for a member cannot give it.
 
     Examples
     --------
@@ -164,14 +218,15 @@ def check_members(truss: Truss, case: LoadCase, members: Iterable[str] | Literal
     faults = case.faults(truss)
     if faults:
         raise InputError(faults)
-    wanted = _wanted(truss, members)
+    own = {truss.member(name).name: cut.kept for name, cut in (cuts or {}).items()}
+    wanted = tuple(dict.fromkeys((*_wanted(truss, members, own), *own)))
     equilibrium = matrix.solve(truss, case)
     structure = structure_of(truss, case)
     decided = [name for name in wanted if name in equilibrium.tensions]
-    steps, tensions = _derivation(structure, equilibrium, decided, case)
+    steps, tensions = _derivation(structure, equilibrium, decided, case, own, prefer)
     numeric = stiffness.solve(truss, case)
     values = {**numeric.reactions, **stiffness.member_forces(truss, case)}
-    judge = _Judge(case, structure, equilibrium, steps, tensions, values, numeric.condition)
+    judge = _Judge(case, structure, equilibrium, steps, tensions, values, numeric.condition, _unit_runs(truss, case))
     checked = {name: judge.verdict(name) for name in wanted}
     reactions = {link.name: judge.verdict(link.name) for link in truss.links}
     residuals = _residuals(equilibrium, case, tensions)
@@ -191,13 +246,31 @@ def check_members(truss: Truss, case: LoadCase, members: Iterable[str] | Literal
         condition=numeric.condition,
         stiffness_residual=numeric.residual,
         agreed=agreed,
-        zero_members=tuple(
-            member.name for member in truss.members if equilibrium.tensions.get(member.name, ONE) == ZERO
-        ),
+        zero_members=zero_force_members(structure, equilibrium),
+        redundancy=None if determinate else _redundancy(equilibrium),
     )
 
 
-def _wanted(truss: Truss, members: Iterable[str] | Literal["all"]) -> tuple[str, ...]:
+def _unit_runs(truss: Truss, case: LoadCase) -> dict[Monomial, dict[str, float]]:
+    """Return the numeric route's forces for each product of symbols in the loads, {} without symbols."""
+    if not any(load.fx.symbols or load.fy.symbols for load in case.loads):
+        return {}
+    try:
+        parts = numeric_parts(case)
+    except InexactNumberError:
+        return {}  # not a polynomial in its symbols: compared at their values only
+    return {
+        monomial: {**stiffness.solve(truss, part).reactions, **stiffness.member_forces(truss, part)}
+        for monomial, part in parts.items()
+    }
+
+
+def _redundancy(equilibrium: matrix.Equilibrium) -> Redundancy:
+    degrees = (equilibrium.degree, equilibrium.external_degree, equilibrium.internal_degree)
+    return Redundancy(*degrees, equilibrium.sharing)
+
+
+def _wanted(truss: Truss, members: Iterable[str] | Literal["all"], own: Collection[str]) -> tuple[str, ...]:
     if isinstance(members, str):
         if members == "all":
             return tuple(member.name for member in truss.members)
@@ -207,18 +280,24 @@ def _wanted(truss: Truss, members: Iterable[str] | Literal["all"]) -> tuple[str,
     for name in members:
         ends = frozenset(part.strip() for part in name.split("-"))
         found.append(by_ends[ends] if ends in by_ends else truss.member(name).name)
-    if not found:
+    if not found and not own:
         message = "no member was asked for; name some, or say all"
         raise InputError(message)
     return tuple(dict.fromkeys(found))
 
 
-def _derivation(
-    structure: Structure, equilibrium: matrix.Equilibrium, wanted: list[str], case: LoadCase
+def _derivation(  # noqa: PLR0917 - called in one place
+    structure: Structure,
+    equilibrium: matrix.Equilibrium,
+    wanted: list[str],
+    case: LoadCase,
+    own: Mapping[str, tuple[str, ...]],
+    prefer: Preference,
 ) -> tuple[tuple[Step, ...], dict[str, Exact]]:
     """Write the planned steps one after the other; a value enters an equation only after its own step."""
     writer = _Writer(structure)
-    for planned in plan(structure, equilibrium, wanted, case.as_floats()):
+    usable = {name: kept for name, kept in own.items() if name in equilibrium.tensions}
+    for planned in plan(structure, equilibrium, wanted, case.as_floats(), cuts=usable, prefer=prefer):
         writer.write(planned)
     return tuple(writer.steps), writer.tensions
 
@@ -282,7 +361,9 @@ class _Judge:
         tensions: Mapping[str, Exact],
         numeric: Mapping[str, float],
         condition: float,
+        parts: Mapping[Monomial, Mapping[str, float]],
     ) -> None:
+        self.parts = parts
         self.case = case
         self.structure = structure
         self.equilibrium = equilibrium
@@ -299,7 +380,7 @@ class _Judge:
         steps = self.rests_on.get(name, ())
         numeric = self.numeric.get(name)
         if name not in self.by_hand:
-            reason = "statics alone does not decide it: the truss is statically indeterminate there"
+            reason = self._undecided(name)
             return ForceCheck(name, None, None, None, numeric, None, "undecided", reason, steps)
         value = self.by_hand[name]
         at_values = self.case.value(value)
@@ -311,8 +392,36 @@ class _Judge:
             reason = "the numeric route gives no value"
             return ForceCheck(name, value, decimal, sense, None, None, "undecided", reason, steps)
         difference = decimal - numeric
+        coefficients = self._coefficients(name, value)
         verdict, reason = self._judgement(name, difference)
-        return ForceCheck(name, value, decimal, sense, numeric, difference, verdict, reason, steps)
+        wrong = [item.symbols for item in coefficients if not item.agrees]
+        if verdict == "agrees" and wrong:
+            verdict, reason = "differs", f"the routes differ in the coefficient of {', '.join(wrong)}"
+        return ForceCheck(name, value, decimal, sense, numeric, difference, verdict, reason, steps, coefficients)
+
+    def _coefficients(self, name: str, value: Exact) -> tuple[Coefficient, ...]:
+        if not self.parts:
+            return ()
+        exact = by_monomial(value)
+        found = []
+        for monomial, numeric in self.parts.items():
+            part = exact.get(monomial, ZERO)
+            largest = max((abs(force) for force in numeric.values()), default=0.0)
+            agrees = abs(float(part) - numeric[name]) <= self.tolerance * largest
+            found.append(Coefficient(monomial_text(monomial), part, float(part), numeric[name], agrees))
+        stray = [monomial for monomial in exact if monomial not in self.parts and exact[monomial]]
+        found += [Coefficient(monomial_text(m), exact[m], float(exact[m]), 0.0, agrees=False) for m in stray]
+        return tuple(found)
+
+    def _undecided(self, name: str) -> str:
+        group = next((group for group in self.equilibrium.sharing if name in group), ())
+        others = [other for other in group if other != name]
+        shown = ", ".join(others[:8]) + (f" and {len(others) - 8} more" if len(others) > 8 else "")  # noqa: PLR2004
+        degree = self.equilibrium.degree
+        return (
+            f"statics alone does not decide it: the truss is statically indeterminate (degree {degree}), "
+            f"and it shares the redundancy with {shown}"
+        )
 
     def _judgement(self, name: str, difference: float) -> tuple[Verdict, str]:
         if name in self.equilibrium.tensions and self.tensions[name] != self.equilibrium.tensions[name]:

@@ -124,7 +124,7 @@ def _closing(prices: Prices, table: Derivations, carried: tuple[int, ...], free:
     chosen: list[tuple[float, Candidate]] = []
     rows: list[list[int]] = []
     for price, _, candidate in found:
-        row = _reduced(shares.of_sum(candidate), rows, p)
+        row = reduced_row(shares.of_sum(candidate), rows, p)
         if any(row):
             rows.append(row)
             chosen.append((price, candidate))
@@ -133,7 +133,7 @@ def _closing(prices: Prices, table: Derivations, carried: tuple[int, ...], free:
     return []
 
 
-def _reduced(row: list[int], rows: list[list[int]], p: int) -> list[int]:
+def reduced_row(row: list[int], rows: list[list[int]], p: int) -> list[int]:
     """Return the row with the pivots of earlier rows removed, leading entry 1."""
     for other in rows:
         pivot = next(place for place, entry in enumerate(other) if entry)

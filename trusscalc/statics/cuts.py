@@ -7,7 +7,7 @@ and whole-structure equations are then one thing.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from typing import Literal
 
@@ -194,6 +194,32 @@ def meeting_point(structure: Structure, first: Bar, second: Bar) -> tuple[Exact,
     return a.x + share * first.dx, a.y + share * first.dy
 
 
+def about_of(structure: Structure, bars: Sequence[str], joints: Sequence[str], recipe: tuple[str, int, int]) -> About:
+    """Return what a recipe of the search stands for, exactly.
+
+    Parameters
+    ----------
+    structure : Structure
+        The truss.
+    bars, joints : sequence of str
+        Names by the search's indices.
+    recipe : tuple
+        ("axis", 0 or 1), ("joint", j), ("across", b) or ("meet", b, c).
+    """
+    kind, first, second = recipe
+    if kind == "axis":
+        return SUM_Y if first else SUM_X
+    if kind == "joint":
+        return about_joint(structure, joints[first])
+    if kind == "across":
+        return across(structure.bars[bars[first]])
+    place = meeting_point(structure, structure.bars[bars[first]], structure.bars[bars[second]])
+    if place is None:
+        message = f"{bars[first]} and {bars[second]} are parallel and meet nowhere"
+        raise InputError(message)
+    return About("moment", *place)
+
+
 def complement(structure: Structure, cut: Cut) -> tuple[str, ...]:
     """Return the joints on the other side of a cut."""
     inside = set(cut.kept)
@@ -208,6 +234,7 @@ __all__ = [
     "Cut",
     "Structure",
     "about_joint",
+    "about_of",
     "across",
     "bar_lever",
     "complement",

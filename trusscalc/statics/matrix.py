@@ -19,7 +19,7 @@ from typing import Any
 from sympy.polys.matrices.sdm import sdm_irref
 
 from trusscalc.errors import UnstableTrussError
-from trusscalc.exact import ONE, UNIT_KEY, ZERO, Exact, Key, sqrt
+from trusscalc.exact import ONE, UNIT_KEY, ZERO, Exact, Key, in_one_field, plain, sqrt
 from trusscalc.loads import LoadCase
 from trusscalc.truss import Truss
 
@@ -89,17 +89,29 @@ class Equilibrium:
         Members and links that statics alone does not decide.
     rank : int
         Exact rank of the equilibrium matrix, 2j for every truss that gets here.
+    sharing : tuple of tuple of str
+        Groups of undecided bars that share redundancies: within a group a change of one force changes others,
+        between groups nothing passes.
+    internal_degree : int
+        Independent states of self-stress among the members alone.
     """
 
     bars: tuple[Bar, ...]
     tensions: Mapping[str, Exact]
     undecided: tuple[str, ...]
     rank: int
+    sharing: tuple[tuple[str, ...], ...] = ()
+    internal_degree: int = 0
 
     @property
     def degree(self) -> int:
         """The degree of static indeterminacy, m + r - 2j."""
         return len(self.bars) - self.rank
+
+    @property
+    def external_degree(self) -> int:
+        """The part of the degree that the reactions bring in: nothing of it is left when they are known."""
+        return self.degree - self.internal_degree
 
     @property
     def forces(self) -> dict[str, Exact]:
@@ -135,7 +147,47 @@ def solve(truss: Truss, case: LoadCase) -> Equilibrium:
         if place in pivots and not free_of[place]:
             tensions[bars[column].name] = values[place]
     undecided = tuple(bar.name for bar in bars if bar.name not in tensions)
-    return Equilibrium(bars, tensions, undecided, len(pivots))
+    if not undecided:
+        return Equilibrium(bars, tensions, undecided, len(pivots))
+    names = {place: bars[column].name for place, column in enumerate(columns)}
+    groups = _sharing([{names[c] for c in circuit} for circuit in _circuits(free_of, len(columns), pivots)])
+    order_of = {bar.name: place for place, bar in enumerate(bars)}
+    sharing = tuple(tuple(sorted(group, key=order_of.__getitem__)) for group in groups)
+    return Equilibrium(bars, tensions, undecided, len(pivots), sharing, _internal_degree(bars, columns, rows))
+
+
+def _circuits(free_of: Mapping[int, tuple[int, ...]], width: int, pivots: set[int]) -> list[set[int]]:
+    """Return for every free column the columns of its state of self-stress."""
+    circuits = {column: {column} for column in range(width) if column not in pivots}
+    for pivot, free in free_of.items():
+        for column in free:
+            circuits[column].add(pivot)
+    return list(circuits.values())
+
+
+def _sharing(circuits: list[set[str]]) -> list[set[str]]:
+    """Merge the circuits that have a bar in common."""
+    groups: list[set[str]] = []
+    for circuit in circuits:
+        merged = set(circuit)
+        apart = []
+        for group in groups:
+            if group & merged:
+                merged |= group
+            else:
+                apart.append(group)
+        groups = [*apart, merged]
+    return groups
+
+
+def _internal_degree(bars: tuple[Bar, ...], columns: list[int], rows: list[dict[int, Exact]]) -> int:
+    """Return the number of states of self-stress without reactions."""
+    links = {place for place, column in enumerate(columns) if bars[column].is_link}
+    members = {
+        index: {place: entry for place, entry in row.items() if place not in links} for index, row in enumerate(rows)
+    }
+    _, pivots, _ = sdm_irref({index: row for index, row in members.items() if row})
+    return len(bars) - len(links) - len(pivots)
 
 
 def joint_residuals(
@@ -204,8 +256,8 @@ def _right_sides(case: LoadCase, order: Mapping[str, int]) -> dict[int, Exact]:
 
 # --- elimination ------------------------------------------------------------------------------------------
 
-Solution = tuple[set[int], dict[int, bool], dict[int, Exact]]
-"""Pivot columns, whether a pivot's row holds a free column, and the value with free columns at zero."""
+Solution = tuple[set[int], dict[int, tuple[int, ...]], dict[int, Exact]]
+"""Pivot columns, the free columns in each pivot's row, and the value with free columns at zero."""
 
 
 def _field_solution(rows: list[dict[int, Exact]], loads: Mapping[int, Exact], width: int) -> Solution:
@@ -221,10 +273,11 @@ def _field_solution(rows: list[dict[int, Exact]], loads: Mapping[int, Exact], wi
 def _read_off(matrix: dict[int, Row], width: int, value: Callable[[Row], Exact]) -> Solution:
     reduced, pivots, _ = sdm_irref(matrix)
     found = [pivot for pivot in pivots if pivot < width]
-    free_of, values = {}, {}
+    free_of: dict[int, tuple[int, ...]] = {}
+    values = {}
     for place, pivot in enumerate(found):
         row = reduced[place]
-        free_of[pivot] = any(column < width and column != pivot for column in row)
+        free_of[pivot] = tuple(sorted(column for column in row if column < width and column != pivot))
         values[pivot] = value(row)
     return set(found), free_of, values
 
@@ -240,6 +293,7 @@ def _rational_solution(rows: list[dict[int, Exact]], loads: Mapping[int, Exact],
     row_scale, column_scale = scaling
     matrix: dict[int, Row] = {}
     keys: dict[Key, int] = {}
+    sides: dict[tuple[int, int], Any] = {}
     for index, row in enumerate(rows):
         scaled: Row = {}
         for column, entry in row.items():
@@ -250,12 +304,14 @@ def _rational_solution(rows: list[dict[int, Exact]], loads: Mapping[int, Exact],
             if side.tower:
                 return None
             for key, coefficient in side.terms.items():
-                scaled[width + keys.setdefault(key, len(keys))] = coefficient
-        if scaled:
+                sides[index, width + keys.setdefault(key, len(keys))] = coefficient
+        if scaled or index in loads:
             matrix[index] = scaled
+    for (index, column), coefficient in in_one_field(sides).items():
+        matrix[index][column] = coefficient
 
     def value(row: Row) -> Exact:
-        terms = {key: row[width + place] for key, place in keys.items() if width + place in row}
+        terms = {key: plain(row[width + place]) for key, place in keys.items() if width + place in row}
         return Exact(terms, rounded=any_rounded)
 
     any_rounded = any(part.rounded for row in rows for part in row.values()) or any(

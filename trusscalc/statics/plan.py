@@ -22,26 +22,30 @@ from trusscalc.statics.bodies import (
     window_round,
 )
 from trusscalc.statics.bridges import bridge_bodies
-from trusscalc.statics.carrying import Carried, carry
-from trusscalc.statics.cuts import (
-    SUM_X,
-    SUM_Y,
-    About,
-    Cut,
-    Structure,
-    about_joint,
-    across,
-    cut_of,
-    meeting_point,
-)
+from trusscalc.statics.carrying import Carried, carry, reduced_row
+from trusscalc.statics.cuts import About, Cut, Structure, about_of, cut_of
 from trusscalc.statics.derivations import Derivations, Found, found_by
 from trusscalc.statics.incidence import bits, layout_of
 from trusscalc.statics.matrix import Equilibrium
-from trusscalc.statics.prices import Candidate, Prices, all_candidates
+from trusscalc.statics.prices import Candidate, Preference, Prices, all_candidates
 
 SMALL_TRUSS = 150
 """Up to so many joints the whole truss is searched at once."""
 WINDOW_JOINTS = 28
+
+
+MOST_TOGETHER = 3
+"""A plane body has three equations, so no more unknowns than that can be solved together."""
+
+
+@dataclass(frozen=True, slots=True)
+class Ways:
+    """A body's equations (what is summed, unknown, known), and what they decide together."""
+
+    unknown: tuple[str, ...]
+    equations: tuple[tuple[About, tuple[str, ...], tuple[str, ...]], ...]
+    together: tuple[str, ...]
+    reason: str
 
 
 @dataclass(frozen=True, slots=True)
@@ -63,6 +67,9 @@ def plan(
     equilibrium: Equilibrium,
     wanted: Sequence[str],
     loads: Mapping[str, tuple[float, float]],
+    *,
+    cuts: Mapping[str, tuple[str, ...]] | None = None,
+    prefer: Preference = "",
 ) -> tuple[PlannedStep, ...]:
     """Return the steps, in order, that reach every reaction statics decides and every wanted member.
 
@@ -76,40 +83,52 @@ def plan(
         Member names, each decided by statics.
     loads : mapping of str to (float, float)
         Loads at the symbols' values; they only enter prices.
+    cuts : mapping of str to tuple of str, optional
+        For some wanted members the joints of the free body to use.
+    prefer : str
+        ``sections`` or ``joints`` to lean that way where both are possible.
 
     Raises
     ------
     NoCutError
-        Naming the members that no equation with one unknown reaches.
+        When a given cut cannot give its member, or (never seen) a member is beyond all methods.
     """
-    search = _Search(structure, equilibrium, loads)
-    return search.plan(wanted)
+    search = Search(structure, equilibrium, loads, prefer)
+    return search.plan(wanted, cuts or {})
 
 
-class _Search:
+class Search:
     """One search: the layout, the prices and the equations already priced."""
 
     def __init__(
-        self, structure: Structure, equilibrium: Equilibrium, loads: Mapping[str, tuple[float, float]]
+        self,
+        structure: Structure,
+        equilibrium: Equilibrium,
+        loads: Mapping[str, tuple[float, float]],
+        prefer: Preference = "",
     ) -> None:
+        """Lay out the structure and its prices."""
         self.structure = structure
         self.layout = layout_of(structure, dict(loads))
         self.index = {name: place for place, name in enumerate(self.layout.bars)}
         zero = sum(1 << self.index[name] for name, tension in equilibrium.tensions.items() if not tension)
         self.decided = sum(1 << self.index[name] for name in equilibrium.tensions)
-        self.prices = Prices(self.layout, zero)
+        self.prices = Prices(self.layout, zero, prefer)
         self.priced: dict[int, list[Candidate]] = {}
         self.tables: dict[tuple[Window, int], Derivations] = {}
 
-    def plan(self, wanted: Sequence[str]) -> tuple[PlannedStep, ...]:
-        layout = self.layout
-        links = [bar for bar in range(len(layout.bars)) if layout.ends[bar][1] < 0 and self.decided >> bar & 1]
-        reactions = self._reactions(links)
-        found = [step for bar in links if reactions.solved >> bar & 1 for step in reactions.steps_to(bar, 0)]
-        found = list(dict.fromkeys(found))
-        given = done = found_by(found)
-        steps = [self._step(step) for step in found]
-        goals = [*links, *(self.index[name] for name in wanted)]
+    def plan(self, wanted: Sequence[str], cuts: Mapping[str, tuple[str, ...]]) -> tuple[PlannedStep, ...]:
+        """Return the steps to all reactions and all wanted members."""
+        reactions = self.reactions()
+        given = done = found_by(reactions)
+        steps = [self._step(step) for step in reactions]
+        own = {self.index[name]: kept for name, kept in cuts.items()}
+        goals = [*self._links(), *(self.index[name] for name in wanted if self.index[name] not in own)]
+        for bar, kept in own.items():
+            if not done >> bar & 1:
+                found = self._through_own_cut(bar, kept, given, done)
+                steps += [self._step(step) for step in found]
+                done |= found_by(found)
         while goals:
             more, lost = self._reached(goals, given, done)
             steps += [self._step(step) for step in more]
@@ -118,12 +137,16 @@ class _Search:
                 break
             carried = self._carried(given)
             if carried is None:
-                raise _unreachable([layout.bars[bar] for bar in lost])
+                raise _unreachable([self.layout.bars[bar] for bar in lost])
             steps += self._chain(carried, done)
             given |= sum(1 << bar for bar in carried.bars)
             done |= given
             goals = lost
         return tuple(steps)
+
+    def _links(self) -> list[int]:
+        layout = self.layout
+        return [bar for bar in range(len(layout.bars)) if layout.ends[bar][1] < 0 and self.decided >> bar & 1]
 
     def _reached(self, goals: Sequence[int], given: int, done: int) -> tuple[list[Found], list[int]]:
         """Return the steps that reach what single equations and pairs reach, and the bars they do not reach."""
@@ -175,9 +198,9 @@ class _Search:
 
     # --- reactions --------------------------------------------------------------------------------------
 
-    def _reactions(self, links: list[int]) -> Derivations:
-        """Find the reactions from the whole truss, then from its hinged parts."""
-        layout = self.layout
+    def reactions(self) -> list[Found]:
+        """Return the steps to the reactions that the whole truss, then its hinged parts, give."""
+        layout, links = self.layout, self._links()
         table = Derivations(self.prices, 0)
         whole = everything(layout)
         table.propose(self._priced([Body(whole, boundary(layout, whole), "whole")]))
@@ -185,7 +208,8 @@ class _Search:
         if any(not table.solved >> bar & 1 for bar in links):
             table.propose(self._priced(hinge_bodies(layout)))
             table.run()
-        return table
+        found = [step for bar in links if table.solved >> bar & 1 for step in table.steps_to(bar, 0)]
+        return list(dict.fromkeys(found))
 
     # --- members ----------------------------------------------------------------------------------------
 
@@ -235,6 +259,110 @@ class _Search:
             found += self.priced[body.kept]
         return found
 
+    # --- the engineer's own cut -------------------------------------------------------------------------
+
+    def _own_body(self, kept: tuple[str, ...]) -> Body:
+        place = {name: index for index, name in enumerate(self.layout.joints)}
+        mask = sum(1 << place[name] for name in kept)
+        found = "joint" if len(kept) == 1 else "whole" if len(kept) == len(place) else "own"
+        return Body(mask, boundary(self.layout, mask), found)
+
+    def _through_own_cut(self, bar: int, kept: tuple[str, ...], given: int, done: int) -> list[Found]:
+        """Return the steps that find a bar from the body its engineer chose."""
+        body = self._own_body(kept)
+        candidates = self.prices.candidates(body)
+        singles = [c for c in candidates if c.live & ~given == 1 << bar]
+        if singles:
+            return [Found((min(singles, key=lambda c: (c.price + c.terms, c.place)),), (bar,))]
+        unknown = body.cut & ~given
+        if unknown >> bar & 1 and unknown.bit_count() <= MOST_TOGETHER:
+            together = self._together(candidates, unknown)
+            if together:
+                return [Found(together, tuple(bits(unknown)))]
+        later = self._with_earlier_results(candidates, bar, given, done)
+        if later:
+            return later
+        name = self.layout.bars[bar]
+        reason = self.ways_of(kept).reason if body.cut >> bar & 1 else f"it does not cut {name}"
+        near = ", ".join(self.nearest_body(kept))
+        message = f"the cut that keeps {', '.join(kept)} does not give {name}: {reason}. A near one keeps {near}"
+        raise NoCutError(message, members=[name])
+
+    def _together(self, candidates: list[Candidate], unknown: int) -> tuple[Candidate, ...]:
+        """Return as many independent equations as unknowns, short ones first, () if the body has not so many."""
+        p = self.layout.prime
+        chosen: list[Candidate] = []
+        rows: list[list[int]] = []
+        for candidate in sorted(candidates, key=lambda c: (c.recipe[0] != "axis", c.price + c.terms, c.place)):
+            levers = [
+                self.prices.coefficient(candidate, bar) if candidate.live >> bar & 1 else 0 for bar in bits(unknown)
+            ]
+            row = reduced_row(levers, rows, p)
+            if any(row):
+                rows.append(row)
+                chosen.append(candidate)
+            if len(chosen) == unknown.bit_count():
+                return tuple(chosen)
+        return ()
+
+    def _with_earlier_results(self, candidates: list[Candidate], bar: int, given: int, done: int) -> list[Found]:
+        """Return the steps that find a bar from one of the equations, after what else is unknown in it."""
+        table = self._table(whole_window(self.layout), given)
+        best: tuple[float, tuple[float, ...], Candidate] | None = None
+        for candidate in candidates:
+            needs = candidate.live & ~given & ~(1 << bar)
+            if not candidate.live >> bar & 1 or needs & ~table.solved or table.ancestors(needs) >> bar & 1:
+                continue
+            chain = sum(table.chosen[other].price for other in bits(table.ancestors(needs)))
+            rank = (self.prices.solving(candidate, bar) + chain, candidate.place, candidate)
+            if best is None or rank[:2] < best[:2]:
+                best = rank
+        if best is None:
+            return []
+        steps: list[Found] = []
+        for other in bits(best[2].live & ~given & ~(1 << bar)):
+            steps += table.steps_to(other, done | found_by(steps))
+        return [*steps, Found((best[2],), (bar,))]
+
+    def ways_of(self, kept: tuple[str, ...]) -> Ways:
+        """Return what a body's equations leave unknown, the reactions known as far as the whole truss gives them."""
+        layout = self.layout
+        given = found_by(self.reactions())
+        body = self._own_body(kept)
+        candidates = sorted(
+            self.prices.candidates(body), key=lambda c: ((c.live & ~given).bit_count(), c.price, c.place)
+        )
+
+        def names(mask: int) -> tuple[str, ...]:
+            return tuple(layout.bars[bar] for bar in bits(mask))
+
+        equations = tuple(
+            (
+                about_of(self.structure, layout.bars, layout.joints, candidate.recipe),
+                names(candidate.live & ~given),
+                names(candidate.live & given),
+            )
+            for candidate in candidates
+        )
+        unknown = body.cut & ~given
+        several = 1 < unknown.bit_count() <= MOST_TOGETHER
+        together = names(unknown) if several and self._together(candidates, unknown) else ()
+        return Ways(names(unknown), equations, together, _why_nothing(names(unknown)))
+
+    def nearest_body(self, kept: tuple[str, ...]) -> tuple[str, ...]:
+        """Return the joints of the body, among those that give one of the cut bars, that differs least from the cut."""
+        layout = self.layout
+        body = self._own_body(kept)
+        table = self._table(whole_window(layout), found_by(self.reactions()))
+        bodies = [
+            candidate.body.kept
+            for bar in bits(body.cut & table.solved)
+            if not table.chosen[bar].partner
+            for candidate in table.chosen[bar].candidates
+        ]
+        near = min(bodies, key=lambda other: ((other ^ body.kept).bit_count(), other), default=0)
+        return tuple(layout.joints[joint] for joint in bits(near))
+
     # --- written exactly --------------------------------------------------------------------------------
 
     def _step(self, step: Found) -> PlannedStep:
@@ -242,26 +370,27 @@ class _Search:
         bodies = []
         for candidate in step.candidates:
             cut = cut_of(self.structure, [layout.joints[j] for j in bits(candidate.body.kept)])
-            bodies.append((cut, self._about(candidate)))
+            bodies.append((cut, about_of(self.structure, layout.bars, layout.joints, candidate.recipe)))
         return PlannedStep(tuple(bodies), tuple(layout.bars[bar] for bar in step.solves))
 
-    def _about(self, candidate: Candidate) -> About:
-        kind, first, second = candidate.recipe
-        layout, structure = self.layout, self.structure
-        if kind == "axis":
-            return SUM_Y if first else SUM_X
-        if kind == "joint":
-            return about_joint(structure, layout.joints[first])
-        if kind == "across":
-            return across(structure.bars[layout.bars[first]])
-        place = meeting_point(structure, structure.bars[layout.bars[first]], structure.bars[layout.bars[second]])
-        assert place is not None  # noqa: S101 - parallels have the recipe "across"
-        return About("moment", *place)
+
+def _why_nothing(unknown: tuple[str, ...]) -> str:
+    if not unknown:
+        return "it cuts no bar whose force is unknown"
+    if len(unknown) <= MOST_TOGETHER:
+        return (
+            f"its {len(unknown)} unknown forces ({', '.join(unknown)}) meet in one point or are parallel, "
+            "so that its equations do not tell them apart"
+        )
+    return (
+        f"it leaves {len(unknown)} unknown forces ({', '.join(unknown)}) for three equations, "
+        "and no point or direction lets all of them but one drop out"
+    )
 
 
 def _unreachable(lost: list[str]) -> NoCutError:
     message = (
         f"no equation with a single unknown reaches {', '.join(lost[:12])}{' and others' if len(lost) > 12 else ''}: "  # noqa: PLR2004
-        "the truss is complex there, and a carried unknown would be needed, which is not supported yet"
+        "not even with carried unknowns; please report this truss"
     )
     return NoCutError(message, members=lost)

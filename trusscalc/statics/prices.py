@@ -11,9 +11,12 @@ from __future__ import annotations
 import math
 from collections.abc import Iterable
 from dataclasses import dataclass
+from typing import Literal
 
 from trusscalc.statics.bodies import Body, everything
 from trusscalc.statics.incidence import AXIS_X, AXIS_Y, Layout, Point, bits
+
+Preference = Literal["", "sections", "joints"]
 
 EQUATION = 6.0
 TERM = 10.0
@@ -40,6 +43,7 @@ BENT = 37.0
 UPRIGHT_SECTION = -2.0
 RIGHT_HALF = 1.0
 PAIR = 16.0
+NOT_PREFERRED = 150.0
 FEW_BARS = 3
 MANY_BARS = 5
 CHORD_BARS = 4
@@ -82,8 +86,9 @@ class Candidate:
 class Prices:
     """Prices of one structure: what is fixed for it, worked out once."""
 
-    def __init__(self, layout: Layout, zero: int) -> None:
-        """Fix the layout and the mask of bars whose force is exactly zero."""
+    def __init__(self, layout: Layout, zero: int, prefer: Preference = "") -> None:
+        """Fix the layout, the mask of bars whose force is exactly zero, and what the engineer prefers."""
+        self.prefer = prefer
         self.layout = layout
         self.whole = everything(layout)
         xs, ys = layout.x, layout.y
@@ -193,9 +198,13 @@ class Prices:
         low = sum(heights) / (2 * len(heights) or 1)
         place = (round(left / self.diagonal, 6), round(low / self.diagonal, 6), float(body.kept.bit_count()))
         if body.found == "joint":
-            return EQUATION + SINGLE_JOINT, True, place
+            away = self.prefer == "sections"
+            return EQUATION + SINGLE_JOINT + (NOT_PREFERRED if away else 0.0), not away, place
         price = EQUATION
         natural = True
+        if self.prefer == "joints" and body.kept != self.whole:
+            price += NOT_PREFERRED
+            natural = False
         price += MORE_BARS * max(0, len(members) - FEW_BARS)
         if len(members) >= MANY_BARS or body.surplus:
             natural = False
