@@ -180,7 +180,7 @@ class BodyDrawing:
         if self.line:
             middle = list(self.sketch.place.values())
             centre = (sum(x for x, _ in middle) / len(middle), sum(y for _, y in middle) / len(middle))
-            draw_section_line(self.board, self.line, self.body.letter, centre)
+            draw_section_line(self.sketch, self.line, self.body.letter, centre)
         elif self.body.cut.kind == "section":
             self.notes.append(
                 "The section line is left out: it could not be drawn without crossing bars that are not cut"
@@ -330,7 +330,9 @@ class BodyDrawing:
         at = f"({arm(about.x)}, {arm(about.y)})"
         text = f"moment centre {about.joint} at {at}" if about.joint else f"moment centre at {at}"
         label = Label(spot, text, SMALL_SIZE, ink="accent")
-        self.board.write(around(along(spot, way, 3.5), label, 1.2, [(0.0, 1.0), (0.0, -1.0), *compass((0.0, 1.0))]))
+        back = (-way[0], -way[1])
+        level = [(0.0, 1.0), (0.0, -1.0)]
+        self.board.write([*around(spot, label, 1.0, [back, *level]), *around(along(spot, way, 3.5), label, 4.5, level)])
 
     def _joint_names(self) -> None:
         xs, ys = zip(*self.sketch.place.values(), strict=True)
@@ -391,7 +393,16 @@ class BodyDrawing:
             )
         if any(self.structure.bars[name].is_link for name in self.body.cut.bars):
             sentences.append("Open arrowhead: reaction")
-        return ". ".join([*sentences, *dict.fromkeys(self.notes)]) + "."
+        sentences += dict.fromkeys(self.notes)
+        numbered = [f"({self.symbols.numbers[n]}) {words.bar(n)}" for n in self._named() if n in self.symbols.numbers]
+        if numbered:
+            sentences.append(f"Numbered: {', '.join(numbered)}")
+        return ". ".join(sentences) + "."
+
+    def _named(self) -> Iterator[str]:
+        """Yield what the forces in the figure are called after."""
+        yield from self.body.cut.bars
+        yield from (name for name in self.sketch.place if name in self.structure.loads)
 
     def _what(self) -> str:
         letters = {words.members_cut(self.structure, self.body.cut): self.body.letter} if self.body.letter else {}

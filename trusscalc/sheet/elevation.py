@@ -149,12 +149,12 @@ def in_rows(check: MemberCheck, places: int, width: float, missing: int) -> list
     for count in range(2, MOST_ROWS + 1):
         spans = _spans(check.truss, count)
         longest = max(high - low for low, high in spans)
-        scale = next(s for s in scales(check.truss.length) if longest * s.paper <= width - ROW_FRAME)
+        fitting = [s for s in scales(check.truss.length) if longest * s.paper <= width - ROW_FRAME]
         rows: list[WholeTruss] = []
-        drawn: set[str] = set()
-        for place, span in enumerate(spans):
-            rows.append(_results(check, scale, places, span, drawn, legend=place == len(spans) - 1))
-            drawn |= set(rows[-1].sketch.place)
+        for scale in fitting[:MOST_TRIALS]:
+            rows = _rows(check, scale, places, spans)
+            if all(row.board.bounds[2] - row.board.bounds[0] + 1 <= width for row in rows):
+                break
         left_out = sum(len(row.without_room) for row in rows)
         height = sum(row.board.bounds[3] - row.board.bounds[1] for row in rows)
         if height > HIGHEST_ROWS:
@@ -164,6 +164,16 @@ def in_rows(check: MemberCheck, places: int, width: float, missing: int) -> list
         if not left_out:
             break
     return best
+
+
+def _rows(check: MemberCheck, scale: Scale, places: int, spans: Sequence[tuple[float, float]]) -> list[WholeTruss]:
+    """Return one drawing for each stretch; a load at a joint that stands in two is drawn once."""
+    rows: list[WholeTruss] = []
+    drawn: set[str] = set()
+    for place, span in enumerate(spans):
+        rows.append(_results(check, scale, places, span, drawn, legend=place == len(spans) - 1))
+        drawn |= set(rows[-1].sketch.place)
+    return rows
 
 
 def _spans(truss: Truss, count: int) -> list[tuple[float, float]]:

@@ -198,10 +198,11 @@ def beside(tail: Point, tip: Point, label: Label, distance: float = 0.8) -> Iter
     sides.sort(key=lambda side: (-round(side[0], 6), -round(side[1], 6)))
     if abs(uy) < 0.3:  # noqa: PLR2004 - a level arrow: above first
         sides.sort(key=lambda side: -round(side[1], 6))
-    for share in (0.5, 0.75, 0.25, 1.0):
-        spot = (tail[0] + share * (tip[0] - tail[0]), tail[1] + share * (tip[1] - tail[1]))
-        for side in sides:
-            yield from around(spot, label, distance, [side])
+    for away in (distance, 2.5 * distance):
+        for share in (0.5, 0.75, 0.25, 1.0):
+            spot = (tail[0] + share * (tip[0] - tail[0]), tail[1] + share * (tip[1] - tail[1]))
+            for side in sides:
+                yield from around(spot, label, away, [side])
     yield from around(tip, label, distance, compass((ux, uy)))
     yield from around(tail, label, distance, compass((-ux, -uy)))
 
@@ -226,8 +227,9 @@ def name_joint(sketch: Sketch, name: str, middle: Point, *, ink: Ink = "black", 
     sketch.board.write([*around(place, label, distance, units), *around(place, label, distance + 1.2, units)])
 
 
-def draw_section_line(board: Board, line: SectionLine, letter: str, kept: Point) -> None:
+def draw_section_line(sketch: Sketch, line: SectionLine, letter: str, kept: Point) -> None:
     """Draw a section line with thick ends, viewing arrows towards the kept part, and its letter."""
+    board = sketch.board
     points = (*line.points, line.points[0]) if line.closed else line.points
     label = Label((0.0, 0.0), letter, 9.0, style="bold italic")
     if line.closed:
@@ -236,13 +238,15 @@ def draw_section_line(board: Board, line: SectionLine, letter: str, kept: Point)
         return
     ends = []
     for end, inner in ((line.points[0], line.points[1]), (line.points[-1], line.points[-2])):
-        ends.append(_section_end(board, end, unit(end, inner), label, kept))
+        ends.append(_section_end(sketch, end, unit(end, inner), label, kept))
     points = (ends[0], *line.points[1:-1], ends[1])
     board.line(*points, width=LIGHT, layer="symbol", dash="section")
 
 
-def _section_end(board: Board, place: Point, back: Point, label: Label, kept: Point) -> Point:
+def _section_end(sketch: Sketch, place: Point, back: Point, label: Label, kept: Point) -> Point:
     """Draw one end of a section line, further out or in when something is in its way; return where it is."""
+    board = sketch.board
+    spoken_for = [box_of(places[0]) for places in sketch.pending]  # where values of forces will stand
     normal = (-back[1], back[0])
     if (kept[0] - place[0]) * normal[0] + (kept[1] - place[1]) * normal[1] < 0:
         normal = (back[1], -back[0])
@@ -251,8 +255,10 @@ def _section_end(board: Board, place: Point, back: Point, label: Label, kept: Po
         end = along(place, back, -shift)
         arrow = Arrow(end, along(end, normal, 5.0), LIGHT)
         letter = next(iter(around(end, label, 0.9, [(-normal[0], -normal[1])])))
-        hits = [board.obstacles.hits(box, 0.3) for mark in (arrow, letter) for box in boxes_of(mark)]
-        cost = (sum(letters for letters, _ in hits), sum(lines for _, lines in hits))
+        boxes = [box for mark in (arrow, letter) for box in boxes_of(mark)]
+        hits = [board.obstacles.hits(box, 0.3) for box in boxes]
+        kept_free = sum(touch(box, other, 0.3) for box in boxes for other in spoken_for)
+        cost = (sum(letters for letters, _ in hits) + kept_free, sum(lines for _, lines in hits))
         if best is None or cost < best[0]:
             best = (cost, end, arrow, letter)
         if cost == (0, 0):

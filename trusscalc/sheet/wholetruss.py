@@ -52,6 +52,8 @@ CROWDED: Final = 7.0
 """Median length of bars on paper, mm, below which only joints of interest are named."""
 CLOSEST_LOADS: Final = 2.5
 EDGE: Final = 0.01
+IN_LINE: Final = 0.5
+"""Cosine above which a reaction's arrow stands behind its support's symbol."""
 VALUE_GAP: Final = 1.2
 STRUT_GAP: Final = 1.55
 
@@ -88,7 +90,7 @@ class WholeTruss:
         lengths = [math.dist(place[member.start], place[member.end]) for member in truss.members]
         self.crowded = statistics.median(lengths) < CROWDED
         self.notes: list[str] = []
-        self.depth: dict[str, tuple[Point, float]] = {}
+        self.depth: dict[str, tuple[list[Point], float]] = {}
         self.letters: list[str] = []
         self.without_room: list[str] = []
         self.value_texts: set[str] = set()
@@ -134,7 +136,7 @@ class WholeTruss:
             if support.joint not in ways:
                 continue
             depth = draw_support(self.sketch, support, ways[support.joint])
-            self.depth[support.joint] = (ways[support.joint][0], depth)
+            self.depth[support.joint] = (ways[support.joint], depth)
 
     def remarks(self) -> str:
         """Return what the drawing leaves out, for the caption."""
@@ -177,14 +179,15 @@ class WholeTruss:
             if item.exact is None or not item.exact or link.joint not in self.sketch.place:
                 continue
             way = unit((0.0, 0.0), (float(link.dx), float(link.dy)))
-            side, depth = self.depth[link.joint]
+            sides, depth = self.depth[link.joint]
             behind = (-way[0], -way[1])
-            gap = depth + 1.4 if side[0] * behind[0] + side[1] * behind[1] > 0.5 else 1.2  # noqa: PLR2004
+            side = next((side for side in sides if side[0] * behind[0] + side[1] * behind[1] > IN_LINE), None)
             taken = self.sketch.taken[link.joint]
             if side in taken:
                 taken.remove(side)  # the arrow stands behind the symbol, on the same side
+            gap = depth + 1.4 if side else 1.2
             draw_force(self.sketch, Force(link.joint, way, amount(item.exact), reaction=True, small=True), gap=gap)
-            taken.append(side)
+            taken += [side] if side else []
 
     def joints(self, moving: Mapping[str, object] | None = None, named: Iterable[str] = ()) -> None:
         """Draw the joints and write their names; on a crowded drawing only those of members named."""
@@ -235,7 +238,7 @@ class WholeTruss:
         if line is None:
             return False
         xs, ys = zip(*(place[name] for name in kept), strict=True)
-        draw_section_line(self.board, line, letter, (sum(xs) / len(xs), sum(ys) / len(ys)))
+        draw_section_line(self.sketch, line, letter, (sum(xs) / len(xs), sum(ys) / len(ys)))
         return True
 
     def continued(self) -> None:
@@ -283,14 +286,11 @@ class WholeTruss:
         """Return whether a member's value belongs on this stretch: the one that holds its middle."""
         a, b = self.ends(name)
         middle = (a[0] + b[0]) / 2
-        return (
-            self.span is None
-            or self.span[0] - EDGE <= middle < self.span[1] - EDGE
-            or (self._is_last() and middle <= self.span[1] + EDGE)
-        )
-
-    def _is_last(self) -> bool:
-        return self.span is not None and self.span[1] >= max(x for x, _ in self.flat.values()) - EDGE
+        if self.span is None:
+            return True
+        low, high = self.span
+        last = high >= max(x for x, _ in self.flat.values()) - EDGE
+        return low - EDGE <= middle < high - EDGE or (last and abs(middle - high) <= EDGE)
 
     def _along_member(self, name: str, label: Label, gap: float) -> Iterator[Label]:
         a, b = self.ends(name)
