@@ -11,6 +11,10 @@ from trusscalc.statics.cuts import About, Cut
 from trusscalc.statics.steps import Step
 
 FORMAT = 1
+CAUTION = (
+    "Axial forces of an ideal truss only, no strength or stability of members or connections; both routes share the "
+    "input.\nLocal codes and the judgement of a licensed engineer govern."
+)
 WIDEST_EXACT = 48
 """Characters of an exact value in a terminal; JSON and sheets have all of them."""
 
@@ -141,7 +145,7 @@ def verdict_lines(check: MemberCheck, places: int = 3) -> list[str]:
     notes += [f"joint {joint} is out of balance" for joint in check.residuals]
     asked = len(check.members)
     told = "all agree" if check.agreed else "not all agree"
-    return [*lines, *notes, f"{asked} of {check.statics.members} members checked: {told}"]
+    return [*lines, *notes, f"{asked} of {check.statics.members} members checked: {told}", CAUTION]
 
 
 def _verdict_row(check: MemberCheck, item: ForceCheck, places: int) -> list[str]:
