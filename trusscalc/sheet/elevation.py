@@ -252,7 +252,7 @@ def mechanism_figure(truss: Truss, error: UnstableTrussError, *, width: float = 
         drawing = WholeTruss(truss, scale)
         drawing.mechanism(error.mechanism)
         drawing.supports()
-        drawing.joints(moving=error.mechanism)
+        drawing.joints()
         return drawing
 
     def caption(drawing: WholeTruss) -> str:

@@ -24,7 +24,7 @@ from trusscalc.sheet.board import (
     compass,
     unit,
 )
-from trusscalc.sheet.lettering import Point, boxes_of
+from trusscalc.sheet.lettering import Point, box_of, boxes_of, touch
 from trusscalc.sheet.marks import Arrow, Ink, Label, Stroke
 from trusscalc.sheet.sections import SectionLine
 from trusscalc.truss import Support, Truss

@@ -189,9 +189,9 @@ class WholeTruss:
             draw_force(self.sketch, Force(link.joint, way, amount(item.exact), reaction=True, small=True), gap=gap)
             taken += [side] if side else []
 
-    def joints(self, moving: Mapping[str, object] | None = None, named: Iterable[str] = ()) -> None:
+    def joints(self, *, named: Iterable[str] = ()) -> None:
         """Draw the joints and write their names; on a crowded drawing only those of members named."""
-        wanted = set(self.sketch.place if moving is None else moving)
+        wanted = set(self.sketch.place)
         if self.crowded:
             ends = {end for name in named for end in (self.members[name].start, self.members[name].end)}
             wanted &= ends if len(ends) <= MOST_NAMED else set()
