@@ -141,7 +141,8 @@ class MemberCheck:
     residuals : dict of str to (Exact, Exact)
         Load plus bar forces at every joint where they are not exactly zero; empty when all is well.
     largest_force : float
-        Largest size of any member force, reaction or load by the numeric route or by hand.
+        Largest size of any load, and of any member force or reaction of the numeric route that the exact solution
+        confirms.
     tolerance : float
         Share of the largest force up to which the routes agree.
     condition : float
@@ -374,7 +375,20 @@ class _Judge:
         bound = 10 * sys.float_info.epsilon * condition
         self.tolerance = max(TOLERANCE, bound) if math.isfinite(bound) else math.inf
         loads = [abs(part) for pair in case.as_floats().values() for part in pair]
-        self.largest = max([abs(value) for value in numeric.values()] + loads, default=0.0)
+        self.largest = max([self._largest_confirmed(), *loads])
+
+    def _largest_confirmed(self) -> float:
+        """Return the largest numeric force that the exact solution confirms in size.
+
+        A wrong value of the numeric route, infinite at worst, must not widen the tolerance of all others.
+        """
+        tensions = self.equilibrium.tensions
+        finite = {name: abs(force) for name, force in self.numeric.items() if name in tensions and math.isfinite(force)}
+        for name in sorted(finite, key=finite.__getitem__, reverse=True):
+            length = math.sqrt(float(self.structure.bars[name].length_squared))
+            if finite[name] <= 2 * length * abs(float(self.case.value(tensions[name]))):
+                return finite[name]
+        return 0.0
 
     def verdict(self, name: str) -> ForceCheck:
         steps = self.rests_on.get(name, ())
@@ -406,7 +420,7 @@ class _Judge:
         found = []
         for monomial, numeric in self.parts.items():
             part = exact.get(monomial, ZERO)
-            largest = max((abs(force) for force in numeric.values()), default=0.0)
+            largest = max((abs(force) for force in numeric.values() if math.isfinite(force)), default=0.0)
             agrees = abs(float(part) - numeric[name]) <= self.tolerance * largest
             found.append(Coefficient(monomial_text(monomial), part, float(part), numeric[name], agrees))
         stray = [monomial for monomial in exact if monomial not in self.parts and exact[monomial]]
