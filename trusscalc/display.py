@@ -21,7 +21,9 @@ from trusscalc.sheet import compose as composing
 from trusscalc.sheet.blocks import Derivation, Items, Run, Sheet
 from trusscalc.sheet.figures import truss_figure
 from trusscalc.sheet.words import about_words, bar, listed
+from trusscalc.statics.cutreport import CutReport, cut_equation, cut_report
 from trusscalc.statics.cuts import Cut
+from trusscalc.statics.owncuts import OwnCut, own_cut
 from trusscalc.statics.steps import Step
 from trusscalc.truss import Truss
 
@@ -47,12 +49,18 @@ def save(sheet: Sheet, path: str | os.PathLike[str]) -> Path:
         When the place cannot be written to.
     """
     place = Path(path)
-    writer = WRITERS.get(place.suffix.lower())
-    if writer is None:
-        message = f"a sheet cannot be saved as {place.suffix or place.name!r}; it can be as {' or '.join(WRITERS)}"
-        raise RenderError(message)
+    refuse_unwritable(place)
+    writer = WRITERS[place.suffix.lower()]
     replace_file(place, writer(sheet).encode())
     return place
+
+
+def refuse_unwritable(path: str | os.PathLike[str]) -> None:
+    """Raise a RenderError for a suffix no sheet can be written as (before any work is done)."""
+    place = Path(path)
+    if place.suffix.lower() not in WRITERS:
+        message = f"a sheet cannot be saved as {place.suffix or place.name!r}; it can be as {' or '.join(WRITERS)}"
+        raise RenderError(message)
 
 
 def step_texts(check: MemberCheck, places: int = 3) -> dict[int, str]:
@@ -126,13 +134,44 @@ def _cut_bundle(cut: Cut, **_: Any) -> Bundle:
     return bundle([Items(items)])
 
 
+def _own_cut_bundle(cut: OwnCut, **_: Any) -> Bundle:
+    """Return an own cut's facts: what is kept, and which bars hold it."""
+    items = (
+        ("Joints kept", (Run(listed(cut.kept)),)),
+        ("Bars cut", (Run(listed(map(bar, cut.bars)) or "none"),)),
+    )
+    return bundle([Items(items)])
+
+
+def _cut_report_bundle(report: CutReport, **_: Any) -> Bundle:
+    """Return what a cut can do: what it decides or why not, and what each equation leaves unknown."""
+    items = [
+        ("Joints kept", listed(report.cut.kept)),
+        ("Bars cut", listed(map(bar, report.cut.bars))),
+        ("Unknown", listed(map(bar, report.unknown)) or "none"),
+        ("Solves alone", listed(map(bar, report.solves)) or "nothing"),
+    ]
+    if report.together:
+        items.append(("Solves together", listed(map(bar, report.together))))
+    if report.reason:
+        items.append(("Why nothing", report.reason))
+    if report.nearest:
+        items.append(("Nearest cut that does", f"keep {listed(report.nearest)}"))
+    for way in report.possibilities[:6]:
+        left = listed(map(bar, way.unknown)) or "nothing"
+        items.append((about_words(way.about), f"leaves {left} unknown"))
+    return bundle([Items(tuple((term, (Run(text),)) for term, text in items))])
+
+
 CONVENIENCES: Final[dict[type, dict[str, Any]]] = {
     Sheet: {"save": save, "_repr_mimebundle_": _sheet_bundle},
     MemberCheck: {"sheet": _sheet, "derivation": _derivation, "_repr_mimebundle_": _check_bundle},
     Derivation: {"_repr_mimebundle_": _derivation_bundle},
     Step: {"_repr_mimebundle_": _step_bundle},
     Cut: {"_repr_mimebundle_": _cut_bundle},
-    Truss: {"_repr_mimebundle_": _truss_bundle},
+    Truss: {"cut": own_cut, "_repr_mimebundle_": _truss_bundle},
+    OwnCut: {"report": cut_report, "equation": cut_equation, "_repr_mimebundle_": _own_cut_bundle},
+    CutReport: {"_repr_mimebundle_": _cut_report_bundle},
 }
 """What ``attach`` hangs on which record."""
 

@@ -117,7 +117,7 @@ def tree(item: Mathematics) -> Node:  # noqa: PLR0911 - one line for each kind o
         case Formula(left, right, approximately):
             if not right:
                 return _sum(left)
-            return Relation(_sum(left), "≈" if approximately else "=", _sum(right))
+            return Relation(_sum(left) if left else None, "≈" if approximately else "=", _sum(right))
         case Value():
             return _number(item)
         case Decimals(text):
@@ -141,6 +141,10 @@ def _sum(products: tuple[Product, ...]) -> Node:
         if isinstance(node, Sum) and (product.negative or len(products) > 1):
             node = Brackets(node)
         terms.append((product.negative, node))
+    if len(terms) > 1 and not terms[0][0] and isinstance(terms[0][1], Brackets):
+        inside = terms[0][1].inside
+        if isinstance(inside, Sum) and len(inside.terms) == 1:
+            terms[0] = inside.terms[0]  # a minus sign that stands first needs no brackets
     if len(terms) == 1 and not terms[0][0]:
         return terms[0][1]
     return Sum(tuple(terms)) if terms else ZERO

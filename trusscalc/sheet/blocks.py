@@ -76,6 +76,8 @@ class Product:
 class Formula:
     """One written line: a sum on the left and, unless ``right`` is empty, one relation sign and a sum on the right.
 
+    Without a left side it is a number marked as rounded: ``≈ 0.79``.
+
     ``approximately`` says that a rounded decimal stands in the line, so that it holds to its digits only.
     """
 

@@ -38,6 +38,7 @@ from trusscalc.sheet.values import (
     pencil_sum,
     printed,
     scientific,
+    told,
 )
 from trusscalc.sheet.words import about_words, bar, found_in, letters_of, listed, sum_label, symbols_of
 from trusscalc.statics.cuts import structure_of
@@ -132,7 +133,7 @@ class Writer:
         """Return the note on what a pencil finds where rounded digits stand in a line."""
         if not holds_decimals(written):
             return []
-        start = f"Numbers too long to be read are printed with {DIGITS} significant digits; the calculation is exact."
+        start = f"Long numbers are printed with {DIGITS} significant digits."
         at_values = self.check.case.value(total)
         if at_values.symbols:
             return [(Run(start),)]
@@ -141,7 +142,7 @@ class Writer:
             return [(Run(start),)]
         return [
             (
-                Run(f"{start} With the digits printed, the known terms miss their exact sum by "),
+                Run(f"{start} With these the known terms miss their exact sum by "),
                 scientific(left, 1),
                 Run("."),
             )
@@ -171,7 +172,7 @@ class Writer:
         left = pencil_sum(values, self.check.case)
         if not left:
             return []
-        return [(Run("With the digits printed the check leaves "), scientific(left, 1), Run("; exactly it is 0."))]
+        return [(Run("With the digits printed, the check leaves "), scientific(left, 1), Run("; exactly it is 0."))]
 
     # --- results ------------------------------------------------------------------------------------------
 
@@ -219,7 +220,7 @@ class Writer:
         if exact is not None:
             value = check.case.value(exact)
             letter = None if self.teller.is_link(name) else Run(sense(value))
-            cells = [printed(exact, check.case), Decimals(decimal_text(value, self.places)), letter]
+            cells = [told(exact, check.case), Decimals(decimal_text(value, self.places)), letter]
         if judged is None:
             return (*cells, None, None, None)
         numeric = None if judged.stiffness is None else Decimals(float_text(judged.stiffness, self.places, slack))

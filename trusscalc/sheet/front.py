@@ -20,7 +20,7 @@ from trusscalc.sheet.blocks import (
     TitleBlock,
 )
 from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, sense, tension_of
-from trusscalc.sheet.values import bound, decimal_text, difference, scientific
+from trusscalc.sheet.values import DIGITS, bound, decimal_text, difference, is_readable, scientific
 from trusscalc.sheet.words import bar, capital, counted, listed
 
 TITLE = "Independent check of truss member forces"
@@ -114,7 +114,7 @@ def _conclusion(writer: Writer) -> list[Inline]:
         content.append(Run(" "))
     good = [name for name, found in check.members.items() if found.verdict == "agrees"]
     if good:
-        which = "the member below" if len(check.members) == 1 else f"{_of_all(len(good), len(check.members))} below"
+        which = _which(len(good), len(check.members))
         many = len(good) > 1
         content.append(
             Run(
@@ -128,10 +128,11 @@ def _conclusion(writer: Writer) -> list[Inline]:
     return content
 
 
-def _of_all(count: int, total: int) -> str:
-    if count == total:
-        return f"the {counted(total, 'member')}"
-    return f"{counted(count, 'member')} out of {total}"
+def _which(agreeing: int, total: int) -> str:
+    """Return how the members that agree are called."""
+    if agreeing == total:
+        return "the member below" if total == 1 else f"the {counted(total, 'member')} below"
+    return "the other member" if agreeing == 1 else f"the {counted(agreeing, 'other member')}"
 
 
 def _disagreements(check: MemberCheck) -> list[str]:
@@ -248,7 +249,12 @@ def _notes(check: MemberCheck) -> list[Block]:
             Run(" is not told digit by digit. "),
         ]
     if check.statics.determinate and not check.residuals:
-        content.append(Run(f"Reactions and all {check.statics.joints} joints are in equilibrium exactly."))
+        content.append(Run(f"Reactions and all {check.statics.joints} joints are in equilibrium exactly. "))
+    if any(found.exact is not None and not is_readable(found.exact) for found in check.members.values()):
+        content.append(Run(f"≈ marks a value too long to be read, given to {DIGITS} significant digits. "))
+    rounded = [bar(name) for name, found in check.members.items() if found.exactness == "angle rounded"]
+    if rounded:
+        content.append(Run(f"Angle rounded, not exact: {listed(rounded)}."))
     notes: list[Block] = [Paragraph(tuple(content), "note")]
     reasons = [
         (bar(name), (Run(f"{found.verdict}: {found.reason}"),))

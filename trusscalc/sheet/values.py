@@ -4,10 +4,9 @@ from __future__ import annotations
 
 import math
 from decimal import ROUND_HALF_EVEN, Context, Decimal
-from fractions import Fraction
 from typing import Final, Literal
 
-from trusscalc.exact import ONE, ZERO, Exact, approximate, rational, rounded, symbol
+from trusscalc.exact import ONE, ZERO, Exact, approximate, rounded, symbol
 from trusscalc.exacttext import to_text
 from trusscalc.loads import LoadCase
 from trusscalc.sheet.blocks import Bracket, Decimals, Formula, Name, Power, Product, Value
@@ -49,10 +48,27 @@ def printed(value: Exact, case: LoadCase, role: Literal["amount", "arm", "cosine
         return Value(at_values, role)
     if at_values.symbols:
         return _in_carried_forces(at_values)
-    size = approximate(at_values, DIGITS + 5)
-    places = max(0, DIGITS - 1 - size.adjusted())
-    text = f"{rounded(at_values, places):f}"
-    return Decimals(text.rstrip("0").rstrip(".") if "." in text else text)
+    return Decimals(_without_idle_zeros(rounded(at_values, _places(approximate(at_values, DIGITS + 5)))))
+
+
+def told(value: Exact, case: LoadCase) -> Number | Formula:
+    """Return a result's exact value for a table; a number too long to be read is marked as rounded by ``≈``."""
+    number = printed(value, case)
+    if isinstance(number, Decimals):
+        return Formula(
+            (), (Product(number.text.startswith("-"), (Decimals(number.text.removeprefix("-")),)),), approximately=True
+        )
+    return number
+
+
+def _places(size: Decimal) -> int:
+    """Return the decimal places that show ``DIGITS`` significant digits."""
+    return max(0, DIGITS - 1 - size.adjusted())
+
+
+def _without_idle_zeros(number: Decimal) -> str:
+    text = _plain(number)
+    return text.rstrip("0").rstrip(".") if "." in text else text
 
 
 def _in_carried_forces(value: Exact) -> Value | Bracket:
@@ -170,8 +186,9 @@ def multiplied(product: Product, case: LoadCase) -> Decimals | None:
         return None
     amount = _pencil_product(product, case)
     amount = -amount if product.negative else amount
-    number = printed(rational(Fraction(amount)), case)
-    return number if isinstance(number, Decimals) else Decimals(_plain(amount.normalize(WIDE)))
+    if not amount:
+        return Decimals("0")
+    return Decimals(_without_idle_zeros(amount.quantize(Decimal(1).scaleb(-_places(amount)), context=WIDE)))
 
 
 def _pencil_product(product: Product, case: LoadCase) -> Decimal:
