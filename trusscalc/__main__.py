@@ -70,9 +70,17 @@ def _parser() -> argparse.ArgumentParser:
         command.add_argument("file", metavar="FILE.toml", help="the truss file")
         command.add_argument("--case", required=True, help="a load case or a combination")
         command.add_argument("--members", required=True, help="A-B,C-D or all")
+        command.add_argument(
+            "--keep",
+            action="append",
+            default=[],
+            metavar="A-B=J1,J2,...",
+            help="derive member A-B from the cut that keeps these joints (may be given again for other members)",
+        )
+        command.add_argument("--prefer", choices=("sections", "joints"), default="", help="what to lean to")
     check.add_argument("--json", action="store_true", help="print the whole result as JSON")
     check.set_defaults(run=_check)
-    sheet.add_argument("--out", required=True, help="sheet.ipynb or sheet.txt")
+    sheet.add_argument("--out", required=True, help="the sheet; its suffix says how it is written")
     sheet.set_defaults(run=_sheet)
     return parser
 
@@ -80,11 +88,18 @@ def _parser() -> argparse.ArgumentParser:
 def _checked(arguments: argparse.Namespace) -> tuple[TrussFile, MemberCheck]:
     from trusscalc.files import read  # noqa: PLC0415
     from trusscalc.membercheck import check_members  # noqa: PLC0415
+    from trusscalc.statics.owncuts import own_cut  # noqa: PLC0415
 
     stated = read(arguments.file)
     members = arguments.members.strip()
     names = "all" if members == "all" else [name.strip() for name in members.split(",") if name.strip()]
-    return stated, check_members(stated.truss, stated.case(arguments.case), names)
+    cuts = {}
+    for text in arguments.keep:
+        member, _, joints = text.partition("=")
+        kept = [name.strip() for name in joints.split(",") if name.strip()]
+        cuts[member.strip()] = own_cut(stated.truss, keep=kept)
+    case = stated.case(arguments.case)
+    return stated, check_members(stated.truss, case, names, cuts=cuts, prefer=arguments.prefer)
 
 
 def _check(arguments: argparse.Namespace) -> int:
@@ -99,8 +114,15 @@ def _check(arguments: argparse.Namespace) -> int:
 
 
 def _sheet(arguments: argparse.Namespace) -> int:
-    del arguments
-    return REFUSED
+    from trusscalc.display import refuse_unwritable, save  # noqa: PLC0415
+    from trusscalc.sheet.compose import compose  # noqa: PLC0415
+
+    refuse_unwritable(arguments.out)
+    stated, check = _checked(arguments)
+    place = save(compose(check, stated.project), arguments.out)
+    told = "all agree" if check.agreed else "not all agree: see its first lines"
+    _print(f"{place}: {len(check.members)} of {check.statics.members} members, {told}")
+    return AGREED if check.agreed else DISAGREED
 
 
 if __name__ == "__main__":

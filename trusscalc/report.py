@@ -2,15 +2,18 @@
 
 from __future__ import annotations
 
+import math
 from typing import Any
 
 from trusscalc.exact import rounded
 from trusscalc.exacttext import to_text
 from trusscalc.membercheck import ForceCheck, MemberCheck
 from trusscalc.statics.cuts import About, Cut
-from trusscalc.statics.steps import Step
+from trusscalc.statics.steps import Equation, Step
 
 FORMAT = 1
+MOST_LOADS = 8
+"""Loads of one body written out in a line; more are only counted."""
 CAUTION = (
     "Axial forces of an ideal truss only, no strength or stability of members or connections; both routes share the "
     "input.\nLocal codes and the judgement of a licensed engineer govern."
@@ -19,16 +22,8 @@ WIDEST_EXACT = 48
 """Characters of an exact value in a terminal; JSON and sheets have all of them."""
 
 
-def check_data(check: MemberCheck, step_text: dict[int, str] | None = None) -> dict[str, Any]:
-    """Return a MemberCheck as the dictionary that ``check --json`` prints.
-
-    Parameters
-    ----------
-    check : MemberCheck
-        The result.
-    step_text : dict of int to str, optional
-        Each step's lines as plain text, by number.
-    """
+def check_data(check: MemberCheck) -> dict[str, Any]:
+    """Return a MemberCheck as the dictionary that ``check --json`` prints."""
     statics = check.statics
     data: dict[str, Any] = {
         "format": FORMAT,
@@ -44,7 +39,7 @@ def check_data(check: MemberCheck, step_text: dict[int, str] | None = None) -> d
         },
         "reactions": {name: _reaction_data(item) for name, item in check.reactions.items()},
         "members": {name: _member_data(item) for name, item in check.members.items()},
-        "steps": [_step_data(step, (step_text or {}).get(step.number, "")) for step in check.steps],
+        "steps": [_step_data(step, check.truss.force) for step in check.steps],
         "agreed": check.agreed,
     }
     if check.zero_members:
@@ -64,7 +59,7 @@ def _reaction_data(item: ForceCheck) -> dict[str, Any]:
         "exact": None if item.exact is None else to_text(item.exact),
         "exactness": item.exactness,
         "decimal": item.decimal,
-        "stiffness": item.stiffness,
+        "stiffness": _number(item.stiffness),
         "verdict": item.verdict,
         "steps": list(item.steps),
     }
@@ -73,7 +68,7 @@ def _reaction_data(item: ForceCheck) -> dict[str, Any]:
             part.symbols: {
                 "exact": to_text(part.exact),
                 "decimal": part.decimal,
-                "stiffness": part.stiffness,
+                "stiffness": _number(part.stiffness),
                 "agrees": part.agrees,
             }
             for part in item.coefficients
@@ -83,11 +78,16 @@ def _reaction_data(item: ForceCheck) -> dict[str, Any]:
     return data
 
 
+def _number(value: float | None) -> float | None:
+    """Return a float as JSON can hold it: what is not finite (and disagrees) is null."""
+    return value if value is not None and math.isfinite(value) else None
+
+
 def _member_data(item: ForceCheck) -> dict[str, Any]:
     return {**_reaction_data(item), "sense": item.sense}
 
 
-def _step_data(step: Step, text: str) -> dict[str, Any]:
+def _step_data(step: Step, unit: str) -> dict[str, Any]:
     data: dict[str, Any] = {"number": step.number, "kind": step.kind}
     several = len({equation.cut.kept for equation in step.equations}) > 1
     if not several:
@@ -103,9 +103,36 @@ def _step_data(step: Step, text: str) -> dict[str, Any]:
         ],
         "solves": list(step.solves),
         "uses": list(step.uses),
-        "text": text,
+        "text": "\n".join([*map(_equation_text, step.equations), *_result_texts(step, unit)]),
     }
     return data
+
+
+def _equation_text(equation: Equation) -> str:
+    """Return an equation as one line: what is summed, then coefficient * force for every term."""
+    about = equation.about
+    place = f"({to_text(about.x)}, {to_text(about.y)})"
+    if about.sum == "moment":
+        label = f"moments about {about.joint or place}"
+    else:
+        label = f"forces in {about.axis}" if about.axis else f"forces along {place}"
+    loads = [term for term in equation.terms if term.kind == "load"]
+    collected = len(loads) > MOST_LOADS
+    pieces = []
+    for term in equation.terms:
+        if term.kind == "load":
+            if not collected:
+                pieces.append(f"({to_text(term.coefficient)})*P[{term.name}.{term.axis}]")
+            elif term is loads[0]:
+                pieces.append(f"[{len(loads)} loads]")
+        else:
+            pieces.append(f"({to_text(term.coefficient)})*{'R' if term.kind == 'reaction' else 'N'}[{term.name}]")
+    return f"{label}: {' + '.join(pieces)} = 0"
+
+
+def _result_texts(step: Step, unit: str) -> list[str]:
+    lines = [f"let {name} be {letter}" for name, letter in step.carries.items()]
+    return lines + [f"{name} = {to_text(value)} {unit}" for name, value in {**step.partial, **step.results}.items()]
 
 
 def _cut_data(cut: Cut) -> dict[str, Any]:
