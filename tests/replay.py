@@ -21,6 +21,8 @@ mp.dps = DIGITS
 Number = Any
 TINY = mp.mpf(10) ** -45
 """Relative size below which a number of 60 digits is zero."""
+TINY_WHEN_ROUNDED = mp.mpf(10) ** -27
+"""The same where a truss's angles are rounded to 30 digits on the way in."""
 
 Sum = dict[str, Number]
 """A value: its number under '', and what multiplies each carried unknown."""
@@ -218,7 +220,8 @@ class Replay:
     of carried forces may be worked out again once those are closed.
     """
 
-    def __init__(self, stated: Stated, steps: list[Mapping[str, Any]]) -> None:
+    def __init__(self, stated: Stated, steps: list[Mapping[str, Any]], tiny: Number = TINY) -> None:
+        self.tiny = tiny
         self.bars = bars_of(stated)
         self.values: dict[str, Sum] = {}
         self.rests_on: dict[str, set[int]] = {}
@@ -310,7 +313,7 @@ class Replay:
         _claim(len(set(cut)) == len(cut), f"{where}: a bar is cut twice")
         coefficients = {name: bars.coefficient(name, kept, equation) for name in boundary}
         scale = max(abs(each) for each in coefficients.values())
-        live = {name for name, each in coefficients.items() if abs(each) > TINY * scale}
+        live = {name for name, each in coefficients.items() if abs(each) > self.tiny * scale}
         named = {name for key in ("solves", "solves_in", "uses", "carries") for name in self._group(step, key)}
         _claim(live <= named, f"{where}: {sorted(live - named)} has a coefficient but is neither solved nor used")
         row: Sum = {name: mp.mpf(0) for name in unknowns}
@@ -356,7 +359,9 @@ def faults(stated: Stated, data: Mapping[str, Any], members: Iterable[str]) -> l
     scale = max([abs(force) for force in expected.values()] + [mp.mpf(10) ** -30])
     wrong: list[str] = []
     try:
-        replay = Replay(stated, data["steps"])
+        both = (*data["members"].values(), *data["reactions"].values())
+        rounded = any(item["exactness"] != "exact" for item in both)
+        replay = Replay(stated, data["steps"], TINY_WHEN_ROUNDED if rounded else TINY)
     except ReplayError as problem:
         return [str(problem)]
     links = {name for name, (_, end, _, _) in bars.bars.items() if end is None}
