@@ -106,21 +106,23 @@ def _result(v4: Any, data: Bundle, count: int) -> Any:
 
 def file_source(origin: Origin) -> str:
     """Return the cell that holds the truss file."""
-    return (
-        "import trusscalc.display  # what results look like in a notebook\n"
-        "from trusscalc.files import reads\n"
-        "from trusscalc.membercheck import check_members\n\n"
-        f"truss_file = reads({as_literal(origin.truss_text)})"
-    )
+    return f"from trusscalc import check_members, reads\n\ntruss_file = reads({as_literal(origin.truss_text)})"
 
 
 def check_source(origin: Origin) -> str:
     """Return the cell that derives the members again and shows the summary."""
     names = "".join(f"    {name!r},\n" for name in origin.members)
     show = "check" if origin.places == PLACES else f"check.sheet(places={origin.places}, drawings=False)"
+    wishes = ""
+    if origin.cuts:
+        kept = ", ".join(f"{name!r}: truss_file.truss.cut(keep={list(joints)!r})" for name, joints in origin.cuts)
+        wishes += f", cuts={{{kept}}}"
+    if origin.prefer:
+        wishes += f", prefer={origin.prefer!r}"
     return (
         f"members = [\n{names}]\n"
-        f"check = check_members(truss_file.truss, truss_file.case({origin.case!r}), members)\n"
+        f"case = truss_file.case({origin.case!r})\n"
+        f"check = check_members(truss_file.truss, case, members{wishes})\n"
         f"{show}"
     )
 
@@ -180,5 +182,7 @@ def _metadata(sheet: Sheet) -> dict[str, Any]:
             "project": dict(origin.project),
             "stated": dict(origin.stated),
             "agreed": origin.agreed,
+            "cuts": {name: list(kept) for name, kept in origin.cuts},
+            "prefer": origin.prefer,
         },
     }

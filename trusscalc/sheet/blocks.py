@@ -252,6 +252,10 @@ class Origin:
         Whether everything agreed.
     program : str
         Program and version.
+    cuts : tuple of (str, tuple of str)
+        Members derived from a cut of the engineer's own, each with the joints kept.
+    prefer : str
+        What the plan leaned to, '' for nothing.
     """
 
     truss_text: str
@@ -262,6 +266,8 @@ class Origin:
     stated: tuple[tuple[str, str], ...]
     agreed: bool
     program: str
+    cuts: tuple[tuple[str, tuple[str, ...]], ...] = ()
+    prefer: str = ""
 
 
 @dataclass(frozen=True, slots=True)

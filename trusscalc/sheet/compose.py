@@ -153,4 +153,7 @@ def _origin(check: MemberCheck, project: Project, text: str, places: int) -> Ori
         stated=tuple((name, to_text(value)) for name, value in results.items()),
         agreed=check.agreed,
         program=record.program(),
+        # a check made before these were kept on it was made without them
+        cuts=tuple((name, tuple(kept)) for name, kept in getattr(check, "cuts", {}).items()),
+        prefer=getattr(check, "prefer", ""),
     )

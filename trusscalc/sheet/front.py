@@ -20,7 +20,7 @@ from trusscalc.sheet.blocks import (
     TitleBlock,
 )
 from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, sense, tension_of
-from trusscalc.sheet.values import DIGITS, bound, decimal_text, difference, is_readable, scientific
+from trusscalc.sheet.values import DIGITS, bound, decimal_text, difference, is_readable, printed, scientific
 from trusscalc.sheet.words import bar, capital, counted, listed
 
 TITLE = "Independent check of truss member forces"
@@ -68,10 +68,13 @@ def _symbol_values(check: MemberCheck) -> list[Block]:
         return []
     content: list[Inline] = [Run("Exact values hold the symbols of the loads; decimals, senses and verdicts are at ")]
     for place, (name, value) in enumerate(told):
-        number = decimal_text(value, 6).rstrip("0").rstrip(".") or "0"
-        near = "" if value == ZERO or value.is_rational else " (rounded)"
-        content += [Run(f"{', ' if place else ''}{name} = "), Decimals(number), Run(f" {check.truss.force}{near}")]
-    return [Paragraph((*content, Run(".")))]
+        content += [Run(f"{', ' if place else ''}{name} = "), printed(value, check.case)]
+    formulas = ". Formulas were compared with the stiffness route coefficient by coefficient as well."
+    return [Paragraph((*content, Run(formulas if _has_coefficients(check) else ".")))]
+
+
+def _has_coefficients(check: MemberCheck) -> bool:
+    return any(found.coefficients for found in (*check.members.values(), *check.reactions.values()))
 
 
 def summary(writer: Writer) -> list[Block]:

@@ -290,6 +290,8 @@ def cross_check(check: MemberCheck) -> list[Block]:
     else:
         degree = statics.members + statics.reactions - statics.rank
         count += f": stable, statically indeterminate to degree {degree}"
+        if check.redundancy:
+            count += f" ({check.redundancy.external} by the supports, {check.redundancy.internal} by the members)"
     if not statics.determinate:
         joints = "not closed exactly: the truss is statically indeterminate"
     elif check.residuals:
@@ -297,11 +299,11 @@ def cross_check(check: MemberCheck) -> list[Block]:
     else:
         forces = "loads, reactions and all member forces, those found above among them"
         joints = f"{forces}, sum to exactly zero at each of the {statics.joints} joints"
-    zero = listed(map(bar, check.zero_members)) or "none"
     items: list[tuple[str, tuple[Inline, ...]]] = [
         ("Count and rank", (Run(count),)),
         ("Joints", (Run(joints),)),
-        ("No force in this case", (Run(zero),)),
+        *_shared(check),
+        ("No force in this case", (Run(_idle(check)),)),
         (
             "Stiffness route",
             (Run("imbalance at the worst joint "), _small(check.stiffness_residual), Run(" of the largest force")),
@@ -310,6 +312,22 @@ def cross_check(check: MemberCheck) -> list[Block]:
         ("Independence", (Run("the two routes share no arithmetic; they share geometry, supports and loads"),)),
     ]
     return [Heading(2, "Cross-check"), Items(tuple(items))]
+
+
+def _shared(check: MemberCheck) -> list[tuple[str, tuple[Inline, ...]]]:
+    """Return who shares the redundancy of an indeterminate truss."""
+    if not check.redundancy:
+        return []
+    groups = "; ".join(listed(map(bar, group)) for group in check.redundancy.sharing)
+    return [("Not decided by statics", (Run(groups),))]
+
+
+def _idle(check: MemberCheck) -> str:
+    """Return the members without force, by the rule that shows it."""
+    by_reason: dict[str, list[str]] = {}
+    for name, reason in check.zero_members.items():
+        by_reason.setdefault(reason, []).append(bar(name))
+    return "; ".join(f"{listed(names)} ({reason})" for reason, names in by_reason.items()) or "none"
 
 
 def _small(size: float) -> Inline:
