@@ -34,7 +34,6 @@ SETTINGS = {
     "lines.scale_dashes": False,
     "text.usetex": False,
     "text.hinting": "none",  # letters stand where they were measured
-    "text.hinting_factor": 1,
     "font.family": FACES,
     "axes.unicode_minus": True,
 }

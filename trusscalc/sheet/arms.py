@@ -5,12 +5,13 @@ from __future__ import annotations
 from typing import Protocol
 
 from trusscalc.exact import Exact
-from trusscalc.sheet.board import (
+from trusscalc.sheet.board import LIGHT, SMALL_SIZE, along, around, unit, (
     Board,
 )
 from trusscalc.sheet.dimensions import level_dimension, running_dimension
 from trusscalc.sheet.folding import Fold, Resultant, collected
 from trusscalc.sheet.inscriptions import Scale, arm
+from trusscalc.sheet.marks import Label
 from trusscalc.sheet.lettering import Point
 from trusscalc.sheet.symbols import (
     Sketch,
@@ -90,3 +91,20 @@ def _acts_at(drawing: _Ground, term: Term) -> tuple[str, bool, bool]:
         return term.name, term.axis == "x", term.axis == "y"
     bar = drawing.structure.bars[term.name]
     return bar.start if bar.start in drawing.kept else bar.end, bool(bar.dx), bool(bar.dy)
+
+
+def point_to_centre(board: Board, place: Point, about: About) -> None:
+    """Point towards a moment centre off the paper and say where it is."""
+    left, lower, right, upper = board.bounds
+    middle = ((left + right) / 2, (lower + upper) / 2)
+    way = unit(middle, place)
+    spot = (left - 2.0 if way[0] < 0 else right + 2.0, middle[1] + 12.0 * way[1])
+    if abs(way[0]) < abs(way[1]):
+        spot = (middle[0] + 12.0 * way[0], lower - 3.0 if way[1] < 0 else upper + 3.0)
+    board.arrow(spot, along(spot, way, 7.0), width=LIGHT, ink="accent", small=True)
+    at = f"({arm(about.x)}, {arm(about.y)})"
+    text = f"moment centre {about.joint} at {at}" if about.joint else f"moment centre at {at}"
+    label = Label(spot, text, SMALL_SIZE, ink="accent")
+    back = (-way[0], -way[1])
+    level = [(0.0, 1.0), (0.0, -1.0)]
+    board.write([*around(spot, label, 1.0, [back, *level]), *around(along(spot, way, 3.5), label, 4.5, level)])

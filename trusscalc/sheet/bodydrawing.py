@@ -10,24 +10,20 @@ from typing import Final, Literal
 from trusscalc.exact import ONE, ZERO
 from trusscalc.membercheck import MemberCheck
 from trusscalc.sheet import words
-from trusscalc.sheet.arms import draw_arms
+from trusscalc.sheet.arms import draw_arms, point_to_centre
 from trusscalc.sheet.board import (
     CENTRE_GAP,
     FORCE_SIZE,
-    LIGHT,
     MEDIUM,
-    SMALL_SIZE,
     SOUGHT,
     THIN,
     Board,
     along,
-    around,
-    compass,
     unit,
 )
 from trusscalc.sheet.dimensions import slope_triangle
 from trusscalc.sheet.folding import Fold, Resultant, break_line, collected, resultant_of
-from trusscalc.sheet.inscriptions import Scale, amount, arm, slope
+from trusscalc.sheet.inscriptions import Scale, amount, slope
 from trusscalc.sheet.lettering import Point, line_box
 from trusscalc.sheet.marks import Figure, Ink, Label
 from trusscalc.sheet.sections import SectionLine, section_line
@@ -38,6 +34,7 @@ from trusscalc.sheet.symbols import (
     draw_force,
     draw_section_line,
     name_joint,
+    places_at_pull,
 )
 from trusscalc.statics.cuts import About, Cut, Structure
 from trusscalc.statics.matrix import Bar
@@ -94,6 +91,7 @@ class BodyDrawing:
         self.flat = everywhere
         self.everywhere = {name: self.fold.place(place) for name, place in everywhere.items()}
         self.sketch = Sketch(self.board, {name: self.everywhere[name] for name in self.kept if name in shown})
+        self.sought = (*body.step.solves, *body.step.solves_in)
         self.notes: list[str] = []
         self.centres = {e.about.joint for e in body.equations if e.about.sum == "moment"}
         self.ring_at = self.centres & set(self.kept)
@@ -165,7 +163,7 @@ class BodyDrawing:
             else:
                 tail, tip = along(start, way, STUB), along(start, way, STUB + PULL)
                 self.board.line(along(start, way, gap), tail, width=MEDIUM)
-            sought = bar.name in self.body.step.solves
+            sought = bar.name in self.sought
             self.board.arrow(tail, tip, width=SOUGHT if sought else MEDIUM, ink="accent" if sought else "black")
             self.pulls[bar.name] = (tail, tip)
 
@@ -252,15 +250,15 @@ class BodyDrawing:
                 self.arms.append((item, equation))
 
     def _listed_forces(self) -> Iterator[Force]:
+        terms = [term for equation in self.body.equations for term in equation.terms]
+        known = {term.name: term.force for term in terms if term.kind == "reaction"}
         for name in self.body.cut.bars:
             bar = self.structure.bars[name]
             if not bar.is_link:
                 continue
-            sought = name in self.body.step.solves
+            sought = name in self.sought
             ink: Ink = "accent" if sought else "black"
-            value = ""
-            if not sought and name in self.body.step.uses:
-                value = amount(self.body.check.reactions[name].exact or ZERO)
+            value = "" if sought or name not in known else amount(known[name])
             way = unit((0.0, 0.0), (float(bar.dx), float(bar.dy)))
             yield Force(bar.start, way, value, self._name("reaction", name), ink, reaction=True)
         axes: tuple[tuple[Literal["x", "y"], Point], ...] = (("x", (1.0, 0.0)), ("y", (0.0, 1.0)))
@@ -289,7 +287,7 @@ class BodyDrawing:
                 self.board.moment_centre(place)
                 self._lines_to(place, equation)
             else:
-                self._far_centre(place, about)
+                point_to_centre(self.board, place, about)
 
     def centre(self, about: About) -> Point:
         """Return where a moment centre lies on paper."""
@@ -318,22 +316,6 @@ class BodyDrawing:
             ):
                 self.board.line(start, end, width=THIN, layer="dimension", ink="grey", dash="dashed")
 
-    def _far_centre(self, place: Point, about: About) -> None:
-        """Point towards a moment centre off the paper and say where it is."""
-        left, lower, right, upper = self.board.bounds
-        middle = ((left + right) / 2, (lower + upper) / 2)
-        way = unit(middle, place)
-        spot = (left - 2.0 if way[0] < 0 else right + 2.0, middle[1] + 12.0 * way[1])
-        if abs(way[0]) < abs(way[1]):
-            spot = (middle[0] + 12.0 * way[0], lower - 3.0 if way[1] < 0 else upper + 3.0)
-        self.board.arrow(spot, along(spot, way, 7.0), width=LIGHT, ink="accent", small=True)
-        at = f"({arm(about.x)}, {arm(about.y)})"
-        text = f"moment centre {about.joint} at {at}" if about.joint else f"moment centre at {at}"
-        label = Label(spot, text, SMALL_SIZE, ink="accent")
-        back = (-way[0], -way[1])
-        level = [(0.0, 1.0), (0.0, -1.0)]
-        self.board.write([*around(spot, label, 1.0, [back, *level]), *around(along(spot, way, 3.5), label, 4.5, level)])
-
     def _joint_names(self) -> None:
         xs, ys = zip(*self.sketch.place.values(), strict=True)
         middle = ((min(xs) + max(xs)) / 2, (min(ys) + max(ys)) / 2)
@@ -343,9 +325,9 @@ class BodyDrawing:
     def _pull_names(self) -> None:
         for name, (tail, tip) in self.pulls.items():
             base, subscript = self._name("member", name)
-            ink: Ink = "accent" if name in self.body.step.solves else "black"
+            ink: Ink = "accent" if name in self.sought else "black"
             label = Label(tip, base, FORCE_SIZE, subscript, ink=ink, style="italic")
-            self.board.write(_at_pull(tail, tip, label))
+            self.board.write(places_at_pull(tail, tip, label))
 
     def _oblique_terms(self) -> Iterator[Bar]:
         for equation in self.body.equations:
@@ -421,20 +403,3 @@ class BodyDrawing:
             shown = loads[:MOST_NAMES] + ([f"{len(loads) - MOST_NAMES} more"] if len(loads) > MOST_NAMES else [])
             text += f"; loads at {words.listed(shown)}"
         return text + "."
-
-
-def _at_pull(tail: Point, tip: Point, label: Label) -> Iterator[Label]:
-    """Yield places for the name of a pull: over or under a level arrow's tip, beyond an oblique one's."""
-    way = unit(tail, tip)
-    near_tip = along(tip, way, -2.0)
-    if abs(way[1]) < 0.2:  # noqa: PLR2004 - nearly level
-        yield from around(near_tip, label, 1.0, [(0.0, 1.0), (0.0, -1.0)])
-        yield from around(tip, label, 0.6, [way])
-    elif abs(way[0]) < 0.2:  # noqa: PLR2004 - nearly upright
-        yield from around(along(tip, way, -3.0), label, 1.0, [(1.0, 0.0), (-1.0, 0.0)])
-        yield from around(tip, label, 0.6, [way])
-    else:
-        yield from around(tip, label, 0.6, [unit((0, 0), (1.0 if way[0] > 0 else -1.0, 0.3 * way[1])), way])
-    for distance in (0.8, 2.0, 3.5):
-        yield from around(tip, label, distance, compass(way, 12))
-    yield from around(along(tip, way, -4.0), label, 1.0, compass(way, 12))

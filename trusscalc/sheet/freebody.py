@@ -56,7 +56,7 @@ def free_body(check: MemberCheck, step: Step, *, width: float = 80.0) -> tuple[F
     >>> truss = Truss({"A": (0, 0), "B": (4, 0), "C": (2, 1)}, ["A-B", "A-C", "B-C"], {"A": "pin", "B": "roller"})
     >>> check = check_members(truss, LoadCase("dead", {"C": (0, -2)}), ["A-C"])
     >>> free_body(check, check.steps[-1])[0].caption
-    'Joint A, forces in kN. Open arrowhead: reaction.'
+    'Joint A, forces in kN. Open arrowhead: reaction. Slope of A–C: 2 across, 1 up, length √5.'
     """
     structure = structure_of(check.truss, check.case)
     found: dict[tuple[str, ...], list[Equation]] = {}

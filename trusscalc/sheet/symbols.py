@@ -5,7 +5,7 @@ Sizes in mm. A symbol is put on the side of its joint where no bar is in the way
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from typing import Final
 
@@ -199,12 +199,29 @@ def beside(tail: Point, tip: Point, label: Label, distance: float = 0.8) -> Iter
     if abs(uy) < 0.3:  # noqa: PLR2004 - a level arrow: above first
         sides.sort(key=lambda side: -round(side[1], 6))
     for away in (distance, 2.5 * distance):
-        for share in (0.5, 0.75, 0.25, 1.0):
+        for share in (0.6, 0.75, 0.45, 0.25, 1.0):
             spot = (tail[0] + share * (tip[0] - tail[0]), tail[1] + share * (tip[1] - tail[1]))
             for side in sides:
                 yield from around(spot, label, away, [side])
     yield from around(tip, label, distance, compass((ux, uy)))
     yield from around(tail, label, distance, compass((-ux, -uy)))
+
+
+def places_at_pull(tail: Point, tip: Point, label: Label) -> Iterator[Label]:
+    """Yield places for the name of a pull: over or under a level arrow's tip, beyond an oblique one's."""
+    way = unit(tail, tip)
+    near_tip = along(tip, way, -2.0)
+    if abs(way[1]) < 0.2:  # noqa: PLR2004 - nearly level
+        yield from around(near_tip, label, 1.0, [(0.0, 1.0), (0.0, -1.0)])
+        yield from around(tip, label, 0.6, [way])
+    elif abs(way[0]) < 0.2:  # noqa: PLR2004 - nearly upright
+        yield from around(along(tip, way, -3.0), label, 1.0, [(1.0, 0.0), (-1.0, 0.0)])
+        yield from around(tip, label, 0.6, [way])
+    else:
+        yield from around(tip, label, 0.6, [unit((0, 0), (1.0 if way[0] > 0 else -1.0, 0.3 * way[1])), way])
+    for distance in (0.8, 2.0, 3.5):
+        yield from around(tip, label, distance, compass(way, 12))
+    yield from around(along(tip, way, -4.0), label, 1.0, compass(way, 12))
 
 
 # --- joints and sections ----------------------------------------------------------------------------------
