@@ -15,10 +15,10 @@ PACKAGE = Path(__file__).parents[1] / "trusscalc"
 # from the bottom up; a package stands for all its modules, which must be free of circles among themselves
 LAYERS = (
     *("errors", "exact", "exacttext", "units", "truss", "loads", "shapes", "project", "trussfile", "filetext"),
-    *("replacefile", "files", "statics.matrix", "statics.cuts", "statics.incidence", "statics.bodies"),
+    *("replacefile", "files", "symbolparts", "statics.matrix", "statics.cuts", "statics.incidence", "statics.bodies"),
     *("statics.prices", "statics.derivations", "statics.bridges", "statics.carrying", "statics.plan", "statics.steps"),
-    *("stiffness", "membercheck", "report", "compare", "sheet", "render", "recheck", "widgets", "display"),
-    *("__init__", "__main__"),
+    *("statics.owncuts", "statics.cutreport", "statics.zeroforce", "stiffness", "membercheck", "report", "compare"),
+    *("sheet", "render", "recheck", "widgets", "display", "__init__", "__main__"),
 )
 AT_CALL_TIME = {("exact", "exacttext")}
 """Upward all the same, inside a function: how a number shows itself to people."""
