@@ -5,14 +5,12 @@ from __future__ import annotations
 from typing import Protocol
 
 from trusscalc.exact import Exact
-from trusscalc.sheet.board import LIGHT, SMALL_SIZE, along, around, unit, (
-    Board,
-)
+from trusscalc.sheet.board import LIGHT, SMALL_SIZE, Board, along, around, unit
 from trusscalc.sheet.dimensions import level_dimension, running_dimension
 from trusscalc.sheet.folding import Fold, Resultant, collected
 from trusscalc.sheet.inscriptions import Scale, arm
-from trusscalc.sheet.marks import Label
 from trusscalc.sheet.lettering import Point
+from trusscalc.sheet.marks import Label
 from trusscalc.sheet.symbols import (
     Sketch,
 )
