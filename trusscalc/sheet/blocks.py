@@ -256,6 +256,10 @@ class Origin:
         Members derived from a cut of the engineer's own, each with the joints kept.
     prefer : str
         What the plan leaned to, '' for nothing.
+    names : tuple of (str, str)
+        Joints and members with their names elsewhere.
+    drawings : bool
+        Whether figures are drawn.
     """
 
     truss_text: str
@@ -268,6 +272,8 @@ class Origin:
     program: str
     cuts: tuple[tuple[str, tuple[str, ...]], ...] = ()
     prefer: str = ""
+    names: tuple[tuple[str, str], ...] = ()
+    drawings: bool = True
 
 
 @dataclass(frozen=True, slots=True)

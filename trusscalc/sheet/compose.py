@@ -58,6 +58,7 @@ def compose(
     stated = _stated(check, truss_text) if truss_text else None
     project = project or (stated.project if stated else Project())
     text = truss_text or writes(TrussFile(check.truss, (check.case,), (), project))
+    check = replace(check, truss=(stated or _read_again(text)).truss)  # the echo is of the text, groups and all
     writer = writer_of(check, places)
     summary = tuple(front.summary(writer))
     blocks: list[Block] = [
@@ -77,7 +78,7 @@ def compose(
         *record.revisions(project),
     ]
     title = f"{front.TITLE}: {check.truss.title}" if check.truss.title else front.TITLE
-    return Sheet(title, tuple(blocks), summary, _origin(check, project, text, places))
+    return Sheet(title, tuple(blocks), summary, _origin(check, project, text, places, drawings=drawings))
 
 
 def derivations(writer: Writer, *, drawings: bool = True) -> list[Block]:
@@ -117,9 +118,7 @@ def summary(check: MemberCheck, places: int = 3) -> tuple[Block, ...]:
 
 def _stated(check: MemberCheck, truss_text: str) -> TrussFile:
     """Return what the text states, once it is sure to be what was checked."""
-    with warnings.catch_warnings():
-        warnings.simplefilter("ignore", TrusscalcWarning)
-        stated = reads(truss_text)
+    stated = _read_again(truss_text)
     if _without_groups(stated.truss) != _without_groups(check.truss):
         message = "the text of the truss file states another truss than was checked; give the text it was read from"
         raise InputError(message)
@@ -127,6 +126,12 @@ def _stated(check: MemberCheck, truss_text: str) -> TrussFile:
         message = f"the text of the truss file states other loads for {check.case.name!r} than were checked"
         raise InputError(message)
     return stated
+
+
+def _read_again(text: str) -> TrussFile:
+    with warnings.catch_warnings():
+        warnings.simplefilter("ignore", TrusscalcWarning)  # told when the truss was made
+        return reads(text)
 
 
 def _without_groups(truss: Truss) -> tuple[object, ...]:
@@ -142,7 +147,7 @@ def _uses(case: LoadCase, name: str) -> bool:
     return any(name in part.symbols for load in case.loads for part in (load.fx, load.fy))
 
 
-def _origin(check: MemberCheck, project: Project, text: str, places: int) -> Origin:
+def _origin(check: MemberCheck, project: Project, text: str, places: int, *, drawings: bool) -> Origin:
     results = {name: value for step in check.steps for name, value in step.results.items()}
     return Origin(
         truss_text=text,
@@ -156,4 +161,6 @@ def _origin(check: MemberCheck, project: Project, text: str, places: int) -> Ori
         # a check made before these were kept on it was made without them
         cuts=tuple((name, tuple(kept)) for name, kept in getattr(check, "cuts", {}).items()),
         prefer=getattr(check, "prefer", ""),
+        names=tuple(project.names.items()),
+        drawings=drawings,
     )

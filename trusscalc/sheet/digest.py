@@ -1,0 +1,73 @@
+"""What a filed sheet carries so that it can be derived again, and the digest of everything it shows.
+
+The record is the input alone: whoever rechecks a sheet derives the rest. The content digest is one line that a
+printed sheet can be compared by: the same input and the same program give the same one.
+"""
+
+from __future__ import annotations
+
+import hashlib
+import json
+from dataclasses import fields, is_dataclass
+from typing import Any, Final
+
+from trusscalc.exact import Exact
+from trusscalc.exacttext import to_text
+from trusscalc.sheet.blocks import Sheet
+
+FORMAT: Final = 1
+FINENESS: Final = 2
+"""Decimals of a millimetre to which the marks of a drawing count."""
+
+
+def record_of(sheet: Sheet) -> dict[str, Any]:
+    """Return what a sheet was derived from, without the truss file, which stands on the sheet itself.
+
+    ``input`` is the SHA-256 of the truss file, ``content`` that of everything the sheet shows.
+    """
+    origin = sheet.origin
+    return {
+        "format": FORMAT,
+        "program": origin.program,
+        "case": origin.case,
+        "members": list(origin.members),
+        "cuts": {name: list(kept) for name, kept in origin.cuts},
+        "prefer": origin.prefer,
+        "places": origin.places,
+        "drawings": origin.drawings,
+        "project": dict(origin.project),
+        "names": dict(origin.names),
+        "input": hashlib.sha256(origin.truss_text.encode()).hexdigest(),
+        "content": content_digest(sheet),
+    }
+
+
+def content_digest(sheet: Sheet) -> str:
+    """Return the SHA-256 of a sheet's content: every word, number, equation, table cell and mark, in order.
+
+    Examples
+    --------
+    >>> from trusscalc.sheet.blocks import Heading, Origin
+    >>> origin = Origin("", "dead", (), 3, (), (), True, "trusscalc 1")
+    >>> one, other = (Sheet("t", (Heading(1, text),), (), origin) for text in ("5 kN", "6 kN"))
+    >>> len(content_digest(one)), content_digest(one) == content_digest(other)
+    (64, False)
+    """
+    text = json.dumps(_plain(sheet), ensure_ascii=True, separators=(",", ":"))
+    return hashlib.sha256(text.encode()).hexdigest()
+
+
+def _plain(item: Any) -> Any:
+    """Return a record as nested lists of text, whole numbers and truth values, each with its kind."""
+    if item is None or isinstance(item, (str, bool, int)):
+        return item
+    if isinstance(item, float):  # noise below what a drawing shows must not count
+        return f"{round(item, FINENESS) + 0.0:.{FINENESS}f}"
+    if isinstance(item, Exact):
+        return to_text(item)
+    if isinstance(item, tuple):
+        return [_plain(inner) for inner in item]
+    if is_dataclass(item):
+        return [type(item).__name__, *(_plain(getattr(item, field.name)) for field in fields(item))]
+    message = f"a sheet does not hold a {type(item).__name__}"
+    raise TypeError(message)
