@@ -288,12 +288,22 @@ class Exact:
         if not self.symbols:
             return self
         if any(radicand.symbols for radicand in self.tower):
-            message = "a root that holds a symbol cannot be evaluated yet"
-            raise InexactNumberError(message)
+            return self._substitute_under_roots(values)
         total = ZERO
         for key, coefficient in self.terms.items():
             root = Exact({key: QQ(1)}, self.tower, rounded=self.rounded)
             total = total + root * _substituted(coefficient, values)
+        return total
+
+    def _substitute_under_roots(self, values: Mapping[str, Exact]) -> Exact:
+        roots = [sqrt(radicand.substitute(values)) for radicand in self.tower]
+        total = ZERO
+        for (n, mask), coefficient in self.terms.items():
+            term = Exact({(n, 0): QQ(1)}, rounded=self.rounded) * _substituted(coefficient, values)
+            for index, root in enumerate(roots):
+                if mask >> index & 1:
+                    term = term * root
+            total = total + term
         return total
 
 
@@ -679,7 +689,12 @@ def sqrt(value: Exact, *, proven: bool = True) -> Exact:
     Raises
     ------
     InexactNumberError
-        Below zero, for symbols, or when a huge number would have to be factored.
+        Below zero, or when a huge number would have to be factored.
+
+    Notes
+    -----
+    Symbols stand for positive numbers. The root of an expression in symbols is taken out as far as it is a
+    square of single products, and is otherwise kept as it is; it is meant for printing and evaluating.
 
     Examples
     --------
@@ -687,8 +702,7 @@ def sqrt(value: Exact, *, proven: bool = True) -> Exact:
     True
     """
     if value.symbols:
-        message = "the root of a symbol is not supported"
-        raise InexactNumberError(message)
+        return _symbolic_root(value)
     if value.sign() < 0:
         message = "the root of a negative number"
         raise InexactNumberError(message)
@@ -697,6 +711,31 @@ def sqrt(value: Exact, *, proven: bool = True) -> Exact:
     else:
         root = _root_in(value.tower, value)[1]
     return Exact(root.terms, root.tower, rounded=value.rounded)
+
+
+def _symbolic_root(value: Exact) -> Exact:
+    """Return sqrt(p / q) as s/q sqrt(k), where p q = s^2 k and s is a product of symbols (which are positive)."""
+    if set(value.terms) != {UNIT_KEY}:
+        return Exact({(1, 1 << len(value.tower)): QQ(1)}, (*value.tower, value), rounded=value.rounded)
+    fraction = value.terms[UNIT_KEY]
+    below = fraction.denom
+    content, factors = (fraction.numer * below).sqf_list()
+    if content < 0:
+        message = "the root of a negative number"
+        raise InexactNumberError(message)
+    field = fraction.field
+    outside, inside = field.one, field.one
+    for monic, power in factors:
+        cleared, factor = monic.clear_denoms()
+        content = content / cleared**power
+        single = len(factor.terms()) == 1
+        outside *= field(factor) ** (power // 2) if single else field.one
+        inside *= field(factor) ** (power % 2 if single else power)
+    root = _rational_root(Fraction(int(content.numerator), int(content.denominator)), proven=True)
+    result = root * Exact({UNIT_KEY: plain(outside / field(below))}, rounded=value.rounded)
+    if inside == field.one:
+        return result
+    return result * Exact({(1, 1): QQ(1)}, (Exact({UNIT_KEY: inside}),))
 
 
 # --- the way out ------------------------------------------------------------------------------------------

@@ -17,7 +17,7 @@ from typing import Any
 from sympy.polys.fields import FracElement
 
 from trusscalc.errors import InexactNumberError
-from trusscalc.exact import ONE, ZERO, Exact, approximate, exact, rational, sqrt, symbol
+from trusscalc.exact import ONE, UNIT_KEY, ZERO, Exact, approximate, exact, rational, sqrt, symbol
 
 LONGEST_TEXT = 1000
 DEEPEST_NESTING = 20
@@ -370,6 +370,10 @@ def to_text(value: Exact) -> str:
     >>> to_text(parse("-20*sqrt(5)/2")), to_text(parse("sqrt(3)/2 + 1"))
     ('-10*sqrt(5)', '1 + sqrt(3)/2')
     """
+    if len(value.terms) == 1 and UNIT_KEY in value.terms and isinstance(value.terms[UNIT_KEY], FracElement):
+        coefficient = value.terms[UNIT_KEY]
+        if coefficient.denom == 1:  # a sum of its own needs no parentheses round it
+            return _polynomial_text(coefficient.numer)
     pieces = [_term_text(key, coefficient, value.tower) for key, coefficient in ordered_terms(value)]
     if not pieces:
         return "0"

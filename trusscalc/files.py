@@ -136,9 +136,9 @@ def reads(text: str, source: str = "") -> TrussFile:
     _check_counts(tables, problems)
     if problems and any("too many" in problem for problem in problems):
         raise faulty(problems, text, source)
-    truss = _truss(data, tables, problems)
-    problems = [_about_symbols(problem, tables["symbols"]) for problem in problems]
-    cases = _cases(tables["cases"], _symbols(tables["symbols"], problems), problems)
+    symbols = _symbols(tables["symbols"], problems)
+    truss = _truss(data, tables, symbols, problems)
+    cases = _cases(tables["cases"], symbols, problems)
     combinations = _combinations(tables["combinations"], problems)
     project = _project(tables["project"], problems)
     problems += case_faults(list(tables["joints"]), cases)
@@ -196,7 +196,9 @@ def _check_counts(tables: dict[str, dict[str, Any]], problems: list[str]) -> Non
     ]
 
 
-def _truss(data: dict[str, Any], tables: dict[str, dict[str, Any]], problems: list[str]) -> Truss | None:
+def _truss(
+    data: dict[str, Any], tables: dict[str, dict[str, Any]], symbols: dict[str, Exact], problems: list[str]
+) -> Truss | None:
     title = data.get("title", "")
     if fault := line_fault(title):
         problems.append(f"title: {fault}")
@@ -224,16 +226,11 @@ def _truss(data: dict[str, Any], tables: dict[str, dict[str, Any]], problems: li
             force=units["force"],
             tension_only=behaviour["tension_only"],
             no_uplift=behaviour["no_uplift"],
+            symbols=symbols,
         )
     except InputError as fault:
         problems += fault.problems
     return None
-
-
-def _about_symbols(problem: str, symbols: dict[str, Any]) -> str:
-    if problem.startswith("[joints]") and any(f"{name!r} is not known here" in problem for name in symbols):
-        return f"{problem.partition(' is not known here')[0]} is a symbol, and symbols may stand in loads only"
-    return problem
 
 
 def _symbols(table: dict[str, Any], problems: list[str]) -> dict[str, Exact]:
@@ -354,7 +351,7 @@ def _sections(truss_file: TrussFile) -> list[tuple[str, dict[str, Any]]]:
         ("joints", {joint.name: [joint.x, joint.y] for joint in truss.joints}),
         ("members", groups),
         ("supports", {support.joint: _stated(support) for support in truss.supports}),
-        ("symbols", dict(truss_file.cases[0].symbols) if truss_file.cases else {}),
+        ("symbols", dict(truss.symbols) | (dict(truss_file.cases[0].symbols) if truss_file.cases else {})),
         *(
             (f"cases.{_key(case.name)}", {load.joint: [load.fx, load.fy] for load in case.loads})
             for case in truss_file.cases

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from trusscalc.errors import InexactNumberError, InputError, UnknownNameError
 from trusscalc.exact import ZERO, Exact
 from trusscalc.exacttext import number
-from trusscalc.truss import LONGEST_NAME, Truss, did_you_mean
+from trusscalc.truss import Truss, did_you_mean, symbol_values
 
 PLANE = 2
 
@@ -70,7 +70,7 @@ class LoadCase:
         {'C': (0.0, -12.0)}
         """
         problems: list[str] = []
-        values = _symbol_values(symbols, problems)
+        values = symbol_values(symbols, problems)
         if isinstance(loads, Mapping):
             read = [_joint_load(name, joint, pair, values, problems) for joint, pair in loads.items()]
         else:
@@ -185,25 +185,6 @@ def _summed(loads: Iterable[JointLoad]) -> list[JointLoad]:
         before = totals.get(load.joint)
         totals[load.joint] = JointLoad(load.joint, before.fx + load.fx, before.fy + load.fy) if before else load
     return list(totals.values())
-
-
-def _symbol_values(
-    symbols: Mapping[str, object] | Iterable[tuple[str, Exact]], problems: list[str]
-) -> dict[str, Exact]:
-    values: dict[str, Exact] = {}
-    for name, value in symbols.items() if isinstance(symbols, Mapping) else symbols:
-        if (
-            len(name) > LONGEST_NAME
-            or not name.isidentifier()
-            or name in ("sqrt", "sin", "cos", "tan", "pi", "X", "Y", "Z")
-        ):
-            problems.append(f"[symbols] {name[:40]!r}: a symbol is a word of letters and digits that is not taken")
-            continue
-        try:
-            values[name] = number(value)
-        except InexactNumberError as problem:
-            problems.append(f"[symbols] {name}: {problem}")
-    return values
 
 
 def _joint_load(

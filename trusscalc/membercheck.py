@@ -12,9 +12,10 @@ from dataclasses import dataclass, field
 from typing import Literal
 
 from trusscalc import stiffness
-from trusscalc.errors import InexactNumberError, InputError
+from trusscalc.errors import InexactNumberError, InputError, UnstableTrussError
 from trusscalc.exact import ZERO, Exact, symbol
 from trusscalc.loads import LoadCase
+from trusscalc.samples import at_sample, samples, sign_depends, vanishing
 from trusscalc.statics import matrix
 from trusscalc.statics.cuts import Structure, structure_of
 from trusscalc.statics.owncuts import OwnCut
@@ -40,6 +41,16 @@ class Coefficient:
 
     symbols: str
     exact: Exact
+    decimal: float
+    stiffness: float
+    agrees: bool
+
+
+@dataclass(frozen=True, slots=True)
+class Sample:
+    """A formula in symbolic dimensions beside the numeric route, at one set of the symbols' values."""
+
+    values: tuple[tuple[str, Exact], ...]
     decimal: float
     stiffness: float
     agrees: bool
@@ -72,6 +83,8 @@ class ForceCheck:
         All steps the value rests on, the solving one last.
     coefficients : tuple of Coefficient
         For loads with symbols: the formula compared coefficient by coefficient.
+    samples : tuple of Sample
+        For dimensions with symbols: the formula compared at several sets of values, the stated ones first.
     """
 
     name: str
@@ -84,6 +97,12 @@ class ForceCheck:
     reason: str
     steps: tuple[int, ...]
     coefficients: tuple[Coefficient, ...] = ()
+    samples: tuple[Sample, ...] = ()
+
+    @property
+    def sign_depends(self) -> bool:
+        """Whether tension or compression depends on the values of the symbols (which are positive)."""
+        return self.exact is not None and sign_depends(self.exact)
 
     @property
     def exactness(self) -> str:
@@ -155,6 +174,8 @@ class MemberCheck:
         Members whose force is exactly zero, each with the reason.
     redundancy : Redundancy or None
         For a statically indeterminate truss: the degree, and who shares it.
+    unstable_where : tuple of str
+        For symbolic dimensions: expressions whose vanishing makes the truss a mechanism.
     """
 
     truss: Truss
@@ -171,6 +192,12 @@ class MemberCheck:
     agreed: bool
     zero_members: Mapping[str, str] = field(default_factory=dict)
     redundancy: Redundancy | None = None
+    unstable_where: tuple[str, ...] = ()
+
+    def value(self, amount: Exact) -> Exact:
+        """Return an amount with all symbols, of dimensions and of loads, replaced by their stated values."""
+        values = dict(self.truss.symbols) | dict(self.case.symbols)
+        return amount.substitute(values) if values else amount
 
 
 def check_members(
@@ -221,13 +248,19 @@ def check_members(
         raise InputError(faults)
     own = {truss.member(name).name: cut.kept for name, cut in (cuts or {}).items()}
     wanted = tuple(dict.fromkeys((*_wanted(truss, members, own), *own)))
+    if truss.symbols:
+        faults = _different_values(truss, case)
+        if faults:
+            raise InputError(faults)
+        matrix.solve(*at_sample(truss, case, samples(truss, case)[0]))  # stable at the stated values
     equilibrium = matrix.solve(truss, case)
     structure = structure_of(truss, case)
     decided = [name for name in wanted if name in equilibrium.tensions]
     steps, tensions = _derivation(structure, equilibrium, decided, case, own, prefer)
     numeric = stiffness.solve(truss, case)
     values = {**numeric.reactions, **stiffness.member_forces(truss, case)}
-    judge = _Judge(case, structure, equilibrium, steps, tensions, values, numeric.condition, _unit_runs(truss, case))
+    runs = _Runs(values, numeric.condition, _unit_runs(truss, case), _sample_runs(truss, case))
+    judge = _Judge(case, structure, equilibrium, steps, tensions, runs)
     checked = {name: judge.verdict(name) for name in wanted}
     reactions = {link.name: judge.verdict(link.name) for link in truss.links}
     residuals = _residuals(equilibrium, case, tensions)
@@ -249,12 +282,49 @@ def check_members(
         agreed=agreed,
         zero_members=zero_force_members(structure, equilibrium),
         redundancy=None if determinate else _redundancy(equilibrium),
+        unstable_where=vanishing(equilibrium.tensions.values()) if truss.symbols else (),
     )
+
+
+def _different_values(truss: Truss, case: LoadCase) -> list[str]:
+    stated = dict(case.symbols)
+    return [
+        f"[symbols] {name}: truss and load case give it different values"
+        for name, value in truss.symbols
+        if name in stated and stated[name] != value
+    ]
+
+
+@dataclass(frozen=True, slots=True)
+class _Runs:
+    """What the numeric route gave: at the stated values, under unit values of load symbols, at other samples."""
+
+    forces: Mapping[str, float]
+    condition: float
+    units: Mapping[Monomial, Mapping[str, float]]
+    samples: tuple[tuple[Mapping[str, Exact], Mapping[str, float], float], ...]
+
+
+def _sample_runs(truss: Truss, case: LoadCase) -> tuple[tuple[Mapping[str, Exact], Mapping[str, float], float], ...]:
+    """Return (values, forces, condition) for every sample of symbolic dimensions at which the truss is stable."""
+    if not truss.symbols:
+        return ()
+    runs = []
+    for values in samples(truss, case):
+        try:
+            numbers, loads = at_sample(truss, case, values)
+            matrix.solve(numbers, loads)
+        except (InputError, UnstableTrussError):
+            continue  # a sample that happens to be critical; the stated values have been refused before this
+        found = stiffness.solve(numbers, loads)
+        forces = {**found.reactions, **stiffness.member_forces(numbers, loads)}
+        runs.append((values, forces, found.condition))
+    return tuple(runs)
 
 
 def _unit_runs(truss: Truss, case: LoadCase) -> dict[Monomial, dict[str, float]]:
     """Return the numeric route's forces for each product of symbols in the loads, {} without symbols."""
-    if not any(load.fx.symbols or load.fy.symbols for load in case.loads):
+    if truss.symbols or not any(load.fx.symbols or load.fy.symbols for load in case.loads):
         return {}
     try:
         parts = numeric_parts(case)
@@ -360,20 +430,18 @@ class _Judge:
         equilibrium: matrix.Equilibrium,
         steps: tuple[Step, ...],
         tensions: Mapping[str, Exact],
-        numeric: Mapping[str, float],
-        condition: float,
-        parts: Mapping[Monomial, Mapping[str, float]],
+        runs: _Runs,
     ) -> None:
-        self.parts = parts
+        self.runs = runs
+        self.symbol_values = {**structure.values, **dict(case.symbols)}
         self.case = case
         self.structure = structure
         self.equilibrium = equilibrium
-        self.numeric = numeric
+        self.numeric = runs.forces
         self.by_hand = {name: result for step in steps for name, result in step.results.items()}
         self.tensions = tensions
         self.rests_on = _foundations(steps)
-        bound = 10 * sys.float_info.epsilon * condition
-        self.tolerance = max(TOLERANCE, bound) if math.isfinite(bound) else math.inf
+        self.tolerance = _tolerance(runs.condition)
         loads = [abs(part) for pair in case.as_floats().values() for part in pair]
         self.largest = max([self._largest_confirmed(), *loads])
 
@@ -385,8 +453,8 @@ class _Judge:
         tensions = self.equilibrium.tensions
         finite = {name: abs(force) for name, force in self.numeric.items() if name in tensions and math.isfinite(force)}
         for name in sorted(finite, key=finite.__getitem__, reverse=True):
-            length = math.sqrt(float(self.structure.bars[name].length_squared))
-            if finite[name] <= 2 * length * abs(float(self.case.value(tensions[name]))):
+            length = math.sqrt(float(self._at_values(self.structure.bars[name].length_squared)))
+            if finite[name] <= 2 * length * abs(float(self._at_values(tensions[name]))):
                 return finite[name]
         return 0.0
 
@@ -397,7 +465,7 @@ class _Judge:
             reason = self._undecided(name)
             return ForceCheck(name, None, None, None, numeric, None, "undecided", reason, steps)
         value = self.by_hand[name]
-        at_values = self.case.value(value)
+        at_values = self._at_values(value)
         decimal = float(at_values)
         sense: Sense | None = None
         if not self.structure.bars[name].is_link:
@@ -407,23 +475,38 @@ class _Judge:
             return ForceCheck(name, value, decimal, sense, None, None, "undecided", reason, steps)
         difference = decimal - numeric
         coefficients = self._coefficients(name, value)
+        tried = self._samples(name, value)
         verdict, reason = self._judgement(name, difference)
+        if verdict == "agrees" and not all(sample.agrees for sample in tried):
+            verdict, reason = "differs", "the routes differ at another sample of the symbols"
         wrong = [item.symbols for item in coefficients if not item.agrees]
         if verdict == "agrees" and wrong:
             verdict, reason = "differs", f"the routes differ in the coefficient of {', '.join(wrong)}"
-        return ForceCheck(name, value, decimal, sense, numeric, difference, verdict, reason, steps, coefficients)
+        return ForceCheck(name, value, decimal, sense, numeric, difference, verdict, reason, steps, coefficients, tried)
+
+    def _at_values(self, amount: Exact) -> Exact:
+        return amount.substitute(self.symbol_values) if self.symbol_values else amount
+
+    def _samples(self, name: str, value: Exact) -> tuple[Sample, ...]:
+        found = []
+        for values, forces, condition in self.runs.samples:
+            decimal = float(value.substitute(values))
+            largest = max((abs(force) for force in forces.values() if math.isfinite(force)), default=0.0)
+            agrees = abs(decimal - forces[name]) <= _tolerance(condition) * largest
+            found.append(Sample(tuple(values.items()), decimal, forces[name], agrees))
+        return tuple(found)
 
     def _coefficients(self, name: str, value: Exact) -> tuple[Coefficient, ...]:
-        if not self.parts:
+        if not self.runs.units:
             return ()
         exact = by_monomial(value)
         found = []
-        for monomial, numeric in self.parts.items():
+        for monomial, numeric in self.runs.units.items():
             part = exact.get(monomial, ZERO)
             largest = max((abs(force) for force in numeric.values() if math.isfinite(force)), default=0.0)
             agrees = abs(float(part) - numeric[name]) <= self.tolerance * largest
             found.append(Coefficient(monomial_text(monomial), part, float(part), numeric[name], agrees))
-        stray = [monomial for monomial in exact if monomial not in self.parts and exact[monomial]]
+        stray = [monomial for monomial in exact if monomial not in self.runs.units and exact[monomial]]
         found += [Coefficient(monomial_text(m), exact[m], float(exact[m]), 0.0, agrees=False) for m in stray]
         return tuple(found)
 
@@ -449,6 +532,12 @@ class _Judge:
         if abs(difference) <= self.tolerance * self.largest:
             return "agrees", ""
         return "differs", "the two routes differ by more than the tolerance"
+
+
+def _tolerance(condition: float) -> float:
+    """Return the share of the largest force that the numeric route can be trusted to."""
+    bound = 10 * sys.float_info.epsilon * condition
+    return max(TOLERANCE, bound) if math.isfinite(bound) else math.inf
 
 
 def _foundations(steps: tuple[Step, ...]) -> dict[str, tuple[int, ...]]:

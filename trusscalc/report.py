@@ -44,6 +44,8 @@ def check_data(check: MemberCheck) -> dict[str, Any]:
     }
     if check.zero_members:
         data["zero_members"] = dict(check.zero_members)
+    if check.unstable_where:
+        data["unstable_where"] = list(check.unstable_where)
     if check.redundancy is not None:
         data["redundancy"] = {
             "degree": check.redundancy.degree,
@@ -73,6 +75,17 @@ def _reaction_data(item: ForceCheck) -> dict[str, Any]:
             }
             for part in item.coefficients
         }
+    if item.samples:
+        data["samples"] = [
+            {
+                "values": {name: to_text(value) for name, value in sample.values},
+                "decimal": sample.decimal,
+                "stiffness": sample.stiffness,
+                "agrees": sample.agrees,
+            }
+            for sample in item.samples
+        ]
+        data["sign_depends"] = item.sign_depends
     if item.reason:
         data["reason"] = item.reason
     return data
@@ -180,6 +193,6 @@ def _verdict_row(check: MemberCheck, item: ForceCheck, places: int) -> list[str]
         return [item.name, "", "", "", "", item.verdict]
     text = to_text(item.exact)
     exact = text if len(text) <= WIDEST_EXACT else "(long)"
-    decimal = str(rounded(check.case.value(item.exact), places))
+    decimal = str(rounded(check.value(item.exact), places))
     numeric = "" if item.stiffness is None else f"{item.stiffness:.{places}f}"
     return [item.name, exact, decimal, item.sense or "", numeric, item.verdict]

@@ -9,7 +9,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Callable, Sequence
-from typing import Final
+from typing import Any, Final
 
 from trusscalc.errors import InexactNumberError, InputError, UnknownNameError
 from trusscalc.exact import Exact, rational
@@ -593,5 +593,5 @@ def _line(places: dict[str, Exact | int]) -> dict[str, Point]:
     return {name: (number(x), NOTHING) for name, x in places.items()}
 
 
-def _made(joints: dict[str, Point], groups: Groups, supports: dict[str, object], stated: dict[str, str]) -> Truss:
+def _made(joints: dict[str, Point], groups: Groups, supports: dict[str, object], stated: dict[str, Any]) -> Truss:
     return Truss(joints, {group: names for group, names in groups.items() if names}, supports, **stated)

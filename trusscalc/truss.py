@@ -8,10 +8,11 @@ from __future__ import annotations
 
 import difflib
 import math
+import re
 import unicodedata
 import warnings
 from bisect import bisect_left, bisect_right
-from collections.abc import Callable, Iterable, Mapping, Sequence
+from collections.abc import Callable, Collection, Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from operator import itemgetter
 from typing import Any, Final, NamedTuple
@@ -27,6 +28,8 @@ MOST_SUGGESTIONS: Final = 50
 """Looking for the nearest of more names, or more often, takes longer than it helps."""
 MEMBER_ENDS: Final = 2
 PLANE: Final = 2
+RESERVED_SYMBOL: Final = re.compile(r"sqrt|sin|cos|tan|pi|[XYZ]|X[0-9]+")
+"""Functions, and the letters of carried forces."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -106,6 +109,9 @@ class Truss:
         Members whose compression is to be flagged.
     no_uplift : tuple of str
         Support joints whose downward pull is to be flagged.
+    symbols : tuple of (str, Exact)
+        Symbols in the coordinates, such as a panel a or a height h, and the values they are drawn and
+        cross-checked at. They stand for positive numbers.
     """
 
     joints: tuple[Joint, ...]
@@ -116,6 +122,7 @@ class Truss:
     force: str
     tension_only: tuple[str, ...]
     no_uplift: tuple[str, ...]
+    symbols: tuple[tuple[str, Exact], ...]
 
     def __init__(
         self,
@@ -128,6 +135,7 @@ class Truss:
         force: str = "kN",
         tension_only: Iterable[str] = (),
         no_uplift: Iterable[str] = (),
+        symbols: Mapping[str, object] | Iterable[tuple[str, Exact]] = (),
     ) -> None:
         """State a truss.
 
@@ -141,6 +149,10 @@ class Truss:
         supports : mapping of joint name to support
             ``"pin"``, ``"roller"`` (reaction vertical), ``{"reaction": (x, y)}`` for a roller whose reaction
             acts along (x, y), or a list of such mappings for several links.
+        title, length, force, tension_only, no_uplift
+            See the class.
+        symbols : mapping of name to value
+            Symbols that may stand in coordinates, as ``"2*a"``; each with a positive value.
 
         Raises
         ------
@@ -160,9 +172,11 @@ class Truss:
         ['A.x', 'A.y', 'B.y']
         """
         problems: list[str] = []
-        read_joints = _joints(joints, problems)
+        values = symbol_values(symbols, problems)
+        read_joints = _joints(joints, problems, values)
         read_members = _members(members, joints, read_joints, problems)
-        read_supports = _supports(supports, joints, problems)
+        read_supports = _supports(supports, joints, problems, values)
+        used = _symbols_in(read_joints, read_supports, values, problems)
         for key, unit, known in (("length", length, LENGTHS), ("force", force, FORCES)):
             if unit not in known:
                 problems.append(f"[units] {key}: {unknown_unit(unit, known)}")
@@ -170,12 +184,14 @@ class Truss:
         no_uplift = _names("no_uplift", no_uplift, problems)
         _attachment(read_joints, read_members, problems)
         _behaviour(tension_only, no_uplift, read_members, read_supports, problems)
-        run_through = _run_through(read_joints, read_members, problems) if not problems else []
+        run_through = _run_through(read_joints, read_members, problems) if not problems and not used else []
         if problems:
             raise InputError(problems)
-        values = (read_joints, read_members, read_supports, title, length, force, tension_only, no_uplift)
-        for name, value in zip(Truss.__slots__, values, strict=True):
+        fields = (read_joints, read_members, read_supports, title, length, force, tension_only, no_uplift, used)
+        for name, value in zip(Truss.__slots__, fields, strict=True):
             object.__setattr__(self, name, value)
+        if used:
+            self.at_values()  # must be well formed at the stated values too; warns of members through joints
         for text in run_through:
             warnings.warn(text, TrusscalcWarning, stacklevel=2)
 
@@ -203,13 +219,80 @@ class Truss:
 
     def as_floats(self) -> FloatTruss:
         """Return the truss as plain floats for the numeric route, each rounded once from its exact value."""
-        joints = _from_near_origin(self.joints)
+        at_values = self.at_values()
+        joints = _from_near_origin(at_values.joints)
         links = []
-        for link in self.links:
+        for link in at_values.links:
             dx, dy = float(link.dx), float(link.dy)
             size = math.hypot(dx, dy)
             links.append((link.name, link.joint, dx / size, dy / size))
         return FloatTruss(joints, tuple((m.name, m.start, m.end) for m in self.members), tuple(links))
+
+    def value(self, amount: Exact) -> Exact:
+        """Return an amount with the truss's symbols replaced by their values."""
+        return amount.substitute(dict(self.symbols)) if self.symbols else amount
+
+    def at_values(self, values: Mapping[str, Exact] | None = None) -> Truss:
+        """Return the truss with its symbols replaced by their values, or by others; without symbols, itself.
+
+        Raises
+        ------
+        InputError
+            When it is not well formed at these values, joints falling together, say.
+        """
+        if not self.symbols:
+            return self
+        at = dict(self.symbols) | dict(values or {})
+        groups: dict[str, list[str]] = {}
+        for member in self.members:
+            groups.setdefault(member.group, []).append(member.name)
+        supports: dict[str, Any] = {}
+        for support in self.supports:
+            links = [{"reaction": (link.dx.substitute(at), link.dy.substitute(at))} for link in support.links]
+            single = len(links) == 1 and support.links[0].name.endswith(".r")
+            supports[support.joint] = support.kind if support.kind != "links" else links[0] if single else links
+        try:
+            return Truss(
+                {joint.name: (joint.x.substitute(at), joint.y.substitute(at)) for joint in self.joints},
+                groups,
+                supports,
+                title=self.title,
+                length=self.length,
+                force=self.force,
+                tension_only=self.tension_only,
+                no_uplift=self.no_uplift,
+            )
+        except InputError as error:
+            raise InputError([f"at the values of [symbols]: {problem}" for problem in error.problems]) from None
+
+
+def symbol_values(symbols: Mapping[str, object] | Iterable[tuple[str, Exact]], problems: list[str]) -> dict[str, Exact]:
+    """Return symbols with their values as exact numbers; what is wrong with them is added to problems."""
+    values: dict[str, Exact] = {}
+    for name, value in symbols.items() if isinstance(symbols, Mapping) else symbols:
+        if len(name) > LONGEST_NAME or not name.isidentifier() or RESERVED_SYMBOL.fullmatch(name):
+            problems.append(f"[symbols] {name[:40]!r}: a symbol is a word of letters and digits that is not taken")
+            continue
+        try:
+            values[name] = number(value)
+        except InexactNumberError as problem:
+            problems.append(f"[symbols] {name}: {problem}")
+    return values
+
+
+def _symbols_in(
+    joints: tuple[Joint, ...], supports: tuple[Support, ...], values: Mapping[str, Exact], problems: list[str]
+) -> tuple[tuple[str, Exact], ...]:
+    """Return the symbols that stand in coordinates or directions, with their values, which must be positive."""
+    numbers = [part for joint in joints for part in (joint.x, joint.y)]
+    numbers += [part for support in supports for link in support.links for part in (link.dx, link.dy)]
+    found = {name for part in numbers for name in part.symbols}
+    problems += [
+        f"[symbols] {name}: stands for a length and must be positive"
+        for name in sorted(found)
+        if values[name].sign() <= 0
+    ]
+    return tuple((name, value) for name, value in values.items() if name in found)
 
 
 def _from_near_origin(joints: tuple[Joint, ...]) -> dict[str, tuple[float, float]]:
@@ -258,7 +341,7 @@ def name_fault(name: object) -> str:
     return ""
 
 
-def point(pair: object, where: str, problems: list[str]) -> tuple[Exact, Exact] | None:
+def point(pair: object, where: str, problems: list[str], symbols: Collection[str] = ()) -> tuple[Exact, Exact] | None:
     """Return a pair of exact numbers, or None after adding what is wrong to problems."""
     if isinstance(pair, str) or not isinstance(pair, Sequence) or len(pair) != PLANE:
         problems.append(f"{where}: two numbers are needed, such as [0, 2.5]")
@@ -266,13 +349,13 @@ def point(pair: object, where: str, problems: list[str]) -> tuple[Exact, Exact] 
     values = []
     for axis, value in zip("xy", pair, strict=True):
         try:
-            values.append(number(value))
+            values.append(number(value, symbols))
         except InexactNumberError as problem:
             problems.append(f"{where} {axis}: {problem}")
     return (values[0], values[1]) if len(values) == PLANE else None
 
 
-def _joints(joints: Mapping[str, Sequence[object]], problems: list[str]) -> tuple[Joint, ...]:
+def _joints(joints: Mapping[str, Sequence[object]], problems: list[str], symbols: Collection[str]) -> tuple[Joint, ...]:
     if not joints:
         problems.append("[joints]: a truss needs joints")
     found: list[Joint] = []
@@ -286,7 +369,7 @@ def _joints(joints: Mapping[str, Sequence[object]], problems: list[str]) -> tupl
         same = spelled.setdefault(unicodedata.normalize("NFC", name), name)
         if same != name:
             problems.append(f"[joints] {name!r}: reads the same as another joint; give it another name")
-        place = point(pair, f"[joints] {name}", problems)
+        place = point(pair, f"[joints] {name}", problems, symbols)
         if place is None:
             continue
         other = places.setdefault(place, name)
@@ -340,7 +423,10 @@ def _members(
 
 
 def _supports(
-    supports: Mapping[str, Any], joints: Mapping[str, Sequence[object]], problems: list[str]
+    supports: Mapping[str, Any],
+    joints: Mapping[str, Sequence[object]],
+    problems: list[str],
+    symbols: Collection[str],
 ) -> tuple[Support, ...]:
     found = []
     for joint, stated in supports.items():
@@ -348,7 +434,7 @@ def _supports(
             near = did_you_mean(str(joint), joints, told=len(problems))
             problems.append(f"[supports] {str(joint)[:60]}: there is no such joint{near}")
             continue
-        support = _support(joint, stated, problems)
+        support = _support(joint, stated, problems, symbols)
         if support is not None:
             found.append(support)
     if not supports:
@@ -356,7 +442,7 @@ def _supports(
     return tuple(found)
 
 
-def _support(joint: str, stated: Any, problems: list[str]) -> Support | None:
+def _support(joint: str, stated: Any, problems: list[str], symbols: Collection[str]) -> Support | None:
     where = f"[supports] {joint}"
     if stated == "pin":
         return Support(joint, "pin", (Link(f"{joint}.x", joint, ONE, ZERO), Link(f"{joint}.y", joint, ZERO, ONE)))
@@ -374,7 +460,7 @@ def _support(joint: str, stated: Any, problems: list[str]) -> Support | None:
             text = str(item)[:60]
             problems.append(f'{where}: {text!r} is no support; write "pin", "roller" or {{ reaction = [x, y] }}')
             continue
-        direction = point(item["reaction"], f"{where} reaction", problems)
+        direction = point(item["reaction"], f"{where} reaction", problems, symbols)
         if direction is None:
             continue
         if not direction[0] and not direction[1]:

@@ -41,7 +41,7 @@ class TrussFile:
     project: Project = field(default_factory=Project)
 
     def __post_init__(self) -> None:
-        symbols: dict[str, Exact] = {}
+        symbols: dict[str, Exact] = dict(self.truss.symbols)
         problems = []
         for case in self.cases:
             for name, value in case.symbols:

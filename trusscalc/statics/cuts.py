@@ -8,7 +8,7 @@ and whole-structure equations are then one thing.
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Literal
 
 from trusscalc.errors import InputError
@@ -34,12 +34,19 @@ class Structure:
         Names of the bars at each joint.
     loads : dict of str to (Exact, Exact)
         Load on each loaded joint; zero loads left out.
+    values : dict of str to Exact
+        Values of the symbols in coordinates, for order and nearness only.
     """
 
     joints: Mapping[str, Joint]
     bars: Mapping[str, Bar]
     bars_at: Mapping[str, tuple[str, ...]]
     loads: Mapping[str, tuple[Exact, Exact]]
+    values: Mapping[str, Exact] = field(default_factory=dict)
+
+    def near(self, amount: Exact) -> float:
+        """Return an amount as a float at the symbols' values, for order and nearness only."""
+        return float(amount.substitute(self.values) if self.values else amount)
 
 
 def structure_of(truss: Truss, case: LoadCase) -> Structure:
@@ -56,6 +63,7 @@ def structure_of(truss: Truss, case: LoadCase) -> Structure:
         {bar.name: bar for bar in bars},
         {name: tuple(names) for name, names in at.items()},
         loads,
+        dict(truss.symbols),
     )
 
 
@@ -170,9 +178,21 @@ def about_joint(structure: Structure, name: str) -> About:
 def across(bar: Bar) -> About:
     """Return the force sum across a bar, in which it and its parallels drop out (to the left of the bar, or up)."""
     x, y = -bar.dy, bar.dx
-    if y.sign() < 0 or (not y and x.sign() < 0):
+    if points_backwards(y) or (not y and points_backwards(x)):
         x, y = -x, -y
     return About("force", x, y, along=bar.name)
+
+
+def points_backwards(amount: Exact) -> bool:
+    """Return whether an amount is negative; with symbols, whether it is written with a minus sign."""
+    if amount.symbols:
+        return all(_leads_with_minus(coefficient) for coefficient in amount.terms.values())
+    return amount.sign() < 0
+
+
+def _leads_with_minus(coefficient: object) -> bool:
+    leading = getattr(getattr(coefficient, "numer", None), "LC", coefficient)
+    return bool(leading < 0)  # type: ignore[operator]
 
 
 def bar_lever(structure: Structure, bar: Bar, kept: frozenset[str] | set[str], about: About) -> Exact:
@@ -240,5 +260,6 @@ __all__ = [
     "complement",
     "cut_of",
     "meeting_point",
+    "points_backwards",
     "structure_of",
 ]

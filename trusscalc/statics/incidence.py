@@ -11,6 +11,7 @@ Order and nearness (which cut is left of which) use floats; no number of the der
 
 from __future__ import annotations
 
+import hashlib
 import math
 from collections.abc import Iterable
 from dataclasses import dataclass, field
@@ -99,14 +100,31 @@ class Residues:
     def _coefficient(self, coefficient: Any) -> int:
         p = self.prime
         if isinstance(coefficient, FracElement):
-            message = "symbols in coordinates have no residue"
-            raise TypeError(message)
+            below = self._polynomial(coefficient.denom)
+            return self._polynomial(coefficient.numer) * pow(below, -1, p) % p
         below = int(coefficient.denominator)
         return int(coefficient.numerator) * (pow(below, -1, p) if below != 1 else 1) % p
+
+    def _polynomial(self, polynomial: Any) -> int:
+        """Evaluate at a residue for each symbol: like the symbol, it satisfies no equation but by a rare chance."""
+        p = self.prime
+        values = [_symbol_residue(str(x)) for x in polynomial.ring.symbols]
+        total = 0
+        for powers, factor in polynomial.terms():
+            term = self._coefficient(factor)
+            for value, power in zip(values, powers, strict=True):
+                term = term * pow(value, power, p) % p
+            total += term
+        return total % p
 
     def of(self, number: Exact) -> int:
         """Return the image of a number made of the roots given at the start."""
         return self._sum(number, self.nested.get(number.tower, []))
+
+
+def _symbol_residue(name: str) -> int:
+    """Return a residue that depends on the name alone, so that every run decides the same."""
+    return int.from_bytes(hashlib.sha256(name.encode()).digest()[:7], "big")
 
 
 def _next_prime_below(start: int) -> int:
@@ -227,7 +245,7 @@ def layout_of(structure: Structure, loads: dict[str, tuple[float, float]]) -> La
     numbers += [part for bar in structure.bars.values() if bar.is_link for part in (bar.dx, bar.dy)]
     residues = Residues(numbers)
     p = residues.prime
-    floats = {name: (float(joint.x), float(joint.y)) for name, joint in structure.joints.items()}
+    floats = {name: (structure.near(joint.x), structure.near(joint.y)) for name, joint in structure.joints.items()}
     joints = sorted(structure.joints, key=floats.__getitem__)
     index = {name: place for place, name in enumerate(joints)}
     images = {name: (residues.of(joint.x), residues.of(joint.y)) for name, joint in structure.joints.items()}
@@ -235,7 +253,7 @@ def layout_of(structure: Structure, loads: dict[str, tuple[float, float]]) -> La
     def direction(name: str) -> tuple[float, float]:
         bar = structure.bars[name]
         if bar.is_link:
-            return float(bar.dx), float(bar.dy)
+            return structure.near(bar.dx), structure.near(bar.dy)
         (ax, ay), (bx, by) = floats[bar.start], floats[bar.end]
         return bx - ax, by - ay
 

@@ -221,7 +221,7 @@ def joint_residuals(
 
 def _joint_order(truss: Truss) -> dict[str, int]:
     """Return each joint's place along the truss's longer direction, which keeps the elimination narrow."""
-    places = {joint.name: (float(joint.x), float(joint.y)) for joint in truss.joints}
+    places = {joint.name: (float(joint.x), float(joint.y)) for joint in truss.at_values().joints}
     spans = [max(p[axis] for p in places.values()) - min(p[axis] for p in places.values()) for axis in (0, 1)]
     first = 0 if spans[0] >= spans[1] else 1
     ordered = sorted(places, key=lambda name: (places[name][first], places[name][1 - first]))
@@ -362,7 +362,7 @@ def _spread_scales(rows: list[dict[int, Exact]], width: int) -> tuple[dict[int, 
 
 def _root_part(value: Exact) -> Exact:
     """Return the root of a one-term number without its rational factor (other numbers as they are)."""
-    if len(value.terms) == 1:
+    if len(value.terms) == 1 and not value.symbols:
         return Exact({next(iter(value.terms)): ONE.terms[UNIT_KEY]}, value.tower)
     return value
 

@@ -90,7 +90,7 @@ def _side(structure: Structure, cut: frozenset[str], keep: tuple[str, ...]) -> t
 
 
 def _left_then_low(structure: Structure, name: str) -> tuple[float, float]:
-    return float(structure.joints[name].x), float(structure.joints[name].y)
+    return structure.near(structure.joints[name].x), structure.near(structure.joints[name].y)
 
 
 def _both_in(structure: Structure, name: str, joints: set[str]) -> bool:

@@ -24,10 +24,27 @@ from trusscalc.statics.cuts import (
     bar_lever,
     complement,
     cut_of,
+    points_backwards,
 )
 
 TermKind = Literal["reaction", "load", "member"]
 StepKind = Literal["joint", "section", "whole", "pair", "close"]
+
+
+__all__ = [
+    "Equation",
+    "Step",
+    "StepError",
+    "StepKind",
+    "Term",
+    "TermKind",
+    "carried_letter",
+    "points_backwards",
+    "section_letter",
+    "write_close",
+    "write_equation",
+    "write_step",
+]
 
 
 class StepError(TrusscalcError, ArithmeticError):
@@ -203,18 +220,6 @@ def _load_terms(structure: Structure, cut: Cut, about: About, scale: Exact) -> l
                 amount, lever = -amount, -lever  # noqa: PLW2901 - drawn, and written, the way it acts
             found.append(Term("load", name, axis, lever, ONE, amount, scale))
     return found
-
-
-def points_backwards(amount: Exact) -> bool:
-    """Return whether a load acts against its axis; for symbols, whether it is written with a minus sign."""
-    if amount.symbols:
-        return all(_leads_with_minus(coefficient) for coefficient in amount.terms.values())
-    return amount.sign() < 0
-
-
-def _leads_with_minus(coefficient: object) -> bool:
-    leading = getattr(getattr(coefficient, "numer", None), "LC", coefficient)
-    return bool(leading < 0)  # type: ignore[operator]
 
 
 def solved_for(equation: Equation, unknown: str) -> Exact:
