@@ -180,6 +180,7 @@ def _metadata(sheet: Sheet) -> dict[str, Any]:
             "members": list(origin.members),
             "places": origin.places,
             "project": dict(origin.project),
+            "names": dict(origin.names),
             "stated": dict(origin.stated),
             "agreed": origin.agreed,
             "cuts": {name: list(kept) for name, kept in origin.cuts},

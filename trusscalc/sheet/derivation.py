@@ -97,7 +97,7 @@ class Writer:
         )
 
     def _right(self, step: Step) -> str:
-        return "   ".join(self._told(step, name) for name in found_in(step))
+        return ", ".join(self._told(step, name) for name in found_in(step))
 
     def _told(self, step: Step, name: str) -> str:
         if name in step.partial:

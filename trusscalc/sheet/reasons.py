@@ -47,6 +47,9 @@ ONE_OF: Final = {
 """Trade words in the plural and for one of them."""
 
 
+IN_TERMS: Final = "told in terms of what is carried"
+
+
 @dataclass(frozen=True, slots=True)
 class Teller:
     """Tells of steps; holds what all sentences need.
@@ -203,18 +206,22 @@ class Teller:
         sources: dict[str, list[str]] = {}
         for name in step.uses:
             if not self.is_link(name):
-                sources.setdefault(self._source(name, step), []).append(bar(name))
+                sources.setdefault(self._source(name, step), []).append(name)
         if not sources:
             return ""
-        told = [f"{listed(names)} {'are' if len(names) > 1 else 'is'} {source}" for source, names in sources.items()]
+        told = []
+        for source, names in sources.items():
+            steps = ""
+            if source == IN_TERMS:
+                numbers = sorted({self.told_in[name] for name in names})
+                steps = f" (step{'s' if len(numbers) > 1 else ''} {listed(map(str, numbers))})"
+            told.append(f"{listed(map(bar, names))} {'are' if len(names) > 1 else 'is'} {source}{steps}")
         return f" {listed(told)}."
 
     def _source(self, name: str, step: Step) -> str:
         if self.solved_in[name] < step.number:
             return f"known from step {self.solved_in[name]}"
-        if name in self.told_in:
-            return f"told in step {self.told_in[name]} in terms of what is carried"
-        return f"carried as {self.carried[name]}"
+        return IN_TERMS if name in self.told_in else f"carried as {self.carried[name]}"
 
     def _reason_of_several(self, step: Step) -> str:
         told = []
