@@ -246,8 +246,6 @@ class Origin:
         Decimal places printed.
     project : tuple of (str, str)
         The filled fields of the title block.
-    names : tuple of (str, str)
-        Our names and those elsewhere.
     stated : tuple of (str, str)
         Every member force and reaction found, as exact text.
     agreed : bool
@@ -269,7 +267,6 @@ class Origin:
     members: tuple[str, ...]
     places: int
     project: tuple[tuple[str, str], ...]
-    names: tuple[tuple[str, str], ...]
     stated: tuple[tuple[str, str], ...]
     agreed: bool
     program: str

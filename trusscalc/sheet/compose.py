@@ -155,7 +155,6 @@ def _origin(check: MemberCheck, project: Project, text: str, places: int, *, dra
         members=tuple(check.members),
         places=places,
         project=tuple((key, getattr(project, key)) for key in LINES if getattr(project, key)),
-        names=tuple(project.names.items()),
         stated=tuple((name, to_text(value)) for name, value in results.items()),
         agreed=check.agreed,
         program=record.program(),
