@@ -59,7 +59,7 @@ def test_valid_with_distinct_ids_and_a_record() -> None:
     assert (book.nbformat, book.nbformat_minor) == (4, 5)
     assert len({cell.id for cell in book.cells}) == len(book.cells)
     record = book.metadata["trusscalc"]
-    assert record["digest"] == hashlib.sha256(record["truss"].encode()).hexdigest()
+    assert record["input"] == hashlib.sha256(record["truss"].encode()).hexdigest()
     assert reads(record["truss"]).truss.title == "Store roof"
     assert record["agreed"] is True
 

@@ -16,9 +16,9 @@ from trusscalc.render.draw import png, svg
 from trusscalc.render.markdown import Svg, image, markdown
 from trusscalc.render.text import blocks_text, step_text
 from trusscalc.sheet.blocks import Block, Derivation, Heading, Listing, Origin, Sheet
+from trusscalc.sheet.digest import record_of
 from trusscalc.sheet.marks import Figure
 
-FORMAT: Final = 1
 PLACES: Final = 3
 """Decimal places of a check shown in a notebook without further words."""
 
@@ -167,23 +167,10 @@ def as_literal(text: str) -> str:
 
 def _metadata(sheet: Sheet) -> dict[str, Any]:
     origin = sheet.origin
+    stated = {"truss": origin.truss_text, "stated": dict(origin.stated), "agreed": origin.agreed}
     return {
         "kernelspec": {"display_name": "Python 3", "language": "python", "name": "python3"},
         "language_info": {"name": "python"},
         "title": sheet.title,
-        "trusscalc": {
-            "format": FORMAT,
-            "program": origin.program,
-            "digest": hashlib.sha256(origin.truss_text.encode()).hexdigest(),
-            "truss": origin.truss_text,
-            "case": origin.case,
-            "members": list(origin.members),
-            "places": origin.places,
-            "project": dict(origin.project),
-            "names": dict(origin.names),
-            "stated": dict(origin.stated),
-            "agreed": origin.agreed,
-            "cuts": {name: list(kept) for name, kept in origin.cuts},
-            "prefer": origin.prefer,
-        },
+        "trusscalc": {**record_of(sheet), **stated},
     }
