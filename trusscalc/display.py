@@ -14,6 +14,7 @@ from trusscalc.errors import RenderError
 from trusscalc.exacttext import to_text
 from trusscalc.membercheck import MemberCheck
 from trusscalc.project import Project
+from trusscalc.render.html import html
 from trusscalc.render.notebook import Bundle, bundle, figure_bundle, notebook, step_bundle
 from trusscalc.render.text import step_text, text
 from trusscalc.replacefile import replace_file
@@ -27,7 +28,7 @@ from trusscalc.statics.owncuts import OwnCut, own_cut
 from trusscalc.statics.steps import Step
 from trusscalc.truss import Truss
 
-WRITERS: Final = {".ipynb": notebook, ".txt": text}
+WRITERS: Final = {".ipynb": notebook, ".html": html, ".txt": text}
 """What each suffix is written by."""
 
 
@@ -39,7 +40,7 @@ def save(sheet: Sheet, path: str | os.PathLike[str]) -> Path:
     sheet : Sheet
         What to write.
     path : path
-        Its suffix says how: ``.ipynb`` or ``.txt``.
+        Its suffix says how: ``.ipynb``, ``.html`` or ``.txt``.
 
     Raises
     ------
