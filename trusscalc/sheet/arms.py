@@ -48,7 +48,7 @@ def draw_arms(drawing: _Ground, equation: Equation) -> None:
         running_dimension(board, centre[0] if near else None, ticks, board.bounds[1] - 4.5, towards=centre[0])
     left, _, right, _ = board.bounds
     xs = [x for x, _ in drawing.sketch.place.values()]
-    side = right + 5.0 if centre[0] >= (min(xs) + max(xs)) / 2 else left - 5.0
+    side = right + 3.8 if centre[0] >= (min(xs) + max(xs)) / 2 else left - 3.8
     if len(upright) == 1 and near:
         ((v, (text, u)),) = upright.items()
         level_dimension(board, centre, (u, v), side, text, upright=True)

@@ -7,7 +7,7 @@ left corner. Labels look for room among what is drawn already, so lines come fir
 from __future__ import annotations
 
 import math
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 from dataclasses import replace
 from typing import Final, Literal
 
@@ -190,13 +190,15 @@ def moved(mark: Mark, dx: float, dy: float) -> Mark:
     return replace(mark, place=shift(mark.place), angle=round(mark.angle, 3))
 
 
-def around(place: Point, label: Label, distance: float, directions: Iterable[Point]) -> Iterable[Label]:
+def around(place: Point, label: Label, distance: float, directions: Iterable[Point]) -> Iterator[Label]:
     """Yield a label beside a point, its box clear of the point by a distance, in one direction after the other."""
-    box = box_of(replace(label, place=(0.0, 0.0), anchor="centre"))
+    box = box_of(Label((0.0, 0.0), label.text, label.size, label.subscript, "centre", label.angle, style=label.style))
     for ux, uy in directions:
         # the box is pushed out until its nearest edge, not its corner, is clear: labels stay close to level
         reach = _push(box, ux, uy) + distance
-        yield replace(label, place=(place[0] + reach * ux, place[1] + reach * uy), anchor="centre")
+        spot = place[0] + reach * ux, place[1] + reach * uy
+        # written out: dataclasses.replace costs more than all the rest here
+        yield Label(spot, label.text, label.size, label.subscript, angle=label.angle, ink=label.ink, style=label.style)
 
 
 def _push(box: Box, ux: float, uy: float) -> float:

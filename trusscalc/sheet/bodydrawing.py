@@ -327,7 +327,9 @@ class BodyDrawing:
             base, subscript = self._name("member", name)
             ink: Ink = "accent" if name in self.sought else "black"
             label = Label(tip, base, FORCE_SIZE, subscript, ink=ink, style="italic")
-            self.board.write(places_at_pull(tail, tip, label))
+            far = self._bar_ends(self.structure.bars[name])[1]
+            beyond = self.everywhere[far] if far in self.centres else None
+            self.board.write(places_at_pull(tail, tip, label, beyond))
 
     def _oblique_terms(self) -> Iterator[Bar]:
         for equation in self.body.equations:

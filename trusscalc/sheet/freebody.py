@@ -32,8 +32,9 @@ VERY_LONG_BAR: Final = 45.0
 FOLDED_BARS: Final = (18.0, 13.0, 9.0)
 MOST_TRIALS: Final = 2
 """Scales tried in one width."""
+NARROW_FRAME: Final = 8.0
 FRAME: Final = 14.0
-"""Height that forces and dimensions take at least, mm."""
+"""Width, and height, that forces and dimensions take at least, mm."""
 
 
 def free_body(check: MemberCheck, step: Step, *, width: float = 80.0) -> tuple[Figure, ...]:
@@ -79,34 +80,42 @@ class _Fitting(Body):
         """Return the figure at the largest scale at which it fits and every label finds room."""
         if self.is_joint:
             return BodyDrawing(self, Scale(1.0, "")).figure()
+        return self._unfolded(width) or self._folded(max(width, FULL_WIDTH))
+
+    def _unfolded(self, width: float) -> Figure | None:
+        """Return the whole body at the scale at which labels stand freest; None when no scale fits."""
+        drawn: dict[str, tuple[BodyDrawing, Figure]] = {}
         best: tuple[tuple[int, int, int], Figure] | None = None
         for widest, room in enumerate(dict.fromkeys((width, max(width, FULL_WIDTH)))):
             for scale in self._scales(room):
-                drawing = BodyDrawing(self, scale)
-                figure = drawing.figure()
+                if scale.text not in drawn:
+                    drawing = BodyDrawing(self, scale)
+                    drawn[scale.text] = drawing, drawing.figure()
+                drawing, figure = drawn[scale.text]
                 if figure.width > room + 0.1 or figure.height > HIGHEST:
                     continue
                 cost = (len(drawing.board.left_out), len(drawing.board.forced), widest)
-                if cost[:2] == (0, 0):
-                    return figure
                 if best is None or cost < best[0]:
                     best = (cost, figure)
-        if best is not None:
-            return best[1]
+                if cost[:2] == (0, 0):
+                    return figure
+        return best[1] if best else None
+
+    def _folded(self, width: float) -> Figure:
+        """Return a body too long for the paper with stretches left out."""
         for longest in FOLDED_BARS:
             scale = self._by_bars(longest)
-            drawing = BodyDrawing(self, scale, self._fold(scale))
-            figure = drawing.figure()
-            if figure.width <= max(width, FULL_WIDTH) and figure.height <= HIGHEST:
+            figure = BodyDrawing(self, scale, self._fold(scale)).figure()
+            if figure.width <= width and figure.height <= HIGHEST:
                 break
         return figure
 
     def _scales(self, room: float) -> list[Scale]:
         """Return scales worth trying: bars of a good length first, then longer ones."""
         middle, (wide, high) = self._middle(), self._extent()
-        fitting = [
-            s for s in scales(self.check.truss.length) if wide * s.paper <= room and high * s.paper <= HIGHEST - FRAME
-        ]
+        across, up = room - NARROW_FRAME, HIGHEST - FRAME
+        listed = scales(self.check.truss.length)
+        fitting = [s for s in listed if wide * s.paper <= across and high * s.paper <= up]
         good = [s for s in fitting if SHORTEST_BAR <= middle * s.paper <= LONGEST_BAR]
         longer = [s for s in reversed(fitting) if LONGEST_BAR < middle * s.paper <= VERY_LONG_BAR]
         return (good + longer)[:MOST_TRIALS]

@@ -28,6 +28,7 @@ SUBSCRIPT_DROP: Final = 0.22
 ASCENT: Final = 0.68
 DESCENT: Final = 0.22
 DESCENDERS: Final = frozenset("gjpqyQ(),;[]{}|/_ß$§çþµβγζημξρφχψ")
+UPRIGHT: Final = 1e-9
 UNKNOWN_WIDTH: Final = 760
 FULL_WIDTH: Final = 1000
 Point = tuple[float, float]
@@ -88,6 +89,11 @@ class Box:
         """Return how far the box reaches from its centre along a unit vector."""
         along = abs(ux * self.cos + uy * self.sin) * self.half_width
         return along + abs(-ux * self.sin + uy * self.cos) * self.half_height
+
+    @property
+    def is_upright(self) -> bool:
+        """Whether its sides are level and upright, so that its bounds are the box itself."""
+        return abs(self.sin) < UPRIGHT or abs(self.cos) < UPRIGHT
 
     @property
     def bounds(self) -> tuple[float, float, float, float]:
@@ -205,6 +211,7 @@ class Obstacles:
 
     def hits(self, box: Box, gap: float = 0.25) -> tuple[int, int]:
         """Return how many labels and how many other boxes a box would touch."""
+        upright = box.is_upright
         letters: set[int] = set()
         lines: set[int] = set()
         left, lower, right, upper = box.bounds
@@ -213,7 +220,7 @@ class Obstacles:
             for other, (west, south, east, north), lettering in self._squares.get(square, ()):
                 if west > right or east < left or south > upper or north < lower:
                     continue
-                if touch(box, other, gap):
+                if (upright and other.is_upright) or touch(box, other, gap):
                     (letters if lettering else lines).add(id(other))
         return len(letters), len(lines)
 

@@ -5,11 +5,14 @@ Sizes in mm. A symbol is put on the side of its joint where no bar is in the way
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Mapping, Sequence
+import itertools
+import math
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from typing import Final
 
 from trusscalc.sheet.board import (
+    CENTRE,
     FORCE_SIZE,
     HEAVY,
     LIGHT,
@@ -39,6 +42,9 @@ LINK_LENGTH: Final = 5.0
 ASIDE: Final = 2.4
 """How far beside the bars in its line a force is drawn."""
 CLEAR_ANGLE: Final = 28.0
+EDGE: Final = 0.5
+LEVEL: Final = 0.2
+"""Sine below which an arrow counts as level."""
 DOWN: Final = (0.0, -1.0)
 
 
@@ -49,7 +55,13 @@ class Sketch:
     board: Board
     place: Mapping[str, Point]
     taken: dict[str, list[Point]] = field(default_factory=dict)
-    pending: list[list[Label]] = field(default_factory=list)
+    pending: list[tuple[Label, Iterator[Label]]] = field(default_factory=list)
+
+    @property
+    def middle(self) -> Point:
+        """The middle of what is drawn."""
+        xs, ys = zip(*self.place.values(), strict=True)
+        return (min(xs) + max(xs)) / 2, (min(ys) + max(ys)) / 2
 
     def take(self, joint: str, direction: Point) -> None:
         """Note that something leaves a joint in a direction."""
@@ -57,9 +69,13 @@ class Sketch:
 
     def write_pending(self) -> None:
         """Write the lettering of forces; it waits until every line is drawn."""
-        for places in self.pending:
-            self.board.write(places)
+        for first, others in self.pending:
+            self.board.write(itertools.chain([first], others))
         self.pending.clear()
+
+    def letter(self, places: Iterator[Label]) -> None:
+        """Note lettering to be written once every line is drawn."""
+        self.pending.append((next(places), places))
 
     def clearance(self, joint: str, direction: Point) -> float:
         """Return the angle in degrees to the nearest direction taken."""
@@ -147,8 +163,10 @@ def draw_force(sketch: Sketch, force: Force, *, gap: float = GAP, length: float 
     place, (ux, uy) = sketch.place[force.joint], force.direction
     ahead, behind = sketch.clearance(force.joint, (ux, uy)), sketch.clearance(force.joint, (-ux, -uy))
     towards = behind >= CLEAR_ANGLE or behind >= ahead
-    if not force.reaction:  # a load hangs below its joint when it can, else it pushes from the other side
-        towards = ahead < CLEAR_ANGLE and behind > ahead
+    if not force.reaction:  # a load stands outside the truss if it can: it hangs from it, or pushes at it
+        inwards = ux * (sketch.middle[0] - place[0]) + uy * (sketch.middle[1] - place[1]) > EDGE
+        blocked = ahead < CLEAR_ANGLE
+        towards = (behind >= CLEAR_ANGLE and (inwards or blocked)) or (blocked and behind > ahead)
     if max(ahead, behind) < CLEAR_ANGLE:
         tail, tip = _beside_bars(sketch, force, length)
         towards = force.reaction
@@ -162,10 +180,10 @@ def draw_force(sketch: Sketch, force: Force, *, gap: float = GAP, length: float 
     sketch.board.arrow(tail, tip, width=width, ink=force.ink, open_head=force.reaction, small=force.small)
     if force.value:
         size = SMALL_SIZE if force.small else VALUE_SIZE
-        sketch.pending.append(places_at_end(end, out, Label(end, force.value, size, ink=force.ink)))
+        sketch.letter(places_at_end(end, out, Label(end, force.value, size, ink=force.ink)))
     if force.name:
         label = Label(end, force.name[0], FORCE_SIZE, force.name[1], ink=force.ink, style="italic")
-        sketch.pending.append(list(beside(tail, tip, label)))
+        sketch.letter(beside(tail, tip, label))
 
 
 def _beside_bars(sketch: Sketch, force: Force, length: float) -> tuple[Point, Point]:
@@ -183,15 +201,14 @@ def _beside_bars(sketch: Sketch, force: Force, length: float) -> tuple[Point, Po
     return best[1], best[2]
 
 
-def places_at_end(end: Point, out: Point, label: Label) -> list[Label]:
-    """Return places of a value at the free end of an arrow; upright where its neighbours leave no width."""
-    places = list(around(end, label, 0.7, [out]))
-    places += around(end, replace(label, angle=90.0), 0.7, [out])
-    places += around(end, label, 0.9, compass(out)[1:])
-    return places
+def places_at_end(end: Point, out: Point, label: Label) -> Iterator[Label]:
+    """Yield places of a value at the free end of an arrow; upright where its neighbours leave no width."""
+    yield from around(end, label, 0.7, [out])
+    yield from around(end, replace(label, angle=90.0), 0.7, [out])
+    yield from around(end, label, 0.9, compass(out)[1:])
 
 
-def beside(tail: Point, tip: Point, label: Label, distance: float = 0.8) -> Iterable[Label]:
+def beside(tail: Point, tip: Point, label: Label, distance: float = 0.8) -> Iterator[Label]:
     """Yield a label beside an arrow's shaft, to the right of it or above it first."""
     ux, uy = unit(tail, tip)
     sides = [(uy, -ux), (-uy, ux)]
@@ -207,19 +224,24 @@ def beside(tail: Point, tip: Point, label: Label, distance: float = 0.8) -> Iter
     yield from around(tail, label, distance, compass((-ux, -uy)))
 
 
-def places_at_pull(tail: Point, tip: Point, label: Label) -> Iterator[Label]:
-    """Yield places for the name of a pull: over or under a level arrow's tip, beyond an oblique one's."""
+def places_at_pull(tail: Point, tip: Point, label: Label, beyond: Point | None = None) -> Iterator[Label]:
+    """Yield places for the name of a pull: over or under a level arrow's tip, beyond an oblique one's.
+
+    ``beyond`` is a moment centre in which the arrow ends; the name may stand on its far side.
+    """
     way = unit(tail, tip)
-    near_tip = along(tip, way, -2.0)
-    if abs(way[1]) < 0.2:  # noqa: PLR2004 - nearly level
-        yield from around(near_tip, label, 1.0, [(0.0, 1.0), (0.0, -1.0)])
-        yield from around(tip, label, 0.6, [way])
-    elif abs(way[0]) < 0.2:  # noqa: PLR2004 - nearly upright
+    if abs(way[1]) < LEVEL:
+        yield from around(along(tip, way, -2.0), label, 1.0, [(0.0, 1.0), (0.0, -1.0)])
+    elif abs(way[0]) < LEVEL:
         yield from around(along(tip, way, -3.0), label, 1.0, [(1.0, 0.0), (-1.0, 0.0)])
-        yield from around(tip, label, 0.6, [way])
-    else:
-        yield from around(tip, label, 0.6, [unit((0, 0), (1.0 if way[0] > 0 else -1.0, 0.3 * way[1])), way])
-    for distance in (0.8, 2.0, 3.5):
+    if beyond is not None:
+        right, up = math.copysign(1.0, way[0]), math.copysign(1.0, way[1])
+        ways = [(0.45 * right, up), (0.45 * right, -up), (right, 0.0), (0.0, up), (0.0, -up)]
+        yield from around(beyond, label, CENTRE / 2 + 0.3, [unit((0.0, 0.0), corner) for corner in ways])
+    yield from around(tip, label, 0.6, [unit((0, 0), (1.0 if way[0] > 0 else -1.0, 0.3 * way[1])), way])
+    yield from around(tip, label, 0.8, compass(way, 12))
+    yield from beside(tail, tip, label)
+    for distance in (2.0, 3.5):
         yield from around(tip, label, distance, compass(way, 12))
     yield from around(along(tip, way, -4.0), label, 1.0, compass(way, 12))
 
@@ -263,7 +285,7 @@ def draw_section_line(sketch: Sketch, line: SectionLine, letter: str, kept: Poin
 def _section_end(sketch: Sketch, place: Point, back: Point, label: Label, kept: Point) -> Point:
     """Draw one end of a section line, further out or in when something is in its way; return where it is."""
     board = sketch.board
-    spoken_for = [box_of(places[0]) for places in sketch.pending]  # where values of forces will stand
+    spoken_for = [box_of(first) for first, _ in sketch.pending]  # where values of forces will stand
     normal = (-back[1], back[0])
     if (kept[0] - place[0]) * normal[0] + (kept[1] - place[1]) * normal[1] < 0:
         normal = (back[1], -back[0])
