@@ -22,6 +22,7 @@ import trusscalc.display
 from trusscalc import stiffness
 from trusscalc.errors import RenderError
 from trusscalc.files import reads
+from trusscalc.membercheck import check_members
 from trusscalc.render.markdown import escaped, markdown
 from trusscalc.render.notebook import as_literal, bundle, figure_bundle, notebook, step_bundle
 from trusscalc.render.text import text
@@ -190,6 +191,14 @@ def test_a_sheet_that_states_something_else_fails_when_run(monkeypatch: pytest.M
     run_here(sources)
     with pytest.raises(AssertionError, match="value"):
         run_here([*sources[:-1], sources[-1].replace("'D-C': '9*sqrt(5)/4'", "'D-C': '9*sqrt(5)/5'")])
+
+
+def test_steps_on_another_way_prove_the_same_values() -> None:
+    """Forces met only on another way are proven by the joint equations."""
+    check = sheet_cases.k_truss()
+    other = check_members(check.truss, check.case, ["U2-U3"], prefer="joints")
+    sources = cells(compose(other, drawings=False), "code")
+    run_here([*sources[:1], sources[1].replace(", prefer='joints'", ""), sources[2]])
 
 
 def run_here(sources: list[str]) -> None:

@@ -131,10 +131,14 @@ def proof_source(origin: Origin) -> str:
     """Return the cell that compares what was derived again with what the sheet states."""
     rows = "".join(f"    {name!r}: {value!r},\n" for name, value in origin.stated)
     return (
-        "from trusscalc.exacttext import to_text\n\n"
+        "from trusscalc.exacttext import to_text\n"
+        "from trusscalc.statics.matrix import solve\n\n"
         f"stated = {{\n{rows}}}\n"
-        "derived = {name: to_text(value) for step in check.steps for name, value in step.results.items()}\n"
-        'assert derived == stated, "derived again, a value differs from what this sheet states"\n'
+        "# all joint equations at once, then the steps: the same values by either way\n"
+        "derived = {name: to_text(force) for name, force in solve(truss_file.truss, case).forces.items()}\n"
+        "derived |= {name: to_text(force) for step in check.steps for name, force in step.results.items()}\n"
+        "differing = [name for name in stated if derived.get(name) != stated[name]]\n"
+        'assert not differing, f"derived again, a value differs from what this sheet states: {differing}"\n'
         f'assert check.agreed is {origin.agreed}, "derived again, the verdict differs from what this sheet states"\n'
         f"print({proof_output(origin)!r})"
     )
