@@ -215,7 +215,8 @@ class Obstacles:
         letters: set[int] = set()
         lines: set[int] = set()
         left, lower, right, upper = box.bounds
-        left, lower, right, upper = left - gap, lower - gap, right + gap, upper + gap
+        slack = gap - UPRIGHT  # what only just keeps the gap does not touch
+        left, lower, right, upper = left - slack, lower - slack, right + slack, upper + slack
         for square in self._covered((left, lower, right, upper)):
             for other, (west, south, east, north), lettering in self._squares.get(square, ()):
                 if west > right or east < left or south > upper or north < lower:
