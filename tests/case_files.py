@@ -35,7 +35,7 @@ class PublishedCase:
 
     @property
     def route(self) -> str:
-        """What the hand route is to do: ``all``, ``carried unknown`` or ``unstable``."""
+        """What the hand route is to do: ``all`` or ``unstable``."""
         return self.data["route"]
 
     @property

@@ -15,7 +15,7 @@ import pytest
 from case_files import CASES, FOLDER, PublishedCase
 
 from trusscalc import stiffness
-from trusscalc.errors import NoCutError, UnstableTrussError
+from trusscalc.errors import UnstableTrussError
 from trusscalc.exact import Exact, approximate
 from trusscalc.exacttext import parse
 from trusscalc.loads import LoadCase
@@ -62,13 +62,7 @@ def case_id(value: object) -> str | None:
 
 def every_case_by_every_method() -> list[Any]:
     """Return the table of this module: case by method."""
-    why = "three bars at every joint: needs a bar force carried as unknown"
-    carried = pytest.mark.xfail(raises=NoCutError, reason=why, strict=True)
-    return [
-        pytest.param(case, method, marks=carried if (case.route, method) == ("carried unknown", "hand") else ())
-        for case in STABLE
-        for method in METHODS
-    ]
+    return [pytest.param(case, method) for case in STABLE for method in METHODS]
 
 
 def is_same(force: Force | None, expected: Exact, value: float, tolerance: float, *, surd: bool) -> bool:
@@ -298,7 +292,7 @@ def test_every_file_is_a_case_of_its_name_and_in_the_table() -> None:
     assert {path.stem for path in FOLDER.iterdir()} == set(CASES)
     assert all(name == case.id for name, case in CASES.items())
     assert {case.id for case in STABLE + CRITICAL} == set(CASES)
-    assert {case.route for case in CASES.values()} == {"all", "carried unknown", "unstable"}
+    assert {case.route for case in CASES.values()} == {"all", "unstable"}
 
 
 @pytest.mark.parametrize("case", CASES.values(), ids=case_id)
