@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from random import Random
 
 import pytest
 
@@ -38,6 +39,8 @@ NUMBERS = [
     ("sqrt(2 + sqrt(2))", "√(2 + √2)", r"\sqrt{2 + \sqrt{2}}"),
     ("-3*P/2", "−3P/2", r"-\frac{3\,P}{2}"),
     ("P + 2*Q - 1", "P + 2Q − 1", r"P + 2\,Q - 1"),
+    ("-5*P - 6*Q", "−(5P + 6Q)", r"-\left(5\,P + 6\,Q\right)"),
+    ("-P - Q - sqrt(2)", "−(P + Q) − √2", r"-\left(P + Q\right) - \sqrt{2}"),
     ("-(P + 25)*sqrt(3)/6", "−(P + 25)√3/6", r"-\frac{\left(P + 25\right)\sqrt{3}}{6}"),
 ]
 
@@ -48,6 +51,35 @@ def test_exact_numbers(text: str, plain: str, latex: str) -> None:
     value = Value(parse(text, ["P", "Q"]))
     assert Plain().write(value) == plain
     assert Latex().write(value) == latex
+
+
+def test_what_is_written_is_the_number() -> None:
+    """Plain text of numbers with roots, nested roots and symbols, read by other rules, has the same value."""
+    random = Random(7)
+    parts = ["P", "Q", "P*Q", "P^2", "1", "sqrt(2)", "sqrt(3)", "P*sqrt(2)", "Q*sqrt(6)", "sqrt(2 + sqrt(2))"]
+    at = {"P": parse("7/3"), "Q": parse("-11/7")}
+    for _ in range(100):
+        terms = random.sample(parts, random.randint(1, 4))
+        factors = [f"({random.randint(-9, 9)}/{random.choice([1, 1, 2, 3, 8, 12])})" for _ in terms]
+        text = " + ".join(f"{factor}*{term}" for factor, term in zip(factors, terms, strict=True))
+        value = parse(f"({text})/{random.choice(['1', '2', '(P + 1)', 'P', 'sqrt(5)'])}", ["P", "Q"])
+        for role in ("amount", "arm", "cosine"):
+            written = Plain().write(Value(value, role))
+            assert read_plain(written) == pytest.approx(float(value.substitute(at)), rel=1e-12, abs=1e-12), written
+            product = Formula((plus((Value(parse("1")),)), minus((Value(parse("5")), Value(value, role)))), ())
+            expected = 1 - 5 * float(value.substitute(at))
+            assert read_plain(Plain().write(product)) == pytest.approx(expected, rel=1e-12, abs=1e-12), written
+
+
+def read_plain(written: str) -> float:
+    """Return the value of plain text at P = 7/3, Q = -11/7."""
+    code = written.replace("−", "-").replace("·", "*").replace("^", "**")
+    code = re.sub(r"(?<=[\dPQ)])\s*(?=[PQ√(])", "*", code)
+    code = re.sub(r"√(\d+)", r"(\1)**0.5", code)
+    code = code.replace("√(", "root(")
+    assert re.fullmatch(r"[\d.+\-*/()PQ root]*", code), code
+    names = {"__builtins__": {}, "P": 7 / 3, "Q": -11 / 7, "root": lambda x: x**0.5}
+    return float(eval(code, names))  # noqa: S307 - our own text, characters checked
 
 
 @pytest.mark.parametrize(

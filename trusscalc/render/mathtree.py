@@ -186,7 +186,8 @@ def _number(item: Value) -> Node:
         return ZERO
     if len(terms) == 1 and not terms[0][0]:
         return terms[0][1]
-    return Sum(tuple(terms))
+    # the sign before a sum of symbols holds for all of it
+    return Sum(tuple((negative, Brackets(node) if isinstance(node, Sum) else node) for negative, node in terms))
 
 
 def _root_below(value: Exact) -> tuple[bool, Node] | None:

@@ -165,6 +165,8 @@ class EquationWriter:
         )
         where, what = self.teller.body(equation.cut), about_words(equation.about)
         acts = " The arm of a sum is the arm at which it acts." if moment else ""
+        if any(entry.symbol.base == "M" for entry in entries):
+            acts = " M is what these loads add to the sum together."
         return entries, Table(columns, tuple(rows), f"Loads on the {where}, collected for {what}.{acts}")
 
     def _resultant_along(self, axis: str, loads: Sequence[Term]) -> tuple[Entry, list[tuple[Inline | None, ...]]]:
