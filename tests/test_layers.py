@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import ast
+import os
 import subprocess
 import sys
 from collections.abc import Iterable, Mapping
@@ -231,3 +232,23 @@ def test_importing_the_package_loads_nothing_heavy() -> None:
     script = "import sys, trusscalc, trusscalc.__main__; print(*(name.split('.')[0] for name in sys.modules))"
     found = subprocess.run([sys.executable, "-c", script], capture_output=True, text=True, check=True)
     assert HEAVY & set(found.stdout.split()) == set()
+
+
+# --- the repository ---------------------------------------------------------------------------------------
+
+ROOT = PACKAGE.parent
+TOP_LEVEL = {"README.md", "DEVELOPERS.md", "pyproject.toml", "trusscalc", "workbooks", "tests"}
+
+
+def test_the_continuous_check_runs_the_command_that_readme_gives() -> None:
+    """Word for word, so that what is promised to a reader is what is run."""
+    script = (ROOT / ".ci" / "run").read_text(encoding="utf-8")
+    (command,) = [line for line in script.splitlines() if "pytest" in line]
+    assert command in (ROOT / "README.md").read_text(encoding="utf-8").splitlines()
+    assert os.access(ROOT / ".ci" / "run", os.X_OK)
+
+
+def test_the_top_level_holds_nothing_else() -> None:
+    """Hidden files apart."""
+    found = {path.name for path in ROOT.iterdir() if not path.name.startswith(".") and path.suffix != ".egg-info"}
+    assert found - {"dist", "build", "__pycache__"} == TOP_LEVEL
