@@ -34,7 +34,7 @@ from trusscalc.sheet.marks import Figure
 
 LONGEST_WORD: Final = 16
 """Characters of a word beyond which it may be broken anywhere: no column holds every name."""
-LISTING_WIDTH: Final = 96
+LISTING_WIDTH: Final = 49
 """Characters of a line of the truss file; a longer one is continued below without a number."""
 LEADS: Final = {"conclusion": "Conclusion.", "caution": "Caution."}
 
@@ -210,21 +210,32 @@ def listing(content: str) -> list[list[Any]]:
     [[1, 'a = 1'], [2, ''], [3, 'b = 2']]
     """
     found: list[list[Any]] = []
-    for number, line in enumerate(content.splitlines(), 1):
-        flat = line.expandtabs(4)
-        for start in range(0, max(len(flat), 1), LISTING_WIDTH):
-            found.append([0 if start else number, flat[start : start + LISTING_WIDTH]])
+    for number, line in enumerate(content.rstrip("\n").split("\n"), 1):
+        rest = line.removesuffix("\r").expandtabs(4)
+        found.append([number, rest[: _fitting(rest)]])
+        while rest := rest[_fitting(rest) :]:
+            found.append([0, rest[: _fitting(rest)]])
     return found
+
+
+def _fitting(line: str) -> int:
+    """Return how much of a line is set: up to a blank where there is one in its second half."""
+    if len(line) <= LISTING_WIDTH:
+        return len(line)
+    blank = line.rfind(" ", LISTING_WIDTH // 2, LISTING_WIDTH) + 1
+    return blank or LISTING_WIDTH
 
 
 # --- tables -----------------------------------------------------------------------------------------------
 
 
 def _table(block: Table) -> Data:
+    rows = [[cell(piece) for piece in row] for row in block.rows]
     return {
         "kind": "table",
         "columns": [[text(column.head), column.align] for column in block.columns],
-        "rows": [[cell(piece) for piece in row] for row in block.rows],
+        "rows": rows,
+        "tall": any(piece[0] == "mathematics" for row in rows for content in row for piece in content),
         "caption": text(block.caption),
         "strong": list(block.strong_rows),
         "totals": block.totals,
