@@ -111,7 +111,7 @@ def _derivation_bundle(derivation: Derivation, **_: Any) -> Bundle:
 
 def _truss_bundle(truss: Truss, **_: Any) -> dict[str, Any]:
     """Return the truss's figure as a notebook shows it."""
-    return figure_bundle(truss_figure(truss))
+    return figure_bundle(truss_figure(truss.at_values()))
 
 
 def _step_bundle(step: Step, **_: Any) -> Bundle:

@@ -235,6 +235,16 @@ class Exact:
     def __abs__(self) -> Exact:
         return -self if self.sign() < 0 else self
 
+    def reads_negative(self) -> bool:
+        """Return whether the number is below zero; with symbols, whether it is written with a minus sign."""
+        if not self.symbols:
+            return self.sign() < 0
+        return all(_leads_with_minus(coefficient) for coefficient in self.terms.values())
+
+    def written_size(self) -> Exact:
+        """Return the number without the minus sign it is written with."""
+        return -self if self.reads_negative() else self
+
     # --- questions ----------------------------------------------------------------------------------------
 
     @property
@@ -418,6 +428,11 @@ def _same_field(left: Any, right: Any) -> tuple[Any, Any]:
     names = {str(x) for x in (*left.field.symbols, *right.field.symbols)}
     field = _field_of(tuple(sorted(names)))
     return left.set_field(field), right.set_field(field)
+
+
+def _leads_with_minus(coefficient: Any) -> bool:
+    leading = coefficient.numer.LC if isinstance(coefficient, FracElement) else coefficient
+    return bool(leading < 0)
 
 
 def _degrees(polynomial: Any) -> tuple[int, ...]:

@@ -12,6 +12,7 @@ from dataclasses import dataclass, field
 from typing import Literal
 
 from trusscalc import stiffness
+from trusscalc.convenience import Convenient
 from trusscalc.errors import InexactNumberError, InputError, UnstableTrussError
 from trusscalc.exact import ZERO, Exact, symbol
 from trusscalc.loads import LoadCase
@@ -142,13 +143,13 @@ class Redundancy:
 
 
 @dataclass(frozen=True, slots=True)
-class MemberCheck:
+class MemberCheck(Convenient):
     """The result of a check.
 
     Attributes
     ----------
     truss, case
-        What was checked.
+        What was checked; the case knows the symbols of the dimensions too.
     statics : Statics
         Count and rank.
     members : dict of str to ForceCheck
@@ -176,6 +177,10 @@ class MemberCheck:
         For a statically indeterminate truss: the degree, and who shares it.
     unstable_where : tuple of str
         For symbolic dimensions: expressions whose vanishing makes the truss a mechanism.
+    cuts : dict of str to tuple of str
+        For some members the joints of the cut the engineer chose.
+    prefer : str
+        What the engineer leaned to: ``sections``, ``joints`` or ''.
     """
 
     truss: Truss
@@ -193,11 +198,12 @@ class MemberCheck:
     zero_members: Mapping[str, str] = field(default_factory=dict)
     redundancy: Redundancy | None = None
     unstable_where: tuple[str, ...] = ()
+    cuts: Mapping[str, tuple[str, ...]] = field(default_factory=dict)
+    prefer: Preference = ""
 
     def value(self, amount: Exact) -> Exact:
         """Return an amount with all symbols, of dimensions and of loads, replaced by their stated values."""
-        values = dict(self.truss.symbols) | dict(self.case.symbols)
-        return amount.substitute(values) if values else amount
+        return self.case.value(amount)
 
 
 def check_members(
@@ -252,6 +258,7 @@ def check_members(
         faults = _different_values(truss, case)
         if faults:
             raise InputError(faults)
+        case = LoadCase(case.name, case.loads, symbols=[*truss.symbols, *dict(case.symbols).items()])
         matrix.solve(*at_sample(truss, case, samples(truss, case)[0]))  # stable at the stated values
     equilibrium = matrix.solve(truss, case)
     structure = structure_of(truss, case)
@@ -283,6 +290,8 @@ def check_members(
         zero_members=zero_force_members(structure, equilibrium),
         redundancy=None if determinate else _redundancy(equilibrium),
         unstable_where=vanishing(equilibrium.tensions.values()) if truss.symbols else (),
+        cuts=own,
+        prefer=prefer,
     )
 
 
@@ -380,7 +389,7 @@ class _Writer:
         self.structure = structure
         self.steps: list[Step] = []
         self.tensions: dict[str, Exact] = {}
-        self.sections: dict[tuple[str, ...], str] = {}
+        self.sections: dict[frozenset[str], str] = {}
         self.carried: dict[str, str] = {}
 
     def write(self, planned: PlannedStep) -> None:
@@ -388,7 +397,9 @@ class _Writer:
         letter = ""
         for cut, _ in planned.bodies:
             if cut.kind == "section":
-                letter = self.sections.setdefault(cut.bars, section_letter(len(self.sections)))
+                # the left and the right part of one section share its letter, so support links do not count
+                members = frozenset(name for name in cut.bars if not self.structure.bars[name].is_link)
+                letter = self.sections.setdefault(members, section_letter(len(self.sections)))
         carries = {name: carried_letter(len(self.carried) + place) for place, name in enumerate(planned.carries)}
         self.carried |= carries
         for name, force in carries.items():

@@ -17,6 +17,7 @@ from dataclasses import dataclass
 from operator import itemgetter
 from typing import Any, Final, NamedTuple
 
+from trusscalc.convenience import Convenient
 from trusscalc.errors import InexactNumberError, InputError, TrusscalcWarning, UnknownNameError
 from trusscalc.exact import ONE, ZERO, Exact
 from trusscalc.exacttext import number
@@ -94,7 +95,7 @@ class FloatTruss:
 
 
 @dataclass(frozen=True, slots=True, init=False)
-class Truss:
+class Truss(Convenient):
     """A plane truss.
 
     Attributes

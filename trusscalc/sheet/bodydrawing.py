@@ -38,7 +38,7 @@ from trusscalc.sheet.symbols import (
 )
 from trusscalc.statics.cuts import About, Cut, Structure
 from trusscalc.statics.matrix import Bar
-from trusscalc.statics.steps import Equation, Step, Term, points_backwards
+from trusscalc.statics.steps import Equation, Step, Term
 
 STUB: Final = 6.0
 PULL: Final = 7.5
@@ -268,7 +268,7 @@ class BodyDrawing:
             for (axis, way), size in zip(axes, self.structure.loads[joint], strict=True):
                 if not size or (joint, axis) in self.summed:
                     continue
-                if points_backwards(size):
+                if size.reads_negative():
                     way, size = (-way[0], -way[1]), -size  # noqa: PLW2901 - drawn the way it acts
                 yield Force(joint, way, amount(size), self._name("load", joint, axis))
 

@@ -12,6 +12,7 @@ from trusscalc.loads import LoadCase
 from trusscalc.membercheck import MemberCheck
 from trusscalc.project import LINES, Project
 from trusscalc.sheet import figures, front, record
+from trusscalc.sheet.atvalues import at_values
 from trusscalc.sheet.blocks import Block, Derivation, Heading, Origin, Picture, Sheet
 from trusscalc.sheet.derivation import Writer, writer_of
 from trusscalc.sheet.words import found_in
@@ -60,12 +61,13 @@ def compose(
     text = truss_text or writes(TrussFile(check.truss, (check.case,), (), project))
     check = replace(check, truss=(stated or _read_again(text)).truss)  # the echo is of the text, groups and all
     writer = writer_of(check, places)
+    drawn = at_values(check)
     summary = tuple(front.summary(writer))
     blocks: list[Block] = [
         front.title_block(check, project),
         *front.opening(check, project),
         *summary,
-        *([Picture((figures.elevation(check),))] if drawings else []),
+        *([Picture((figures.elevation(drawn),))] if drawings else []),
         *front.scope(check),
         *record.basis(check, text, places),
         *record.input_echo(writer, project, text),
@@ -73,7 +75,7 @@ def compose(
         *record.reactions(writer),
         *derivations(writer, drawings=drawings),
         *record.cross_check(check),
-        *([Picture((figures.result_drawing(check),))] if drawings else []),
+        *([Picture((figures.result_drawing(drawn),))] if drawings else []),
         *record.cautions(),
         *record.revisions(project),
     ]
@@ -85,14 +87,15 @@ def derivations(writer: Writer, *, drawings: bool = True) -> list[Block]:
     """Return all steps in their order: those that find reactions first stand under their own heading."""
     blocks: list[Block] = []
     heading = ""
-    for step in writer.check.steps:
+    drawn = at_values(writer.check)
+    for step, shown in zip(writer.check.steps, drawn.steps, strict=True):
         links = all(writer.teller.is_link(name) for name in found_in(step))
         wanted = "Derivation of the reactions" if links and heading != "Derivation of the members" else ""
         wanted = wanted or "Derivation of the members"
         if wanted != heading:
             heading = wanted
             blocks.append(Heading(2, heading))
-        blocks.append(writer.derivation(step, figures.free_body(writer.check, step) if drawings else ()))
+        blocks.append(writer.derivation(step, figures.free_body(drawn, shown) if drawings else ()))
     return blocks
 
 
@@ -104,9 +107,10 @@ def derivation(check: MemberCheck, number: int, *, places: int = 3, drawings: bo
     InputError
         When there is no step of that number.
     """
-    for step in check.steps:
+    drawn = at_values(check)
+    for step, shown in zip(check.steps, drawn.steps, strict=True):
         if step.number == number:
-            return writer_of(check, places).derivation(step, figures.free_body(check, step) if drawings else ())
+            return writer_of(check, places).derivation(step, figures.free_body(drawn, shown) if drawings else ())
     message = f"there is no step {number}; the steps are 1 to {len(check.steps)}"
     raise InputError(message)
 
@@ -158,9 +162,8 @@ def _origin(check: MemberCheck, project: Project, text: str, places: int, *, dra
         stated=tuple((name, to_text(value)) for name, value in results.items()),
         agreed=check.agreed,
         program=record.program(),
-        # a check made before these were kept on it was made without them
-        cuts=tuple((name, tuple(kept)) for name, kept in getattr(check, "cuts", {}).items()),
-        prefer=getattr(check, "prefer", ""),
+        cuts=tuple((name, tuple(kept)) for name, kept in check.cuts.items()),
+        prefer=check.prefer,
         names=tuple(project.names.items()),
         drawings=drawings,
     )

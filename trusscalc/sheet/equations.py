@@ -16,7 +16,7 @@ from trusscalc.sheet.blocks import Bracket, Column, Decimals, Inline, Name, Prod
 from trusscalc.sheet.reasons import Teller
 from trusscalc.sheet.values import Number, multiplied, printed
 from trusscalc.sheet.words import Symbols, about_words
-from trusscalc.statics.steps import Equation, Term, points_backwards
+from trusscalc.statics.steps import Equation, Term
 
 MOST_LOADS: Final = 8
 """Loads on one free body beyond which they are collected to their resultant."""
@@ -114,7 +114,7 @@ class EquationWriter:
 
     def product(self, equation: Equation, coefficient: Exact, force: Name | Number) -> Product:
         """Return coefficient times force; a coefficient 1 is not written."""
-        size, negative = abs(coefficient), coefficient.sign() < 0
+        size, negative = coefficient.written_size(), coefficient.reads_negative()
         if size == ONE:
             return Product(negative, (force,))
         return Product(negative, (self._coefficient(equation, size), force))
@@ -132,10 +132,10 @@ class EquationWriter:
     def _together(self, equation: Equation, alike: Sequence[Entry]) -> Written:
         """Return equal loads as one product: sum of arms, or their count, times the load."""
         first = alike[0]
-        negative = first.coefficient.sign() < 0
+        negative = first.coefficient.reads_negative()
         value = sum((entry.product for entry in alike), start=ZERO)
         amount = printed(first.amount, self.case)
-        sizes = [abs(entry.coefficient) for entry in alike]
+        sizes = [entry.coefficient.written_size() for entry in alike]
         factors: tuple[Number, ...]
         if all(size == sizes[0] for size in sizes):
             coefficient = () if sizes[0] == ONE else (self._coefficient(equation, sizes[0]),)
@@ -181,13 +181,13 @@ class EquationWriter:
             rows.append((Run(f"sum, {axis}"), printed(force, self.case), None, printed(product, self.case)))
             return Entry(ONE, Name("M", f"P,{axis}"), product, product), rows
         rows.append(self._row("sum", axis, force, product))
-        size = -force if points_backwards(force) else force
+        size = -force if force.reads_negative() else force
         return Entry(product / size, Name("ΣP", axis), size, product), rows
 
     def _along_axis(self, term: Term) -> int:
         """Return 1 when a load acts along its axis, -1 when against it."""
         load = self.teller.structure.loads[term.name]["xy".index(term.axis)]
-        return -1 if points_backwards(load) else 1
+        return -1 if load.reads_negative() else 1
 
     def _row(self, name: str, axis: str, force: Exact, product: Exact) -> tuple[Inline | None, ...]:
         numbers = (printed(number, self.case) for number in (force, product / force, product))
@@ -202,7 +202,7 @@ def unscaled(product: Exact, scale: Exact) -> Exact:
 def signed(number: Number) -> Product:
     """Return a number as a term: its sign apart."""
     match number:
-        case Value(value, role) if points_backwards(value):
+        case Value(value, role) if value.reads_negative():
             return Product(negative=True, factors=(Value(-value, role),))
         case Decimals(text) if text.startswith("-"):
             return Product(negative=True, factors=(Decimals(text[1:]),))
@@ -222,7 +222,7 @@ def _alike(entries: Sequence[Entry], place: int) -> Sequence[Entry]:
         end < len(entries)
         and entries[end].is_load
         and entries[end].amount == first.amount
-        and entries[end].coefficient.sign() == first.coefficient.sign()
+        and entries[end].coefficient.reads_negative() == first.coefficient.reads_negative()
     ):
         end += 1
     return entries[place:end]

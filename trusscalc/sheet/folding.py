@@ -15,7 +15,7 @@ from trusscalc.exact import ZERO, Exact
 from trusscalc.sheet.board import THIN, Board
 from trusscalc.sheet.lettering import Point
 from trusscalc.statics.cuts import Structure
-from trusscalc.statics.steps import Equation, Term, points_backwards
+from trusscalc.statics.steps import Equation, Term
 
 GAP_WIDTH: Final = 9.0
 """Width on paper of a stretch left out, mm."""
@@ -152,7 +152,7 @@ def resultant_of(structure: Structure, joints: Sequence[str], axis: Literal["x",
     way = (1.0, 0.0) if axis == "x" else (0.0, 1.0)
     if not total or (x / total).symbols or (y / total).symbols:
         return Resultant(axis, ZERO, way, ZERO, ZERO, tuple(ordered))
-    back = points_backwards(total)
+    back = total.reads_negative()
     direction = (-way[0], -way[1]) if back else way
     return Resultant(axis, -total if back else total, direction, x / total, y / total, tuple(ordered))
 

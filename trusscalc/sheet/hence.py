@@ -123,7 +123,7 @@ def _solved(  # noqa: PLR0917 - the parts of one line, in its order
     """Return ``coefficient times unknown = number``, the coefficient made positive."""
     squared = writer.teller.structure.bars[name].length_squared
     scale = equation.terms[0].scale
-    if lever.sign() < 0:
+    if lever.reads_negative():
         lever, rest = -lever, -rest
     coefficient = lever / squared / scale * sqrt(squared * scale, proven=False)
     left = writer.product(equation, coefficient, _sought(writer, name))

@@ -160,7 +160,7 @@ def input_echo(writer: Writer, project: Project, truss_text: str) -> list[Block]
 
 
 def _both(writer: Writer, value: Exact) -> tuple[Inline, Inline]:
-    return printed(value, writer.check.case), _near(value, writer.places)
+    return printed(value, writer.check.case), _near(writer.check.value(value), writer.places)
 
 
 def _near(value: Exact, places: int) -> Decimals:

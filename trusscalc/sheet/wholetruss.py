@@ -41,7 +41,6 @@ from trusscalc.sheet.symbols import (
     support_directions,
 )
 from trusscalc.statics.cuts import Cut, structure_of
-from trusscalc.statics.steps import points_backwards
 from trusscalc.truss import Truss
 
 SMALL_JOINT: Final = 1.3
@@ -160,7 +159,7 @@ class WholeTruss:
         for load in loads:
             for way, size in (((1.0, 0.0), load.fx), ((0.0, 1.0), load.fy)):
                 if size:
-                    back = points_backwards(size)
+                    back = size.reads_negative()
                     direction = (-way[0], -way[1]) if back else way
                     draw_force(self.sketch, Force(load.joint, direction, amount(-size if back else size), small=True))
 

@@ -99,7 +99,7 @@ def part(structure: Structure, kept: Sequence[str]) -> str:
     inside = set(kept)
     middles = []
     for names in (inside, set(structure.joints) - inside):
-        places = [(float(structure.joints[name].x), float(structure.joints[name].y)) for name in structure.joints]
+        places = [(structure.near(joint.x), structure.near(joint.y)) for joint in structure.joints.values()]
         chosen = [place for place, name in zip(places, structure.joints, strict=True) if name in names]
         middles.append([sum(axis) / len(chosen) for axis in zip(*chosen, strict=True)])
     dx, dy = (here - there for here, there in zip(*middles, strict=True))
@@ -170,9 +170,9 @@ def sum_label(equation: Equation, where: str) -> str:
     if about.sum == "force":
         senses = {"x": ("to the right", "to the left"), "y": ("upwards", "downwards")}
         if about.axis:
-            sense = senses[about.axis][(about.x + about.y).sign() < 0]
+            sense = senses[about.axis][(about.x + about.y).reads_negative()]
         elif about.along:
-            sense = senses["y"][about.y.sign() < 0] if about.y else senses["x"][about.x.sign() < 0]
+            sense = senses["y"][about.y.reads_negative()] if about.y else senses["x"][about.x.reads_negative()]
         else:
             sense = "that way"
         sense += " positive"

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
+from trusscalc.convenience import Convenient
 from trusscalc.errors import InputError
 from trusscalc.exact import ZERO, Exact
 from trusscalc.exacttext import number
@@ -28,7 +29,7 @@ class Possibility:
 
 
 @dataclass(frozen=True, slots=True)
-class CutReport:
+class CutReport(Convenient):
     """What a cut can do.
 
     Attributes

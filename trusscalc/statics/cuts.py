@@ -11,6 +11,7 @@ from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import Literal
 
+from trusscalc.convenience import Convenient
 from trusscalc.errors import InputError
 from trusscalc.exact import ONE, ZERO, Exact
 from trusscalc.loads import LoadCase
@@ -68,7 +69,7 @@ def structure_of(truss: Truss, case: LoadCase) -> Structure:
 
 
 @dataclass(frozen=True, slots=True)
-class Cut:
+class Cut(Convenient):
     """A free body and the bars that hold it.
 
     Attributes
@@ -178,21 +179,9 @@ def about_joint(structure: Structure, name: str) -> About:
 def across(bar: Bar) -> About:
     """Return the force sum across a bar, in which it and its parallels drop out (to the left of the bar, or up)."""
     x, y = -bar.dy, bar.dx
-    if points_backwards(y) or (not y and points_backwards(x)):
+    if y.reads_negative() or (not y and x.reads_negative()):
         x, y = -x, -y
     return About("force", x, y, along=bar.name)
-
-
-def points_backwards(amount: Exact) -> bool:
-    """Return whether an amount is negative; with symbols, whether it is written with a minus sign."""
-    if amount.symbols:
-        return all(_leads_with_minus(coefficient) for coefficient in amount.terms.values())
-    return amount.sign() < 0
-
-
-def _leads_with_minus(coefficient: object) -> bool:
-    leading = getattr(getattr(coefficient, "numer", None), "LC", coefficient)
-    return bool(leading < 0)  # type: ignore[operator]
 
 
 def bar_lever(structure: Structure, bar: Bar, kept: frozenset[str] | set[str], about: About) -> Exact:
@@ -260,6 +249,5 @@ __all__ = [
     "complement",
     "cut_of",
     "meeting_point",
-    "points_backwards",
     "structure_of",
 ]

@@ -6,6 +6,7 @@ from collections import deque
 from collections.abc import Iterable
 from dataclasses import dataclass
 
+from trusscalc.convenience import Convenient
 from trusscalc.errors import InputError
 from trusscalc.loads import LoadCase
 from trusscalc.statics.cuts import Structure, cut_of, structure_of
@@ -13,7 +14,7 @@ from trusscalc.truss import Truss, unknown_joint
 
 
 @dataclass(frozen=True, slots=True)
-class OwnCut:
+class OwnCut(Convenient):
     """A cut chosen by the engineer.
 
     Attributes

@@ -12,6 +12,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 from typing import Literal
 
+from trusscalc.convenience import Convenient
 from trusscalc.errors import TrusscalcError
 from trusscalc.exact import ONE, ZERO, Exact, sqrt
 from trusscalc.statics.cuts import (
@@ -24,27 +25,10 @@ from trusscalc.statics.cuts import (
     bar_lever,
     complement,
     cut_of,
-    points_backwards,
 )
 
 TermKind = Literal["reaction", "load", "member"]
 StepKind = Literal["joint", "section", "whole", "pair", "close"]
-
-
-__all__ = [
-    "Equation",
-    "Step",
-    "StepError",
-    "StepKind",
-    "Term",
-    "TermKind",
-    "carried_letter",
-    "points_backwards",
-    "section_letter",
-    "write_close",
-    "write_equation",
-    "write_step",
-]
 
 
 class StepError(TrusscalcError, ArithmeticError):
@@ -128,7 +112,7 @@ class Equation:
 
 
 @dataclass(frozen=True, slots=True)
-class Step:
+class Step(Convenient):
     """One step of a derivation.
 
     Attributes
@@ -216,7 +200,7 @@ def _load_terms(structure: Structure, cut: Cut, about: About, scale: Exact) -> l
             lever = about.axis_lever(axis, joint.x, joint.y) if amount else ZERO
             if not lever:
                 continue
-            if points_backwards(amount):
+            if amount.reads_negative():
                 amount, lever = -amount, -lever  # noqa: PLW2901 - drawn, and written, the way it acts
             found.append(Term("load", name, axis, lever, ONE, amount, scale))
     return found
