@@ -63,14 +63,37 @@ def opening(check: MemberCheck, project: Project) -> list[Block]:
 
 def _symbol_values(check: MemberCheck) -> list[Block]:
     used = {name for load in check.case.loads for part in (load.fx, load.fy) for name in part.symbols}
+    dimensions = {name for name, _ in check.truss.symbols}
+    used |= dimensions
     told = [(name, value) for name, value in check.case.symbols if name in used]
     if not told:
         return []
-    content: list[Inline] = [Run("Exact values hold the symbols of the loads; decimals, senses and verdicts are at ")]
+    whose = "of dimensions, which are positive, and of loads" if dimensions else "of the loads"
+    content: list[Inline] = [
+        Run(f"Exact values hold the symbols {whose}; drawings, decimals, senses and verdicts are at "),
+    ]
     for place, (name, value) in enumerate(told):
         content += [Run(f"{', ' if place else ''}{name} = "), printed(value, check.case)]
-    formulas = ". Formulas were compared with the stiffness route coefficient by coefficient as well."
-    return [Paragraph((*content, Run(formulas if _has_coefficients(check) else ".")))]
+    content.append(Run("."))
+    if _has_coefficients(check):
+        content.append(Run(" Formulas were compared with the stiffness route coefficient by coefficient as well."))
+    tried = max((len(item.samples) for item in (*check.members.values(), *check.reactions.values())), default=0)
+    if tried > 1:
+        text = f" Formulas were compared with the stiffness route at {counted(tried, 'set')} of values."
+        content.append(Run(text))
+    return [Paragraph(tuple(content)), *_turning(check)]
+
+
+def _turning(check: MemberCheck) -> list[Block]:
+    """Return where the stability of the truss, or the sense of a force, depends on the symbols' values."""
+    statements = []
+    if check.unstable_where:
+        zero = " or ".join(f"{text} = 0" for text in check.unstable_where)
+        statements.append(f"The truss is a mechanism where {zero}.")
+    turning = [bar(name) for name, item in check.members.items() if item.sign_depends]
+    if turning:
+        statements.append(f"Whether {listed(turning)} pull or push depends on the values of the symbols.")
+    return [Paragraph((Run(" ".join(statements)),))] if statements else []
 
 
 def _has_coefficients(check: MemberCheck) -> bool:
