@@ -7,6 +7,7 @@ end of a line, how a result is turned for a narrow column.
 
 from __future__ import annotations
 
+import json
 import re
 from collections.abc import Iterable, Sequence
 from typing import Any, Final
@@ -235,11 +236,19 @@ def _table(block: Table) -> Data:
         "kind": "table",
         "columns": [[text(column.head), column.align] for column in block.columns],
         "rows": rows,
-        "tall": any(piece[0] == "mathematics" for row in rows for content in row for piece in content),
+        "upright": [_upright(row) for row in rows],
         "caption": text(block.caption),
         "strong": list(block.strong_rows),
         "totals": block.totals,
     }
+
+
+def _upright(row: list[list[Any]]) -> str:
+    """Return how a row's cells stand beside each other: on one base line, or in the middle where one is a fraction."""
+    mathematics = [piece for content in row for piece in content if piece[0] == "mathematics"]
+    if any('["over"' in json.dumps(piece) for piece in mathematics):
+        return "middle"
+    return "bottom" if mathematics else "top"
 
 
 def cell(piece: Inline | None) -> list[Any]:
@@ -271,9 +280,7 @@ def turned(block: Table) -> Data:
 
 
 def _joined(first: list[list[Any]], second: list[list[Any]], between: str) -> list[list[Any]]:
-    return [
-        [*a, *([["text", "", between]] if a and b else []), *b] for a, b in zip(first, second, strict=True)
-    ]
+    return [[*a, *([["text", "", between]] if a and b else []), *b] for a, b in zip(first, second, strict=True)]
 
 
 __all__ = ["Data", "Figures", "Piece", "block_data", "inline", "listing", "sheet_data", "text", "turned"]
