@@ -1,6 +1,6 @@
-"""The command line: check a truss file, or write its calculation sheet.
+"""The command line: check a truss file, write its calculation sheet, derive a filed sheet again.
 
-Exit codes: 0 all agree; 1 something disagrees or is undecided; 2 bad input or an unstable truss, told on
+Exit codes: 0 all agree; 1 something disagrees, is undecided or was altered; 2 bad input or an unstable truss, told on
 stderr, and nothing written.
 """
 
@@ -82,6 +82,9 @@ def _parser() -> argparse.ArgumentParser:
     check.set_defaults(run=_check)
     sheet.add_argument("--out", required=True, help="the sheet; its suffix says how it is written")
     sheet.set_defaults(run=_sheet)
+    recheck = commands.add_parser("recheck", help="derive a filed sheet again and compare it with what it shows")
+    recheck.add_argument("file", metavar="SHEET", help="a filed notebook (.ipynb) or page (.html)")
+    recheck.set_defaults(run=_recheck)
     return parser
 
 
@@ -123,6 +126,14 @@ def _sheet(arguments: argparse.Namespace) -> int:
     told = "all agree" if check.agreed else "not all agree: see its first lines"
     _print(f"{place}: {len(check.members)} of {check.statics.members} members, {told}")
     return AGREED if check.agreed else DISAGREED
+
+
+def _recheck(arguments: argparse.Namespace) -> int:
+    from trusscalc.recheck import recheck  # noqa: PLC0415
+
+    report = recheck(arguments.file)
+    _print("\n".join(report.lines()))
+    return AGREED if report.matches else DISAGREED
 
 
 if __name__ == "__main__":

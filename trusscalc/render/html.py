@@ -246,15 +246,13 @@ class _Page:
         lines_and_result = [_lines(block.lines), self.result(block.result)]
         lines = [f'<article class="step" aria-labelledby="{name}">', '<div class="body">', heading]
         lines.append(f'<p class="reason">{inline(block.reason.content)}</p>')
+        check = ['<div class="check">', _lines(block.check), "</div>"] if block.check else []
         if beside:
             lines += ['<div class="beside">', f"<div>{self.picture(figures)}</div>", "<div>"]
-            lines += [*tables, *lines_and_result, "</div>", "</div>"]
+            lines += [*tables, *lines_and_result, *check, "</div>", "</div>", "</div>"]
         else:
             lines += [*([self.picture(figures)] if figures else []), *tables]
-            lines += ['<div class="under">', *lines_and_result, "</div>"]
-        lines.append("</div>")
-        if block.check:
-            lines += ['<div class="check">', _lines(block.check), "</div>"]
+            lines += ['<div class="under">', *lines_and_result, "</div>", "</div>", *check]
         return "\n".join([*lines, *map(_paragraph, block.notes), "</article>"])
 
     def result(self, table: Table) -> str:

@@ -1,0 +1,268 @@
+"""A filed sheet, derived again from the input it carries, and compared with what it shows.
+
+No digest is trusted: the truss file in the sheet goes through the same reader, the same derivation and the same
+renderer as when a sheet is written, and every word, number, equation and drawing of the file is held against the
+result. What was altered by hand, what came from another version, and what a faulty program once wrote all show.
+"""
+
+from __future__ import annotations
+
+import json
+import os
+import warnings
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Any, Final
+
+from trusscalc.errors import FileFormatError, TrusscalcError, TrusscalcWarning
+from trusscalc.files import reads
+from trusscalc.filetext import one_line
+from trusscalc.membercheck import check_members
+from trusscalc.project import Project
+from trusscalc.recheck import notebooks, pages
+from trusscalc.recheck.differences import Difference
+from trusscalc.render.html import INPUT_ID, RECORD_ID, html
+from trusscalc.render.notebook import notebook
+from trusscalc.sheet.blocks import Sheet
+from trusscalc.sheet.compose import compose
+from trusscalc.sheet.digest import FORMAT, record_of
+from trusscalc.statics.owncuts import own_cut
+
+LARGEST_SHEET: Final = 100_000_000
+"""Bytes of a filed sheet that are read."""
+PDF: Final = (
+    "a PDF carries no input to derive it from again; recheck the notebook or HTML filed with it, or write the sheet "
+    "again from the truss file (python -m trusscalc sheet FILE.toml ... --out again.html) and compare the content "
+    "digest printed on both"
+)
+
+
+@dataclass(frozen=True, slots=True)
+class RecheckReport:
+    """What came of deriving a filed sheet again.
+
+    Attributes
+    ----------
+    source : str
+        The file.
+    differences : tuple of Difference
+        Every place where it does not show what is derived, in its own order.
+    compared : dict of str to int
+        How many steps, equations, table rows, figures and so on were held against the derivation.
+    written_by, rechecked_by : str
+        Program and version that the sheet names, and those that derived it again.
+    content : str
+        Digest of everything derived.
+    """
+
+    source: str
+    differences: tuple[Difference, ...]
+    compared: Mapping[str, int]
+    written_by: str
+    rechecked_by: str
+    content: str
+
+    @property
+    def matches(self) -> bool:
+        """Whether the sheet shows exactly what is derived."""
+        return not self.differences
+
+    def lines(self) -> list[str]:
+        """Return the report as lines for a terminal."""
+        told = ", ".join(f"{count} {name}" for name, count in self.compared.items())
+        lines = [f"{self.source}: written by {self.written_by}, derived again by {self.rechecked_by}"]
+        lines += [f"compared: {told}"] if told else []
+        lines += [f"content digest, derived: {self.content}"] if self.content else []
+        if self.matches:
+            return [*lines, "everything shown is as derived again"]
+        count = len(self.differences)
+        return [
+            *lines,
+            f"{count} difference{'s' * (count != 1)}:",
+            *(f"  {one_line(str(each))}" for each in self.differences),
+        ]
+
+
+def recheck(path: str | os.PathLike[str]) -> RecheckReport:
+    """Derive a filed sheet again and compare it with what the file shows.
+
+    Parameters
+    ----------
+    path : path
+        A notebook (``.ipynb``) or a page (``.html``) that this program wrote; untrusted.
+
+    Returns
+    -------
+    RecheckReport
+        Input that cannot be derived from at all is a difference too: somebody altered it.
+
+    Raises
+    ------
+    FileFormatError
+        When the file cannot be read, or is no filed sheet.
+    """
+    source = one_line(os.fspath(path))
+    place = Path(path)
+    kinds: dict[str, Callable[[str, str], RecheckReport]] = {".ipynb": _notebook, ".html": _page, ".htm": _page}
+    kind = kinds.get(place.suffix.lower())
+    if kind is None:
+        message = PDF if place.suffix.lower() == ".pdf" else "only a filed .ipynb or .html can be derived again"
+        raise FileFormatError(message, source=source)
+    return kind(_text(place, source), source)
+
+
+def _text(place: Path, source: str) -> str:
+    try:
+        if not place.is_file():
+            message = "there is no such file; check the name and the folder"
+            raise FileFormatError(message, source=source)
+        with place.open("rb") as file:
+            content = file.read(LARGEST_SHEET + 1)
+        if len(content) > LARGEST_SHEET:
+            message = f"too large: more than {LARGEST_SHEET:,} bytes"
+            raise FileFormatError(message, source=source)
+        return content.decode("utf-8-sig").replace("\r\n", "\n")  # line ends change on their way through mail
+    except UnicodeDecodeError:
+        message = "is not UTF-8 text, so it is no filed sheet"
+    except (OSError, ValueError) as problem:
+        if isinstance(problem, FileFormatError):
+            raise
+        message = f"cannot be read: {one_line(getattr(problem, 'strerror', None) or str(problem))}"
+    raise FileFormatError(message, source=source)
+
+
+# --- the two kinds of file --------------------------------------------------------------------------------
+
+
+def _page(text: str, source: str) -> RecheckReport:
+    record_text, truss_text = pages.verbatim(text, RECORD_ID), pages.verbatim(text, INPUT_ID)
+    if record_text is None or truss_text is None:
+        message = "holds no record of what it was derived from, so it is no sheet filed as HTML by this program"
+        raise FileFormatError(message, source=source)
+    record = _data(record_text, source)
+    again = _Again(record, truss_text)
+    if again.sheet is None:
+        return again.report(source, {}, [])
+    derived = html(again.sheet)
+    return again.report(source, pages.counts(derived), pages.page_differences(text, derived))
+
+
+def _notebook(text: str, source: str) -> RecheckReport:
+    book = _data(text, source)
+    metadata = book.get("metadata")
+    record = metadata.get("trusscalc") if isinstance(metadata, dict) else None
+    truss_text = record.get("truss") if isinstance(record, dict) else None
+    if not isinstance(record, dict) or not isinstance(truss_text, str):
+        message = "holds no record of what it was derived from, so it is no notebook filed by this program"
+        raise FileFormatError(message, source=source)
+    again = _Again(record, truss_text)
+    if again.sheet is None:
+        return again.report(source, {}, [])
+    derived = json.loads(notebook(again.sheet))
+    found = notebooks.notebook_differences(book, derived, again.warned)
+    return again.report(source, notebooks.counts(derived), found)
+
+
+def _data(text: str, source: str) -> dict[str, Any]:
+    """Return a JSON object; one that says a thing twice could be read in two ways and is refused."""
+
+    def once(pairs: list[tuple[str, Any]]) -> dict[str, Any]:
+        entries = dict(pairs)
+        if len(entries) < len(pairs):
+            message = "says the same thing twice"
+            raise ValueError(message)
+        return entries
+
+    try:
+        data = json.loads(text, object_pairs_hook=once)
+    except (ValueError, RecursionError) as problem:
+        message = f"its record is no valid JSON: {one_line(str(problem))}"
+        raise FileFormatError(message, source=source) from None
+    if not isinstance(data, dict):
+        message = "its record is no JSON object"
+        raise FileFormatError(message, source=source)
+    return data
+
+
+# --- deriving ---------------------------------------------------------------------------------------------
+
+
+class _Again:
+    """The sheet derived again from a record and a truss file; without a sheet, why not."""
+
+    def __init__(self, record: Mapping[str, Any], truss_text: str) -> None:
+        self.written_by = record.get("program", "")
+        self.sheet: Sheet | None = None
+        self.problem: Difference | None = None
+        self.warned: list[str] = []
+        with warnings.catch_warnings(record=True) as caught:
+            warnings.simplefilter("always", TrusscalcWarning)
+            try:
+                _must_be_known(record)
+                self.sheet = derive(record, truss_text)
+            except TrusscalcError as problem:
+                self.problem = Difference("input", "a sheet", f"nothing, for this input cannot be right: {problem}")
+        self.warned = [str(item.message) for item in caught if issubclass(item.category, TrusscalcWarning)]
+
+    def report(self, source: str, compared: Mapping[str, int], found: list[Difference]) -> RecheckReport:
+        """Return what came of it."""
+        record = record_of(self.sheet) if self.sheet else {"program": "this version", "content": ""}
+        differences = (*([self.problem] if self.problem else []), *found)
+        written_by = one_line(str(self.written_by)) or "an unnamed program"
+        return RecheckReport(source, differences, dict(compared), written_by, record["program"], record["content"])
+
+
+def derive(record: Mapping[str, Any], truss_text: str) -> Sheet:
+    """Return the sheet of a record.
+
+    Parameters
+    ----------
+    record : mapping
+        As ``sheet.digest.record_of`` gives it.
+    truss_text : str
+        The truss file.
+
+    Raises
+    ------
+    TrusscalcError
+        When the record or the truss file states something that cannot be.
+    """
+    stated = reads(truss_text)
+    cuts = {member: own_cut(stated.truss, keep=kept) for member, kept in record["cuts"].items()}
+    case = stated.case(record["case"])
+    check = check_members(stated.truss, case, record["members"], cuts=cuts, prefer=record["prefer"])
+    project = Project(**record["project"], names=record["names"])
+    return compose(check, project, truss_text=truss_text, places=record["places"], drawings=record["drawings"])
+
+
+def _must_be_known(record: Mapping[str, Any]) -> None:
+    """Raise a FileFormatError for a record that holds anything but what ``record_of`` puts there."""
+
+    def texts(items: Any) -> bool:
+        return isinstance(items, list) and all(isinstance(item, str) for item in items)
+
+    def entries(items: Any, fits: Callable[[Any], bool]) -> bool:
+        return isinstance(items, dict) and all(map(fits, items.values()))
+
+    def text(item: Any) -> bool:
+        return isinstance(item, str)
+
+    lines = {name for name in Project.__dataclass_fields__ if name != "names"}
+    right: dict[str, Callable[[Any], bool]] = {
+        "format": lambda item: type(item) is int and item == FORMAT,
+        "case": text,
+        "members": lambda items: texts(items) and bool(items),
+        "cuts": lambda items: entries(items, texts),
+        "prefer": lambda item: item in ("", "sections", "joints"),
+        "places": lambda item: type(item) is int,
+        "drawings": lambda item: type(item) is bool,
+        "project": lambda items: entries(items, text) and set(items) <= lines,
+        "names": lambda items: entries(items, text),
+    }
+    wrong = [name for name, fits in right.items() if name not in record or not fits(record[name])]
+    if wrong:
+        raise FileFormatError([f"record, {name}: is not what this version writes there" for name in wrong])
+
+
+__all__ = ["Difference", "RecheckReport", "derive", "recheck"]
