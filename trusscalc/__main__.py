@@ -11,9 +11,10 @@ import json
 import sys
 import warnings
 from collections.abc import Sequence
+from pathlib import Path
 from typing import TYPE_CHECKING
 
-from trusscalc.errors import TrusscalcError, TrusscalcWarning
+from trusscalc.errors import InputError, TrusscalcError, TrusscalcWarning
 
 if TYPE_CHECKING:
     from trusscalc.membercheck import MemberCheck
@@ -68,8 +69,17 @@ def _parser() -> argparse.ArgumentParser:
     sheet = commands.add_parser("sheet", help="write the calculation sheet of chosen members")
     for command in (check, sheet):
         command.add_argument("file", metavar="FILE.toml", help="the truss file")
-        command.add_argument("--case", required=True, help="a load case or a combination")
-        command.add_argument("--members", required=True, help="A-B,C-D or all")
+    check.add_argument("--json", action="store_true", help="print the whole result as JSON")
+    check.set_defaults(run=_check)
+    sheet.add_argument("--out", required=True, help="the sheet; its suffix says how it is written")
+    sheet.set_defaults(run=_sheet)
+    recheck = commands.add_parser("recheck", help="derive a filed sheet again and compare it with what it shows")
+    recheck.add_argument("file", metavar="SHEET", help="a filed notebook (.ipynb), page (.html) or PDF")
+    recheck.add_argument("--against", metavar="FILE.toml", help="for a PDF: the truss file it was written from")
+    recheck.set_defaults(run=_recheck)
+    for command, needed in ((check, True), (sheet, True), (recheck, False)):
+        command.add_argument("--case", required=needed, help="a load case or a combination")
+        command.add_argument("--members", required=needed, help="A-B,C-D or all")
         command.add_argument(
             "--keep",
             action="append",
@@ -78,13 +88,6 @@ def _parser() -> argparse.ArgumentParser:
             help="derive member A-B from the cut that keeps these joints (may be given again for other members)",
         )
         command.add_argument("--prefer", choices=("sections", "joints"), default="", help="what to lean to")
-    check.add_argument("--json", action="store_true", help="print the whole result as JSON")
-    check.set_defaults(run=_check)
-    sheet.add_argument("--out", required=True, help="the sheet; its suffix says how it is written")
-    sheet.set_defaults(run=_sheet)
-    recheck = commands.add_parser("recheck", help="derive a filed sheet again and compare it with what it shows")
-    recheck.add_argument("file", metavar="SHEET", help="a filed notebook (.ipynb) or page (.html)")
-    recheck.set_defaults(run=_recheck)
     return parser
 
 
@@ -122,16 +125,32 @@ def _sheet(arguments: argparse.Namespace) -> int:
 
     refuse_unwritable(arguments.out)
     stated, check = _checked(arguments)
-    place = save(compose(check, stated.project), arguments.out)
+    place = save(compose(check, stated.project, truss_text=_text(arguments)), arguments.out)
     told = "all agree" if check.agreed else "not all agree: see its first lines"
     _print(f"{place}: {len(check.members)} of {check.statics.members} members, {told}")
     return AGREED if check.agreed else DISAGREED
 
 
-def _recheck(arguments: argparse.Namespace) -> int:
-    from trusscalc.recheck import recheck  # noqa: PLC0415
+def _text(arguments: argparse.Namespace) -> str:
+    """Return the truss file as it stands, so that its digest on the sheet is the file's own."""
+    return Path(arguments.file).read_bytes().decode("utf-8-sig")
 
-    report = recheck(arguments.file)
+
+def _recheck(arguments: argparse.Namespace) -> int:
+    from trusscalc.recheck import recheck, recheck_pdf  # noqa: PLC0415
+    from trusscalc.sheet.compose import compose  # noqa: PLC0415
+
+    if arguments.against is None:
+        report = recheck(arguments.file)
+    else:
+        if not (arguments.file.lower().endswith(".pdf") and arguments.case and arguments.members):
+            message = (
+                "--against is for a PDF, together with its --case and --members; other sheets hold their own input"
+            )
+            raise InputError(message)
+        filed, arguments.file = arguments.file, arguments.against
+        stated, check = _checked(arguments)
+        report = recheck_pdf(filed, compose(check, stated.project, truss_text=_text(arguments)))
     _print("\n".join(report.lines()))
     return AGREED if report.matches else DISAGREED
 

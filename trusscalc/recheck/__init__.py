@@ -7,6 +7,7 @@ result. What was altered by hand, what came from another version, and what a fau
 
 from __future__ import annotations
 
+import hashlib
 import json
 import os
 import warnings
@@ -32,9 +33,9 @@ from trusscalc.statics.owncuts import own_cut
 LARGEST_SHEET: Final = 100_000_000
 """Bytes of a filed sheet that are read."""
 PDF: Final = (
-    "a PDF carries no input to derive it from again; recheck the notebook or HTML filed with it, or write the sheet "
-    "again from the truss file (python -m trusscalc sheet FILE.toml ... --out again.html) and compare the content "
-    "digest printed on both"
+    "a PDF carries no input to derive it from again; give the truss file it was written from, with the same case and "
+    "members (python -m trusscalc recheck sheet.pdf --against FILE.toml --case NAME --members A-B,C-D), or recheck "
+    "the notebook or page filed with it"
 )
 
 
@@ -112,22 +113,58 @@ def recheck(path: str | os.PathLike[str]) -> RecheckReport:
     return kind(_text(place, source), source)
 
 
+def recheck_pdf(path: str | os.PathLike[str], sheet: Sheet) -> RecheckReport:
+    """Write a sheet as PDF again and compare it, byte for byte, with a filed one.
+
+    Parameters
+    ----------
+    path : path
+        The filed PDF.
+    sheet : Sheet
+        Derived again from the truss file.
+
+    Returns
+    -------
+    RecheckReport
+        A PDF is compared as a whole, on either paper; where it differs is not told.
+
+    Raises
+    ------
+    FileFormatError
+        When the file cannot be read.
+    RenderError
+        Without the typesetter.
+    """
+    from trusscalc.render.pdf import PAPERS, pdf  # noqa: PLC0415 - an extra
+
+    source = one_line(os.fspath(path))
+    filed = _content(Path(path), source)
+    derived = {paper: pdf(sheet, paper=paper) for paper in PAPERS}
+    sums = [hashlib.sha256(content).hexdigest() for content in (filed, *derived.values())]
+    where = "the file as a whole (SHA-256; another version of the typesetter changes it too)"
+    found = () if filed in derived.values() else (Difference(where, sums[0], " or ".join(sums[1:])),)
+    record = record_of(sheet)
+    return RecheckReport(source, found, {"bytes": len(filed)}, "an unread PDF", record["program"], record["content"])
+
+
 def _text(place: Path, source: str) -> str:
     try:
-        if not place.is_file():
-            message = "there is no such file; check the name and the folder"
-            raise FileFormatError(message, source=source)
-        with place.open("rb") as file:
-            content = file.read(LARGEST_SHEET + 1)
-        if len(content) > LARGEST_SHEET:
-            message = f"too large: more than {LARGEST_SHEET:,} bytes"
-            raise FileFormatError(message, source=source)
-        return content.decode("utf-8-sig").replace("\r\n", "\n")  # line ends change on their way through mail
+        return _content(place, source).decode("utf-8-sig").replace("\r\n", "\n")  # line ends change in the mail
     except UnicodeDecodeError:
         message = "is not UTF-8 text, so it is no filed sheet"
+    raise FileFormatError(message, source=source)
+
+
+def _content(place: Path, source: str) -> bytes:
+    message = "there is no such file; check the name and the folder"
+    try:
+        if place.is_file():
+            with place.open("rb") as file:
+                content = file.read(LARGEST_SHEET + 1)
+            if len(content) <= LARGEST_SHEET:
+                return content
+            message = f"too large: more than {LARGEST_SHEET:,} bytes"
     except (OSError, ValueError) as problem:
-        if isinstance(problem, FileFormatError):
-            raise
         message = f"cannot be read: {one_line(getattr(problem, 'strerror', None) or str(problem))}"
     raise FileFormatError(message, source=source)
 
@@ -265,4 +302,4 @@ def _must_be_known(record: Mapping[str, Any]) -> None:
         raise FileFormatError([f"record, {name}: is not what this version writes there" for name in wrong])
 
 
-__all__ = ["Difference", "RecheckReport", "derive", "recheck"]
+__all__ = ["Difference", "RecheckReport", "derive", "recheck", "recheck_pdf"]

@@ -82,7 +82,8 @@ def pieces(page: str) -> list[str]:
 def _told(shown: str, derived: str) -> tuple[str, str]:
     """Return what is read in two pieces of markup, or the markup where they read the same."""
     one, other = _read(shown), _read(derived)
-    return excerpts(one, other) if one != other else excerpts(shown, derived)
+    seen = [[letter for letter in text if letter.isprintable()] for text in (one, other)]
+    return excerpts(one, other) if seen[0] != seen[1] else excerpts(shown, derived)
 
 
 def _read(markup: str) -> str:
@@ -160,7 +161,9 @@ class _Reader:
                 self.heading, self.inside = self._heading(number), "heading"
             case "p":
                 self.inside = f"“{self._text(number, '</p>')}”" if 'class="label"' in piece else "text"
-            case "li" | "/table" | "/pre":
+            case "style" | "title":
+                self.inside = name
+            case "li" | "/table" | "/pre" | "/style" | "/title":
                 self.inside = "text"
             case "dt":
                 self.inside = self._text(number, "</dt>")
@@ -178,8 +181,8 @@ class _Reader:
         match name:
             case "table":
                 self.inside, self.columns, self.row, self.cell = "table", [], "head of the table", 0
-            case "caption":
-                self.row = "caption"
+            case "caption" | "thead":
+                self.row = {"caption": "caption", "thead": "head of the table"}[name]
             case "tr":
                 self.cell = 0
                 if self.columns:
