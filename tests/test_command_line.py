@@ -122,6 +122,7 @@ def test_json_has_the_promised_keys_and_types(run: Any) -> None:
     for number, step in enumerate(data["steps"], 1):
         assert {"number", "kind", "kept", "cut", "equations", "solves", "uses", "text"} <= set(step)
         assert step["number"] == number
+        assert all(name in step["text"] for name in step["solves"])
         assert step["kind"] in {"joint", "section", "whole"}
         for equation in step["equations"]:
             place = "centre" if equation["sum"] == "moment" else "direction"
@@ -490,3 +491,110 @@ def test_a_terminal_that_lacks_characters(tmp_path: Path) -> None:
     ran = process(arguments, PYTHONIOENCODING="ascii")
     assert ran.returncode == 0
     assert rb"\xc4-C " in ran.stdout
+
+
+# --- sheets -----------------------------------------------------------------------------------------------
+
+
+@pytest.fixture
+def sheet(capsys: pytest.CaptureFixture[str], tmp_path: Path) -> Any:
+    """Return a function that runs ``sheet`` on a file's text in this process."""
+
+    def runs(text: str, out: str, *options: str, case: str = "snow", members: str = "all") -> Ran:
+        path = tmp_path / "truss.toml"
+        path.write_text(text, "utf-8")
+        code = main(["sheet", str(path), "--case", case, "--members", members, "--out", str(tmp_path / out), *options])
+        out, err = capsys.readouterr()
+        assert "Traceback" not in err
+        return Ran(code, out, err)
+
+    return runs
+
+
+@pytest.mark.parametrize("suffix", [".txt", ".ipynb", ".html"])
+def test_a_sheet_is_written(sheet: Any, tmp_path: Path, suffix: str) -> None:
+    """Exit 0, the file is there, nothing else is, and it names every member with its value."""
+    ran = sheet(FILE, f"sheet{suffix}")
+    assert (ran.code, ran.err) == (0, "")
+    assert {path.name for path in tmp_path.iterdir()} == {"truss.toml", f"sheet{suffix}"}
+    text = (tmp_path / f"sheet{suffix}").read_text("utf-8")
+    assert "Wharf crane" in text
+    assert "6.928" in text
+    if suffix == ".ipynb":
+        assert json.loads(text)["nbformat"] == 4
+
+
+def test_the_same_sheet_again_is_the_same_bytes(tmp_path: Path) -> None:
+    """In two processes with different hash seeds, over the older file."""
+    path = tmp_path / "truss.toml"
+    path.write_text(trade.k_truss(8).file())
+    found = []
+    for seed in ("1", "4711"):
+        out = tmp_path / "sheet.ipynb"
+        arguments = ["sheet", str(path), "--case", "load", "--members", "M2-U3,L2-L3", "--out", str(out)]
+        ran = process(arguments, PYTHONHASHSEED=seed)
+        assert (ran.returncode, ran.stderr) == (0, b"")
+        found.append(out.read_bytes())
+    assert found[0] == found[1]
+
+
+def test_a_sheet_that_does_not_agree_is_written_and_says_so(sheet: Any, tmp_path: Path) -> None:
+    """Exit 1: the engineer gets the paper, with the verdict at its top."""
+    ran = sheet(X_PANEL.file(), "sheet.txt", case="load", members="A-C")
+    assert ran.code == 1
+    text = (tmp_path / "sheet.txt").read_text("utf-8")
+    assert "undecided" in text
+    assert "not all agree" in ran.out
+
+
+REFUSED_SHEETS: dict[str, tuple[str, dict[str, str], str]] = {
+    "unknown member": (FILE, {"members": "A-Q"}, "no member 'A-Q'"),
+    "unknown case": (FILE, {"case": "hail"}, "no case"),
+    "faulty file": (FILE.replace("[joints]", "[joint]"), {}, "joint"),
+    "unstable": (UNSTABLE["a panel without diagonal"][0].file(), {"case": "load"}, "unstable"),
+}
+
+
+@pytest.mark.parametrize("why", REFUSED_SHEETS)
+@pytest.mark.parametrize("suffix", [".txt", ".ipynb"])
+def test_an_older_sheet_stays_untouched_on_error(sheet: Any, tmp_path: Path, why: str, suffix: str) -> None:
+    """Exit 2, nothing written, not even beside it."""
+    text, options, told = REFUSED_SHEETS[why]
+    older = tmp_path / f"sheet{suffix}"
+    older.write_text("filed in spring")
+    refused(sheet(text, older.name, **options), told)
+    assert older.read_text() == "filed in spring"
+    assert {path.name for path in tmp_path.iterdir()} == {"truss.toml", older.name}
+
+
+def test_an_older_sheet_survives_a_failure_while_writing(
+    sheet: Any, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """A disk that is full half way: the older sheet is still whole."""
+    older = tmp_path / "sheet.txt"
+    older.write_text("filed in spring")
+
+    def full(*_: object) -> None:
+        raise OSError(28, "No space left on device")
+
+    monkeypatch.setattr(os, "replace", full)
+    monkeypatch.setattr(Path, "replace", full)
+    refused(sheet(FILE, "sheet.txt"), "No space left")
+    assert older.read_text() == "filed in spring"
+    assert {path.name for path in tmp_path.iterdir()} == {"truss.toml", "sheet.txt"}
+
+
+def test_suffixes_that_no_sheet_has(sheet: Any, tmp_path: Path) -> None:
+    """Told before any work is done, with what it can be; in any case of letters."""
+    for name in ("sheet", "sheet.docx", "sheet.toml", ".txt", "sheet.txt.", "folder/sheet.doc"):
+        refused(sheet(FILE, name), "sheet", ".ipynb", ".txt")
+        assert {path.name for path in tmp_path.iterdir()} <= {"truss.toml"}
+    assert sheet(FILE, "SHEET.TXT").code == 0
+
+
+def test_places_that_cannot_be_written_to(sheet: Any, tmp_path: Path) -> None:
+    """A folder that is not there, or a folder of that name."""
+    refused(sheet(FILE, "absent/sheet.txt"), "absent")
+    (tmp_path / "folder.txt").mkdir()
+    refused(sheet(FILE, "folder.txt"), "folder.txt")
+    assert list((tmp_path / "folder.txt").iterdir()) == []
