@@ -506,10 +506,17 @@ class TestSymbols:
         with pytest.raises(InexactNumberError, match="give the symbol a value"):
             use(symbol("P"))
 
-    def test_no_root_of_a_symbol(self) -> None:
-        """Said, not guessed."""
-        with pytest.raises(InexactNumberError, match="the root of a symbol is not supported"):
-            sqrt(symbol("P"))
+    def test_root_of_symbols(self) -> None:
+        """Symbols are positive: squares of single products come out, sums stay under the root, which squares back."""
+        a, h = symbol("a"), symbol("h")
+        assert sqrt(a * a) == a
+        assert to_text(sqrt(12 * a * a * h)) == "2*a*sqrt(3)*sqrt(h)"
+        length = sqrt((a * a + h * h) / 4)
+        assert to_text(length) == "sqrt(a^2 + h^2)/2"
+        assert length * length == (a * a + h * h) / 4
+        assert length.substitute({"a": rational(4), "h": rational(3)}) == rational(5, 2)
+        with pytest.raises(InexactNumberError, match="root of a negative"):
+            sqrt(-a * a)
 
 
 def test_hashes_tell_nested_numbers_apart() -> None:

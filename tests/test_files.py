@@ -194,7 +194,7 @@ class TestFaults:
             ("L0 = [0, 0]", "L0 = [true, 0]", r"line 7: \[joints\] L0 x: True is not a number"),
             ("L0 = [0, 0]", "L0 = [2025-01-01, 0]", r"line 7: \[joints\] L0 x: .*is not a number"),
             ("L0 = [0, 0]", "L0 = [nan, -inf]", r"line 7: \[joints\] L0 y: '-inf'"),
-            ("L0 = [0, 0]", 'L0 = ["2*P", 0]', r"line 7: \[joints\] L0 x: .*'P' is a symbol, .* in loads only"),
+            ("L0 = [0, 0]", 'L0 = ["2*Q", 0]', r"line 7: \[joints\] L0 x: '2\*Q': 'Q' is not known here"),
             ("L0 = [0, 0]", '"L-0" = [0, 0]', r"line 7: \[joints\] 'L-0': a joint name must not contain '-'"),
             ("U1 = [", "U1.x = [", r"\[joints\] U1: two numbers"),
             ('"L1-L2"]', '"L1-L9"]', r"line 13: \[members\] lower chord 'L1-L9': there is no joint 'L9'; did you mean"),

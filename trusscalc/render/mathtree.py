@@ -17,8 +17,10 @@ from trusscalc.exact import Exact
 from trusscalc.exacttext import ordered_terms
 from trusscalc.sheet.blocks import Bracket, Decimals, Formula, Name, Power, Product, Value
 
-MOST_PLACES: Final = 3
-"""A fraction that ends within so many decimal places may be written as a decimal."""
+MOST_PLACES: Final = 6
+FEW_PLACES: Final = 3
+SMALL_DENOMINATOR: Final = 100
+"""A fraction that ends within few decimal places is written as a decimal; within more, if it is no short fraction."""
 
 Mathematics = Formula | Value | Decimals | Name | Power | Bracket
 
@@ -202,7 +204,8 @@ def _root_below(value: Exact) -> tuple[bool, Node] | None:
 
 def _short_decimal(value: Fraction) -> str:
     scaled = value * 10**MOST_PLACES
-    if scaled.denominator != 1:
+    short = value.denominator < SMALL_DENOMINATOR
+    if scaled.denominator != 1 or (short and (value * 10**FEW_PLACES).denominator != 1):
         return ""
     whole, rest = divmod(abs(int(scaled)), 10**MOST_PLACES)
     text = f"{whole}.{rest:0{MOST_PLACES}d}".rstrip("0").rstrip(".")
