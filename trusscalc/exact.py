@@ -109,7 +109,9 @@ class Exact:
 
     def __sub__(self, other: object) -> Exact:
         right = _operand(other)
-        return NotImplemented if right is None else self + (-right)
+        if right is None:
+            return NotImplemented
+        return self + (-right) if right.terms else Exact(self.terms, self.tower, rounded=self.rounded or right.rounded)
 
     def __rsub__(self, other: object) -> Exact:
         left = _operand(other)

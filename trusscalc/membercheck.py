@@ -261,7 +261,7 @@ def check_members(
         case = LoadCase(case.name, case.loads, symbols=[*truss.symbols, *dict(case.symbols).items()])
         matrix.solve(*at_sample(truss, case, samples(truss, case)[0]))  # stable at the stated values
     equilibrium = matrix.solve(truss, case)
-    structure = structure_of(truss, case)
+    structure = structure_of(truss, case, equilibrium.bars)
     decided = [name for name in wanted if name in equilibrium.tensions]
     steps, tensions = _derivation(structure, equilibrium, decided, case, own, prefer)
     numeric = stiffness.solve(truss, case)

@@ -68,7 +68,7 @@ def cut_report(own: OwnCut, case: LoadCase) -> CutReport:
         When the truss cannot resist every load.
     """
     equilibrium = matrix.solve(own.truss, case)
-    structure = structure_of(own.truss, case)
+    structure = structure_of(own.truss, case, equilibrium.bars)
     search = Search(structure, equilibrium, case.as_floats())
     ways = search.ways_of(own.kept)
     possibilities = tuple(Possibility(about, unknown, known) for about, unknown, known in ways.equations)

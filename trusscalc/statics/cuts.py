@@ -50,9 +50,9 @@ class Structure:
         return float(amount.substitute(self.values) if self.values else amount)
 
 
-def structure_of(truss: Truss, case: LoadCase) -> Structure:
-    """Return truss and case indexed for cutting."""
-    bars = bars_of(truss)
+def structure_of(truss: Truss, case: LoadCase, bars: tuple[Bar, ...] = ()) -> Structure:
+    """Return truss and case indexed for cutting; ``bars`` saves making them again."""
+    bars = bars or bars_of(truss)
     at: dict[str, list[str]] = {joint.name: [] for joint in truss.joints}
     for bar in bars:
         at[bar.start].append(bar.name)

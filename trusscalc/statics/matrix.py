@@ -297,10 +297,10 @@ def _rational_solution(rows: list[dict[int, Exact]], loads: Mapping[int, Exact],
     for index, row in enumerate(rows):
         scaled: Row = {}
         for column, entry in row.items():
-            factor = row_scale[index] * entry * column_scale[column]
+            factor = _scaled(_scaled(entry, row_scale[index]), column_scale[column])
             scaled[column] = factor.terms[UNIT_KEY]
         if index in loads:
-            side = row_scale[index] * loads[index]
+            side = _scaled(loads[index], row_scale[index])
             if side.tower:
                 return None
             for key, coefficient in side.terms.items():
@@ -318,7 +318,12 @@ def _rational_solution(rows: list[dict[int, Exact]], loads: Mapping[int, Exact],
         part.rounded for part in loads.values()
     )
     pivots, free_of, values = _read_off(matrix, width, value)
-    return pivots, free_of, {column: column_scale[column] * amount for column, amount in values.items()}
+    return pivots, free_of, {column: _scaled(amount, column_scale[column]) for column, amount in values.items()}
+
+
+def _scaled(value: Exact, scale: Exact) -> Exact:
+    """Return a product that costs nothing for the usual scale 1."""
+    return value if scale is ONE else value * scale
 
 
 def _scaling(rows: list[dict[int, Exact]], width: int) -> tuple[list[Exact], list[Exact]] | None:
