@@ -7,20 +7,22 @@ that the records themselves need to know nothing of sheets and renderers.
 from __future__ import annotations
 
 import os
+from collections.abc import Callable
 from pathlib import Path
 from typing import Any, Final
 
-from trusscalc.errors import RenderError
+from trusscalc.errors import RenderError, UnstableTrussError
 from trusscalc.exacttext import to_text
 from trusscalc.membercheck import MemberCheck
 from trusscalc.project import Project
 from trusscalc.render.html import html
 from trusscalc.render.notebook import Bundle, bundle, figure_bundle, notebook, step_bundle
+from trusscalc.render.pdf import pdf
 from trusscalc.render.text import step_text, text
 from trusscalc.replacefile import replace_file
 from trusscalc.sheet import compose as composing
 from trusscalc.sheet.blocks import Derivation, Items, Run, Sheet
-from trusscalc.sheet.figures import truss_figure
+from trusscalc.sheet.figures import mechanism_figure, truss_figure
 from trusscalc.sheet.words import about_words, bar, listed
 from trusscalc.statics.cutreport import CutReport, cut_equation, cut_report
 from trusscalc.statics.cuts import Cut
@@ -28,7 +30,12 @@ from trusscalc.statics.owncuts import OwnCut, own_cut
 from trusscalc.statics.steps import Step
 from trusscalc.truss import Truss
 
-WRITERS: Final = {".ipynb": notebook, ".html": html, ".txt": text}
+WRITERS: Final[dict[str, Callable[[Sheet], str | bytes]]] = {
+    ".ipynb": notebook,
+    ".html": html,
+    ".pdf": pdf,
+    ".txt": text,
+}
 """What each suffix is written by."""
 
 
@@ -40,7 +47,7 @@ def save(sheet: Sheet, path: str | os.PathLike[str]) -> Path:
     sheet : Sheet
         What to write.
     path : path
-        Its suffix says how: ``.ipynb``, ``.html`` or ``.txt``.
+        Its suffix says how: ``.ipynb``, ``.html``, ``.pdf`` (on A4; ``render.pdf`` has other paper) or ``.txt``.
 
     Raises
     ------
@@ -52,7 +59,8 @@ def save(sheet: Sheet, path: str | os.PathLike[str]) -> Path:
     place = Path(path)
     refuse_unwritable(place)
     writer = WRITERS[place.suffix.lower()]
-    replace_file(place, writer(sheet).encode())
+    written = writer(sheet)
+    replace_file(place, written.encode() if isinstance(written, str) else written)
     return place
 
 
@@ -164,6 +172,13 @@ def _cut_report_bundle(report: CutReport, **_: Any) -> Bundle:
     return bundle([Items(tuple((term, (Run(text),)) for term, text in items))])
 
 
+def _mechanism_bundle(error: UnstableTrussError, **_: Any) -> dict[str, Any]:
+    """Return the mechanism of a caught error as a notebook shows it: the truss thin, its moving joints with arrows."""
+    if not isinstance(error.truss, Truss):
+        return {"text/plain": str(error)}
+    return figure_bundle(mechanism_figure(error.truss.at_values(), error))
+
+
 CONVENIENCES: Final[dict[type, dict[str, Any]]] = {
     Sheet: {"save": save, "_repr_mimebundle_": _sheet_bundle},
     MemberCheck: {"sheet": _sheet, "derivation": _derivation, "_repr_mimebundle_": _check_bundle},
@@ -173,6 +188,7 @@ CONVENIENCES: Final[dict[type, dict[str, Any]]] = {
     Truss: {"cut": own_cut, "_repr_mimebundle_": _truss_bundle},
     OwnCut: {"report": cut_report, "equation": cut_equation, "_repr_mimebundle_": _own_cut_bundle},
     CutReport: {"_repr_mimebundle_": _cut_report_bundle},
+    UnstableTrussError: {"_repr_mimebundle_": _mechanism_bundle},
 }
 """What ``attach`` hangs on which record."""
 

@@ -82,11 +82,21 @@ class UnstableTrussError(TrusscalcError, ValueError):
         The joints that move in the mechanism.
     mechanism : dict of str to tuple of float
         A displacement of each moving joint, largest component 1 (no unit: only its shape means something).
+    truss : Truss or None
+        The truss that moves, so that a notebook can draw the mechanism of a caught error.
     """
 
-    def __init__(self, message: str, *, joints: Sequence[str], mechanism: dict[str, tuple[float, float]]) -> None:
+    def __init__(
+        self,
+        message: str,
+        *,
+        joints: Sequence[str],
+        mechanism: dict[str, tuple[float, float]],
+        truss: object = None,
+    ) -> None:
         self.joints = tuple(joints)
         self.mechanism = dict(mechanism)
+        self.truss = truss
         super().__init__(message)
 
 

@@ -402,7 +402,7 @@ def _mechanism(
         if {2 * order[joint.name], 2 * order[joint.name] + 1} & set(moves)
     }
     message = _instability_text(truss, bars, len(pivots), names)
-    return UnstableTrussError(message, joints=names, mechanism=shape)
+    return UnstableTrussError(message, joints=names, mechanism=shape, truss=truss)
 
 
 def _instability_text(truss: Truss, bars: tuple[Bar, ...], rank: int, names: list[str]) -> str:
