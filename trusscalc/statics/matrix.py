@@ -26,6 +26,9 @@ from trusscalc.truss import Truss
 GROUND = ""
 """The name of the ground among joints; no joint can have it."""
 
+MOST_NAMED = 100
+"""Joints named in one message."""
+
 Row = dict[int, Any]
 
 
@@ -411,10 +414,12 @@ def _instability_text(truss: Truss, bars: tuple[Bar, ...], rank: int, names: lis
     unknowns = members + links
     count = f"m + r = {members} + {links} = {unknowns} against 2j = {2 * joints}, rank {rank}"
     if unknowns < 2 * joints:
-        cause = f"{2 * joints - unknowns} bars or support links too few"
+        missing = 2 * joints - unknowns
+        cause = "one bar or support link too few" if missing == 1 else f"{missing} bars or support links too few"
     elif rank == unknowns or unknowns == 2 * joints:
         cause = "the count is right but the arrangement is not (a critical form, or one part held too often)"
     else:
         cause = "one part is held more than once and another not at all"
-    who = "the whole truss can move" if len(names) == joints else f"joints that can move: {', '.join(names)}"
+    shown = ", ".join(names[:MOST_NAMED]) + (f" and {len(names) - MOST_NAMED} more" if len(names) > MOST_NAMED else "")
+    who = "the whole truss can move" if len(names) == joints else f"joints that can move: {shown}"
     return f"the truss is unstable ({count}): {cause}; {who}. Add or rearrange members or supports there."
