@@ -162,8 +162,8 @@ def _origin(check: MemberCheck, project: Project, text: str, places: int, *, dra
         stated=tuple((name, to_text(value)) for name, value in results.items()),
         agreed=check.agreed,
         program=record.program(),
-        cuts=tuple((name, tuple(kept)) for name, kept in check.cuts.items()),
+        cuts=tuple((name, tuple(kept)) for name, kept in sorted(check.cuts.items())),
         prefer=check.prefer,
-        names=tuple(project.names.items()),
+        names=tuple(sorted(project.names.items())),
         drawings=drawings,
     )
