@@ -20,6 +20,7 @@ from trusscalc.errors import RenderError
 from trusscalc.render.draw import svg
 from trusscalc.render.pdfdata import Data, Figures, sheet_data, text
 from trusscalc.sheet.blocks import Sheet
+from trusscalc.sheet.digest import record_of
 
 PAPERS: Final = {"A4": "a4", "US Letter": "us-letter"}
 """What each paper is called by the typesetter."""
@@ -62,11 +63,17 @@ def pdf(sheet: Sheet, *, paper: str = "A4") -> bytes:
 def _identity(sheet: Sheet) -> Data:
     """Return what names the document: author, date, program, digests."""
     project = dict(sheet.origin.project)
+    record = record_of(sheet)
+    lines = (
+        f"Written by {sheet.origin.program} with the PDF/A-2b profile. The same input and program give the same sheet.",
+        f"Input digest, SHA-256 of the truss file: {record['input']}",
+        f"Content digest, SHA-256 of everything shown above: {record['content']}",
+    )
     return {
         "language": "en",
         "author": [project["prepared"]] if project.get("prepared") else [],
         "date": _date(project.get("date", "")),
-        "identity": [text(line) for line in (f"{sheet.origin.program}.",)],
+        "identity": [text(line) for line in lines],
     }
 
 

@@ -35,8 +35,8 @@ from trusscalc.sheet.marks import Figure
 
 LONGEST_WORD: Final = 16
 """Characters of a word beyond which it may be broken anywhere: no column holds every name."""
-LISTING_WIDTH: Final = 49
-"""Characters of a line of the truss file; a longer one is continued below without a number."""
+LISTING_WIDTHS: Final = {2: 49, 3: 30}
+"""Characters of a line of the truss file, by the number of columns; a longer one is continued without a number."""
 LEADS: Final = {"conclusion": "Conclusion.", "caution": "Caution."}
 
 Data = dict[str, Any]
@@ -137,7 +137,7 @@ def block_data(block: Block, figures: Figures) -> Data:  # noqa: C901, PLR0911 -
         case Picture(drawings):
             return {"kind": "picture", "figures": [figures.named(figure) for figure in drawings]}
         case Listing(content, caption):
-            return {"kind": "listing", "caption": text(caption), "lines": listing(content)}
+            return _listing(content, caption)
         case Derivation():
             return _derivation(block, figures)
     message = f"{type(block).__name__} is a block this version cannot write as PDF"
@@ -202,29 +202,37 @@ def text(written: str, style: str = "") -> list[Any]:
     return found
 
 
-def listing(content: str) -> list[list[Any]]:
-    """Return the lines of a text with their numbers; what is longer than a line is continued under number 0.
+def listing(content: str, width: int) -> list[list[Any]]:
+    r"""Return the lines of a text with their numbers; what is longer than a line is continued under number 0.
 
     Examples
     --------
-    >>> listing("a = 1\\n\\nb = 2\\n")
-    [[1, 'a = 1'], [2, ''], [3, 'b = 2']]
+    >>> listing("a = 1\n\nbb = 22\n", 5)
+    [[1, 'a = 1'], [2, ''], [3, 'bb = '], [0, '22']]
     """
     found: list[list[Any]] = []
     for number, line in enumerate(content.rstrip("\n").split("\n"), 1):
         rest = line.removesuffix("\r").expandtabs(4)
-        found.append([number, rest[: _fitting(rest)]])
-        while rest := rest[_fitting(rest) :]:
-            found.append([0, rest[: _fitting(rest)]])
+        size = _fitting(rest, width)
+        found.append([number, rest[:size]])
+        while rest := rest[size:]:
+            size = _fitting(rest, width)
+            found.append([0, rest[:size]])
     return found
 
 
-def _fitting(line: str) -> int:
+def _fitting(line: str, width: int) -> int:
     """Return how much of a line is set: up to a blank where there is one in its second half."""
-    if len(line) <= LISTING_WIDTH:
+    if len(line) <= width:
         return len(line)
-    blank = line.rfind(" ", LISTING_WIDTH // 2, LISTING_WIDTH) + 1
-    return blank or LISTING_WIDTH
+    return line.rfind(" ", width // 2, width) + 1 or width
+
+
+def _listing(content: str, caption: str) -> Data:
+    """Return a text in as many columns as make it shortest."""
+    by_columns = {columns: listing(content, width) for columns, width in LISTING_WIDTHS.items()}
+    best = min(by_columns, key=lambda columns: (-(-len(by_columns[columns]) // columns), columns))
+    return {"kind": "listing", "caption": text(caption), "columns": best, "lines": by_columns[best]}
 
 
 # --- tables -----------------------------------------------------------------------------------------------
