@@ -44,6 +44,8 @@ UPRIGHT_SECTION = -2.0
 RIGHT_HALF = 1.0
 PAIR = 16.0
 NOT_PREFERRED = 150.0
+ALL_BUT_A_JOINT = 20.0
+"""Whoever cuts off one joint writes its equations, not those of all the rest."""
 FEW_BARS = 3
 MANY_BARS = 5
 CHORD_BARS = 4
@@ -211,6 +213,9 @@ class Prices:
         price += EXTRA_PIECE * body.surplus
         if body.found == "other":
             price += BENT
+            natural = False
+        if (self.whole & ~body.kept).bit_count() == 1:
+            price += ALL_BUT_A_JOINT
             natural = False
         if spans and max(low for low, _ in spans) < min(high for _, high in spans) - 1e-9 * self.diagonal:
             price += UPRIGHT_SECTION
