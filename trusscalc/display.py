@@ -7,27 +7,33 @@ that the records themselves need to know nothing of sheets and renderers.
 from __future__ import annotations
 
 import os
-from collections.abc import Callable
+from collections.abc import Callable, Iterable
 from pathlib import Path
 from typing import Any, Final
 
 from trusscalc.errors import RenderError, UnstableTrussError
+from trusscalc.exact import Exact
 from trusscalc.exacttext import to_text
-from trusscalc.membercheck import MemberCheck
+from trusscalc.loads import LoadCase
+from trusscalc.membercheck import ForceCheck, MemberCheck
 from trusscalc.project import Project
 from trusscalc.render.html import html
-from trusscalc.render.notebook import Bundle, bundle, figure_bundle, notebook, step_bundle
+from trusscalc.render.mathtext import Latex
+from trusscalc.render.notebook import PLACES, Bundle, bundle, figure_bundle, notebook, step_bundle
 from trusscalc.render.pdf import pdf
 from trusscalc.render.text import step_text, text
 from trusscalc.replacefile import replace_file
 from trusscalc.sheet import compose as composing
-from trusscalc.sheet.blocks import Derivation, Items, Run, Sheet
-from trusscalc.sheet.figures import mechanism_figure, truss_figure
-from trusscalc.sheet.words import about_words, bar, listed
+from trusscalc.sheet.blocks import Derivation, Inline, Items, Labelled, Lines, Picture, Run, Sheet, Value
+from trusscalc.sheet.derivation import NOTHING
+from trusscalc.sheet.equations import times
+from trusscalc.sheet.figures import Figure, cut_figure, mechanism_figure, truss_figure
+from trusscalc.sheet.values import decimal_text, formula
+from trusscalc.sheet.words import Symbols, about_words, bar, capital, listed, numbered, sum_label
 from trusscalc.statics.cutreport import CutReport, cut_equation, cut_report
 from trusscalc.statics.cuts import Cut
 from trusscalc.statics.owncuts import OwnCut, own_cut
-from trusscalc.statics.steps import Step
+from trusscalc.statics.steps import Equation, Step
 from trusscalc.truss import Truss
 
 WRITERS: Final[dict[str, Callable[[Sheet], str | bytes]]] = {
@@ -122,6 +128,48 @@ def _truss_bundle(truss: Truss, **_: Any) -> dict[str, Any]:
     return figure_bundle(truss_figure(truss.at_values()))
 
 
+def _figure_bundle(figure: Figure, **_: Any) -> dict[str, Any]:
+    """Return a figure as a notebook shows it."""
+    return figure_bundle(figure)
+
+
+def _number_bundle(number: Exact, **_: Any) -> Bundle:
+    """Return an exact number typeset, and as the text that can be read in again."""
+    return {"text/latex": rf"$\displaystyle {Latex().write(Value(number))}$", "text/plain": to_text(number)}
+
+
+def _force_bundle(force: ForceCheck, **_: Any) -> Bundle:
+    """Return everything about one force; decimals as the summary prints them."""
+    items: list[tuple[str, Inline]] = [("Force", Run(bar(force.name)))]
+    if force.exact is not None and force.decimal is not None:
+        decimal = _decimal(force.decimal) if force.exact.symbols else decimal_text(force.exact, PLACES)
+        items += [("Exact", Value(force.exact)), ("Decimal", Run(decimal.replace("-", "−")))]
+    if force.sense is not None:
+        items.append(("T/C", Run(force.sense)))
+    if force.stiffness is not None:
+        items.append(("Stiffness route", Run(_decimal(force.stiffness))))
+    items.append(("Verdict", Run(f"{force.verdict}{f': {force.reason}' if force.reason else ''}")))
+    items.append(("Rests on steps", Run(listed(map(str, force.steps)) or "none")))
+    return bundle([Items(tuple((term, (content,)) for term, content in items))])
+
+
+def _decimal(value: float) -> str:
+    return f"{value:.{PLACES}f}".replace("-", "−")
+
+
+def _equation_bundle(equation: Equation, **_: Any) -> Bundle:
+    """Return an equation as a line in symbols, with what drops out of it."""
+    loaded = [term.name for term in equation.terms if term.kind == "load"]
+    symbols = Symbols(numbered((*equation.cut.bars, *loaded)), frozenset(loaded))
+    unvalued = LoadCase("", {})
+    sought = [(term, symbols.of(term, sought=term.kind == "member")) for term in equation.terms]
+    products = tuple(times(equation, term.coefficient, symbol, unvalued) for term, symbol in sought)
+    items = [("Joints kept", listed(equation.cut.kept)), ("Drop out", listed(map(bar, equation.dropped)) or "none")]
+    items += [(f"({number})", bar(name)) for name, number in symbols.numbers.items()]
+    line = Labelled(sum_label(equation, "part kept"), formula(products, NOTHING))
+    return bundle([Lines((line,)), _items(items)])
+
+
 def _step_bundle(step: Step, **_: Any) -> Bundle:
     """Return a step's facts; its card needs the check (``check.derivation(number)``)."""
     items = [(f"Step {step.number}", f"{step.kind}{f', section {step.letter}–{step.letter}' if step.letter else ''}")]
@@ -130,46 +178,47 @@ def _step_bundle(step: Step, **_: Any) -> Bundle:
         for equation in step.equations
     ]
     items += [(bar(name), to_text(value)) for name, value in step.results.items()]
-    return bundle([Items(tuple((term, (Run(text),)) for term, text in items))])
+    return bundle([_items(items)])
 
 
 def _cut_bundle(cut: Cut, **_: Any) -> Bundle:
     """Return a cut's facts: what is kept, and which bars hold it."""
-    items = (
-        ("Kind", (Run(cut.kind),)),
-        ("Joints kept", (Run(listed(cut.kept)),)),
-        ("Bars cut", (Run(listed(map(bar, cut.bars)) or "none"),)),
-    )
-    return bundle([Items(items)])
+    return bundle([_items([("Kind", cut.kind), *_kept_and_cut(cut)])])
 
 
 def _own_cut_bundle(cut: OwnCut, **_: Any) -> Bundle:
-    """Return an own cut's facts: what is kept, and which bars hold it."""
-    items = (
-        ("Joints kept", (Run(listed(cut.kept)),)),
-        ("Bars cut", (Run(listed(map(bar, cut.bars)) or "none"),)),
-    )
-    return bundle([Items(items)])
+    """Return an own cut drawn in its truss, and its facts."""
+    return bundle([Picture((cut_figure(cut.truss, cut.kept),)), _items(_kept_and_cut(cut))])
 
 
 def _cut_report_bundle(report: CutReport, **_: Any) -> Bundle:
     """Return what a cut can do: what it decides or why not, and what each equation leaves unknown."""
     items = [
-        ("Joints kept", listed(report.cut.kept)),
-        ("Bars cut", listed(map(bar, report.cut.bars))),
+        *_kept_and_cut(report.cut),
         ("Unknown", listed(map(bar, report.unknown)) or "none"),
         ("Solves alone", listed(map(bar, report.solves)) or "nothing"),
     ]
     if report.together:
         items.append(("Solves together", listed(map(bar, report.together))))
     if report.reason:
-        items.append(("Why nothing", report.reason))
+        reason = report.reason
+        for name in report.unknown:
+            reason = reason.replace(name, bar(name))
+        items.append(("Why nothing", reason))
     if report.nearest:
         items.append(("Nearest cut that does", f"keep {listed(report.nearest)}"))
     for way in report.possibilities[:6]:
         left = listed(map(bar, way.unknown)) or "nothing"
-        items.append((about_words(way.about), f"leaves {left} unknown"))
-    return bundle([Items(tuple((term, (Run(text),)) for term, text in items))])
+        items.append((capital(about_words(way.about)), f"leaves {left} unknown"))
+    return bundle([_items(items)])
+
+
+def _kept_and_cut(cut: Cut | OwnCut) -> list[tuple[str, str]]:
+    return [("Joints kept", listed(cut.kept)), ("Bars cut", listed(map(bar, cut.bars)) or "none")]
+
+
+def _items(items: Iterable[tuple[str, str]]) -> Items:
+    return Items(tuple((term, (Run(text),)) for term, text in items))
 
 
 def _mechanism_bundle(error: UnstableTrussError, **_: Any) -> dict[str, Any]:
@@ -184,6 +233,10 @@ CONVENIENCES: Final[dict[type, dict[str, Any]]] = {
     MemberCheck: {"sheet": _sheet, "derivation": _derivation, "_repr_mimebundle_": _check_bundle},
     Derivation: {"_repr_mimebundle_": _derivation_bundle},
     Step: {"_repr_mimebundle_": _step_bundle},
+    Equation: {"_repr_mimebundle_": _equation_bundle},
+    ForceCheck: {"_repr_mimebundle_": _force_bundle},
+    Exact: {"_repr_mimebundle_": _number_bundle},
+    Figure: {"_repr_mimebundle_": _figure_bundle},
     Cut: {"_repr_mimebundle_": _cut_bundle},
     Truss: {"cut": own_cut, "_repr_mimebundle_": _truss_bundle},
     OwnCut: {"report": cut_report, "equation": cut_equation, "_repr_mimebundle_": _own_cut_bundle},

@@ -22,6 +22,7 @@ from trusscalc.sheet.chains import draw_dimensions
 from trusscalc.sheet.inscriptions import Scale, scales
 from trusscalc.sheet.marks import Figure, Mark
 from trusscalc.sheet.wholetruss import WholeTruss, value_text
+from trusscalc.statics.cuts import cut_of, structure_of
 from trusscalc.truss import Truss
 
 HIGHEST_TOWER: Final = 150.0
@@ -232,6 +233,39 @@ def truss_figure(truss: Truss, case: LoadCase | None = None, *, width: float = F
         return f"Elevation {drawing.scale.text}, lengths in {METRES[truss.length]}{loads}.{drawing.remarks()}"
 
     alt = f"Truss with {len(truss.joints)} joints and {len(truss.members)} members."
+    return _fitted(truss, width, draw, caption, alt)
+
+
+def cut_figure(truss: Truss, kept: Collection[str], *, width: float = FULL_WIDTH) -> Figure:
+    """Return the truss with a cut of the engineer's own: what is cut in heavy lines, the section line where it has one.
+
+    Parameters
+    ----------
+    truss : Truss
+        The truss.
+    kept : collection of str
+        The joints on the kept side.
+    width : float
+        Width on paper in mm.
+    """
+    truss = truss.at_values()
+    cut = cut_of(structure_of(truss, LoadCase("", {})), kept)
+
+    def draw(scale: Scale) -> WholeTruss:
+        drawing = WholeTruss(truss, scale)
+        drawing.bars(lambda name: HEAVY if name in cut.bars else LIGHT)
+        drawing.supports()
+        if cut.kind == "section":
+            drawing.section(cut, "a")
+        drawing.sketch.write_pending()
+        drawing.joints()
+        return drawing
+
+    def caption(drawing: WholeTruss) -> str:
+        line = " Section line: arrows towards the part kept." if drawing.letters else ""
+        return f"Elevation {drawing.scale.text}. Heavy lines: members cut.{line}{drawing.remarks()}"
+
+    alt = f"Truss with a cut; joints kept: {words.listed(cut.kept)}; cut: {_names(cut.bars)}."
     return _fitted(truss, width, draw, caption, alt)
 
 

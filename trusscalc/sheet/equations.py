@@ -114,10 +114,7 @@ class EquationWriter:
 
     def product(self, equation: Equation, coefficient: Exact, force: Name | Number) -> Product:
         """Return coefficient times force; a coefficient 1 is not written."""
-        size, negative = coefficient.written_size(), coefficient.reads_negative()
-        if size == ONE:
-            return Product(negative, (force,))
-        return Product(negative, (self._coefficient(equation, size), force))
+        return times(equation, coefficient, force, self.case)
 
     def evaluated(self, written: Written) -> Product:
         """Return a product multiplied out: exactly, or as a pencil does where rounded digits stand in it."""
@@ -125,9 +122,6 @@ class EquationWriter:
         if rough is not None:
             return Product(rough.text.startswith("-"), (Decimals(rough.text.removeprefix("-")),))
         return signed(printed(written.value, self.case))
-
-    def _coefficient(self, equation: Equation, size: Exact) -> Number:
-        return printed(size, self.case, "arm" if equation.about.sum == "moment" else "cosine")
 
     def _together(self, equation: Equation, alike: Sequence[Entry]) -> Written:
         """Return equal loads as one product: sum of arms, or their count, times the load."""
@@ -138,10 +132,10 @@ class EquationWriter:
         sizes = [entry.coefficient.written_size() for entry in alike]
         factors: tuple[Number, ...]
         if all(size == sizes[0] for size in sizes):
-            coefficient = () if sizes[0] == ONE else (self._coefficient(equation, sizes[0]),)
+            coefficient = () if sizes[0] == ONE else (coefficient_of(equation, sizes[0], self.case),)
             factors = (Value(rational(len(alike))), *coefficient)
         else:
-            factors = (Bracket(tuple(plus(self._coefficient(equation, size)) for size in sizes)),)
+            factors = (Bracket(tuple(plus(coefficient_of(equation, size, self.case)) for size in sizes)),)
         return Written(Product(negative, (*factors, amount)), value)
 
     # --- many loads ---------------------------------------------------------------------------------------
@@ -192,6 +186,18 @@ class EquationWriter:
     def _row(self, name: str, axis: str, force: Exact, product: Exact) -> tuple[Inline | None, ...]:
         numbers = (printed(number, self.case) for number in (force, product / force, product))
         return (Run(f"{name}, {axis}"), *numbers)
+
+
+def times(equation: Equation, coefficient: Exact, force: Name | Number, case: LoadCase) -> Product:
+    """Return coefficient times force as it stands in an equation; a coefficient 1 is not written."""
+    size = coefficient.written_size()
+    before = () if size == ONE else (coefficient_of(equation, size, case),)
+    return Product(coefficient.reads_negative(), (*before, force))
+
+
+def coefficient_of(equation: Equation, size: Exact, case: LoadCase) -> Number:
+    """Return an arm or a cosine, without its sign, as it is printed."""
+    return printed(size, case, "arm" if equation.about.sum == "moment" else "cosine")
 
 
 def unscaled(product: Exact, scale: Exact) -> Exact:

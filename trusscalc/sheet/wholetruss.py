@@ -218,12 +218,11 @@ class WholeTruss:
                 letter = letters.get(words.members_cut(structure, equation.cut), "")
                 if equation.cut.kind == "section" and letter and letter not in drawn:
                     drawn.add(letter)
-                    if self._section(equation.cut, letter):
-                        self.letters.append(letter)
-                    else:
+                    if not self.section(equation.cut, letter):
                         self.notes.append(f"Section {words.section(letter)} is shown with its free body")
 
-    def _section(self, cut: Cut, letter: str) -> bool:
+    def section(self, cut: Cut, letter: str) -> bool:
+        """Draw one section line with its letter; False when no line goes through the members cut alone."""
         place, kept = self.sketch.place, set(cut.kept)
         segments, others = {}, []
         for member in self.truss.members:
@@ -238,6 +237,7 @@ class WholeTruss:
             return False
         xs, ys = zip(*(place[name] for name in kept), strict=True)
         draw_section_line(self.sketch, line, letter, (sum(xs) / len(xs), sum(ys) / len(ys)))
+        self.letters.append(letter)
         return True
 
     def continued(self) -> None:

@@ -81,10 +81,14 @@ class Symbols:
 
 def symbols_of(structure: Structure) -> Symbols:
     """Return the symbols of all forces of a truss under its loads."""
-    names = [*structure.bars, *structure.joints]
-    numbered = [name for name in names if len(name) > LONGEST_SUBSCRIPT or not _is_plain(name)]
     both = {name for name, (fx, fy) in structure.loads.items() if fx and fy}
-    return Symbols({name: place for place, name in enumerate(numbered, 1)}, frozenset(both))
+    return Symbols(numbered((*structure.bars, *structure.joints)), frozenset(both))
+
+
+def numbered(names: Iterable[str]) -> dict[str, int]:
+    """Return numbers for those names that do not fit a subscript, or hold signs that would read as mathematics."""
+    unfit = [name for name in names if len(name) > LONGEST_SUBSCRIPT or not _is_plain(name)]
+    return {name: place for place, name in enumerate(unfit, 1)}
 
 
 def _is_plain(name: str) -> bool:
