@@ -88,6 +88,14 @@ class Board:
         """Draw a line through points."""
         self.put(layer, Stroke(tuple(points), width, ink, dash), room=room)
 
+    def sense_line(self, start: Point, end: Point, sense: str | None) -> None:
+        """Draw a line in the style of a sense: T single, C double, anything else thin."""
+        if sense == "C":
+            self.line(start, end, width=STRUT)
+            self.line(start, end, width=STRUT_INSIDE, layer="inside", ink="white", room=False)
+        else:
+            self.line(start, end, width=TIE if sense == "T" else THIN)
+
     def joint(self, place: Point, *, diameter: float = JOINT) -> None:
         """Draw a joint."""
         self.put("joint", Ring(place, diameter, LIGHT))
@@ -199,6 +207,23 @@ def around(place: Point, label: Label, distance: float, directions: Iterable[Poi
         spot = place[0] + reach * ux, place[1] + reach * uy
         # written out: dataclasses.replace costs more than all the rest here
         yield Label(spot, label.text, label.size, label.subscript, angle=label.angle, ink=label.ink, style=label.style)
+
+
+def along_line(start: Point, end: Point, label: Label, gap: float, inside: Point) -> Iterator[Label]:
+    """Yield a label along a line, readable from below or from the right: its middle first, away from a point first."""
+    way = unit(start, end)
+    angle = math.degrees(math.atan2(way[1], way[0]))
+    if angle > 90.001 or angle <= -89.999:  # noqa: PLR2004 - readable from below or from the right
+        angle += 180.0 if angle < 0 else -180.0
+    normal = (-way[1], way[0])
+    middle = ((start[0] + end[0]) / 2, (start[1] + end[1]) / 2)
+    outside = (middle[0] - inside[0]) * normal[0] + (middle[1] - inside[1]) * normal[1]
+    sides = [normal, (-normal[0], -normal[1])] if outside >= 0 else [(-normal[0], -normal[1]), normal]
+    turned = replace(label, angle=angle)
+    for shift in (0.0, 0.06, -0.06, 0.12, -0.12, 0.18, -0.18):
+        spot = along(middle, way, shift * math.dist(start, end))
+        for side in sides:
+            yield from around(spot, turned, gap, [side])
 
 
 def _push(box: Box, ux: float, uy: float) -> float:

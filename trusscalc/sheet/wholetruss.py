@@ -16,13 +16,10 @@ from trusscalc.sheet.board import (
     LIGHT,
     MEDIUM,
     SMALL_SIZE,
-    STRUT,
-    STRUT_INSIDE,
     THIN,
-    TIE,
     VALUE_SIZE,
     Board,
-    along,
+    along_line,
     around,
     unit,
 )
@@ -118,15 +115,7 @@ class WholeTruss:
             item = check.members.get(member.name)
             sense = item.sense if item is not None else None
             for start, end in self.pieces(member.name):
-                self.sense_line(start, end, sense)
-
-    def sense_line(self, start: Point, end: Point, sense: str | None) -> None:
-        """Draw a line in the style of a sense: T single, C double, anything else thin."""
-        if sense == "C":
-            self.board.line(start, end, width=STRUT)
-            self.board.line(start, end, width=STRUT_INSIDE, layer="inside", ink="white", room=False)
-        else:
-            self.board.line(start, end, width=TIE if sense == "T" else THIN)
+                self.board.sense_line(start, end, sense)
 
     def supports(self) -> None:
         """Draw the supports."""
@@ -278,7 +267,7 @@ class WholeTruss:
             if math.dist(*self.ends(name)) < text_width(label.text, label.size):
                 self.without_room.append(name)
                 continue
-            if not self.board.write(self._along_member(name, label, gap), must=False, gap=0.15):
+            if not self.board.write(along_line(*self.ends(name), label, gap - 0.35, self.middle), must=False, gap=0.15):
                 self.without_room.append(name)
 
     def _is_labelled(self, name: str) -> bool:
@@ -290,22 +279,6 @@ class WholeTruss:
         low, high = self.span
         last = high >= max(x for x, _ in self.flat.values()) - EDGE
         return low - EDGE <= middle < high - EDGE or (last and abs(middle - high) <= EDGE)
-
-    def _along_member(self, name: str, label: Label, gap: float) -> Iterator[Label]:
-        a, b = self.ends(name)
-        way = unit(a, b)
-        angle = math.degrees(math.atan2(way[1], way[0]))
-        if angle > 90.001 or angle <= -89.999:  # noqa: PLR2004 - readable from below or from the right
-            angle += 180.0 if angle < 0 else -180.0
-        normal = (-way[1], way[0])
-        middle = ((a[0] + b[0]) / 2, (a[1] + b[1]) / 2)
-        outside = (middle[0] - self.middle[0]) * normal[0] + (middle[1] - self.middle[1]) * normal[1]
-        sides = [normal, (-normal[0], -normal[1])] if outside >= 0 else [(-normal[0], -normal[1]), normal]
-        turned = Label(label.place, label.text, label.size, angle=angle)
-        for shift in (0.0, 0.06, -0.06, 0.12, -0.12, 0.18, -0.18):
-            spot = along(middle, way, shift * math.dist(a, b))
-            for side in sides:
-                yield from around(spot, turned, gap - 0.35, [side])
 
     def legend(self, check: MemberCheck) -> None:
         """Draw what the line styles mean, below everything."""
@@ -328,7 +301,7 @@ class WholeTruss:
         x = (left + right) / 2 - (sum(lengths) + space * (len(entries) - 1)) / 2
         for (sense, text), length in zip(entries, lengths, strict=True):
             ends = (x, level), (x + size, level)
-            self.sense_line(*ends, sense)
+            self.board.sense_line(*ends, sense)
             self.board.put("lettering", Label((x + size + 2.0, level), text, VALUE_SIZE, anchor="left"))
             x += length + space
 
