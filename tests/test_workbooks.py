@@ -15,8 +15,6 @@ from __future__ import annotations
 import base64
 import difflib
 import hashlib
-import html
-import os
 import re
 import shutil
 import sys
