@@ -19,7 +19,7 @@ LAYERS = (
     *("filetext", "replacefile", "files", "symbolparts", "samples", "statics.matrix", "statics.cuts"),
     *("statics.incidence", "statics.bodies", "statics.prices", "statics.derivations", "statics.bridges"),
     *("statics.carrying", "statics.plan", "statics.steps", "statics.owncuts", "statics.cutreport"),
-    *("statics.zeroforce", "stiffness", "membercheck", "report", "compare", "sheet", "render", "recheck", "widgets"),
+    *("statics.zeroforce", "stiffness", "verdicts", "membercheck", "report", "compare", "sheet", "render", "recheck", "widgets"),
     *("display", "__init__", "__main__"),
 )
 AT_CALL_TIME = {("exact", "exacttext")}

@@ -13,7 +13,7 @@ import replay
 import trade_trusses as trade
 from stated_truss import Stated
 
-from trusscalc import membercheck, stiffness
+from trusscalc import membercheck, stiffness, verdicts
 from trusscalc.__main__ import main
 from trusscalc.errors import InputError, UnknownNameError, UnstableTrussError
 from trusscalc.loads import LoadCase
@@ -264,7 +264,7 @@ def test_a_nearly_critical_form_is_undecided() -> None:
     )
     check = flat.check()
     expected = replay.forces_of(flat)
-    assert check.tolerance > membercheck.WIDEST_TOLERANCE
+    assert check.tolerance > verdicts.WIDEST_TOLERANCE
     for name, item in check.members.items():
         assert item.verdict == "undecided"
         assert "critical" in item.reason
