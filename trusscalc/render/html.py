@@ -53,7 +53,7 @@ MOST_TURNED: Final = 3
 WIDE_FIELDS: Final = ("Project", "Structure")
 POLICY: Final = "default-src 'none'; style-src 'unsafe-inline'"
 """What a browser may load for this page: nothing."""
-_JOINED: Final = re.compile(r"((?<![^\s(])[^\s()–]{1,12}–[^\s()–]{1,12}(?![^\s)]))")
+_JOINED: Final = re.compile(r"((?<![^\s(])[^\s()–.,;:]{1,12}–[^\s()–.,;:]{1,12}(?![^\s).,;:]))")
 RUNNING: Final = (("Project", "Location", "Contract"), ("Calculation", "Revision", "Date", "Prepared"))
 
 
@@ -96,7 +96,7 @@ def html(sheet: Sheet, *, draw: Svg = svg) -> str:
     return "\n".join(lines)
 
 
-def escaped(text: str) -> str:
+def escaped(text: str, *, quote: bool = True) -> str:
     r"""Return free text that is text and nothing else, in elements and in quoted attributes.
 
     Examples
@@ -104,7 +104,7 @@ def escaped(text: str) -> str:
     >>> escaped("A<b> & 'c'\r")
     'A&lt;b&gt; &amp; &#x27;c&#x27;&#13;'
     """
-    return entities.escape(text).replace("\r", "&#13;")
+    return entities.escape(text, quote=quote).replace("\r", "&#13;")
 
 
 def _running_head(fields: Sequence[tuple[str, str]]) -> str:
@@ -200,7 +200,7 @@ class _Page:
 
     def heading(self, block: Heading) -> str:
         """Return a heading; one of the second level opens a part."""
-        self.place = block.text
+        self.place = block.text if block.level > 1 else "Summary"
         number = f'<span class="number">{escaped(block.number)}</span> ' if block.number else ""
         right = f' <span class="value">{escaped(block.right)}</span>' if block.right else ""
         words = f'{number}<span class="what">{escaped(block.text)}</span>{right}'
@@ -308,7 +308,8 @@ def _number(value: Value) -> str:
 def _paragraph(block: Paragraph) -> str:
     if block.role in ("conclusion", "caution"):
         return f'<p class="{block.role}"><strong>{block.role.capitalize()}.</strong> {inline(block.content)}</p>'
-    return f"<p{' class=' + chr(34) + 'note' + chr(34) if block.role == 'note' else ''}>{inline(block.content)}</p>"
+    mark = ' class="note"' if block.role == "note" else ""
+    return f"<p{mark}>{inline(block.content)}</p>"
 
 
 def _items(items: Sequence[tuple[str, tuple[Inline, ...]]]) -> str:
@@ -335,7 +336,7 @@ def _seal(block: Seal) -> str:
 def _verbatim(name: str, text: str) -> str:
     """Return text as it is; a browser leaves out the line end after the tag, so that one is put there."""
     mark = f' id="{name}"' if name else ""
-    return f"<pre{mark}>\n{escaped(text)}</pre>"
+    return f"<pre{mark}>\n{escaped(text, quote=False)}</pre>"
 
 
 # --- mathematics and tables -------------------------------------------------------------------------------
@@ -360,7 +361,8 @@ def _table(block: Table, name: str) -> str:
         for column, cell in zip(block.columns, row, strict=True):
             tag = 'th scope="row"' if not cells and cell is not None else "td"
             cells.append(f"<{tag}{_aligned(column.align)}>{_cell(cell, strong=strong)}</{tag[:2]}>")
-        rows.append(f"<tr{f' class={chr(34)}{kind}{chr(34)}' if kind else ''}>{''.join(cells)}</tr>")
+        mark = f' class="{kind}"' if kind else ""
+        rows.append(f"<tr{mark}>{''.join(cells)}</tr>")
     short = " short" if len(rows) <= SHORT_TABLE else ""
     lines = [f'<div class="table{short}" role="group" aria-label="{escaped(name)}" tabindex="0">', "<table>"]
     lines += [_caption(block, name), f"<thead><tr>{head}</tr></thead>", "<tbody>", *rows, "</tbody>"]

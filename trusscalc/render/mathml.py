@@ -55,7 +55,9 @@ class MathML(Language):
 
     def force(self, base: str, subscript: str, *, sought: bool) -> str:
         """Return a force with its subscript, the sought one in the accent's ink."""
-        symbol = f"<mrow><mo>Σ</mo><mi>{_text(base[1:])}</mi></mrow>" if base.startswith("Σ") else self.letter(base)
+        symbol = self.letter(base)
+        if base.startswith("Σ"):
+            symbol = f'<mrow><mo lspace="0" rspace="0">Σ</mo>{self.letter(base[1:])}</mrow>'
         mark = ' class="sought"' if sought else ""
         return f"<msub{mark}>{symbol}<mtext>{_text(subscript)}</mtext></msub>"
 
