@@ -24,12 +24,12 @@ from trusscalc.render.pdf import pdf
 from trusscalc.render.text import step_text, text
 from trusscalc.replacefile import replace_file
 from trusscalc.sheet import compose as composing
-from trusscalc.sheet.blocks import Derivation, Inline, Items, Labelled, Lines, Picture, Run, Sheet, Value
+from trusscalc.sheet.blocks import Column, Derivation, Inline, Items, Labelled, Lines, Picture, Run, Sheet, Table, Value
 from trusscalc.sheet.derivation import NOTHING
 from trusscalc.sheet.equations import times
 from trusscalc.sheet.figures import Figure, cut_figure, mechanism_figure, truss_figure
 from trusscalc.sheet.values import decimal_text, formula
-from trusscalc.sheet.words import Symbols, about_words, bar, capital, listed, numbered, sum_label
+from trusscalc.sheet.words import Symbols, about_words, bar, listed, numbered, sum_label
 from trusscalc.statics.cutreport import CutReport, cut_equation, cut_report
 from trusscalc.statics.cuts import Cut
 from trusscalc.statics.owncuts import OwnCut, own_cut
@@ -43,6 +43,8 @@ WRITERS: Final[dict[str, Callable[[Sheet], str | bytes]]] = {
     ".txt": text,
 }
 """What each suffix is written by."""
+MOST_POSSIBILITIES: Final = 6
+"""Equations of a cut that are shown, those with fewest unknowns first."""
 
 
 def save(sheet: Sheet, path: str | os.PathLike[str]) -> Path:
@@ -207,10 +209,11 @@ def _cut_report_bundle(report: CutReport, **_: Any) -> Bundle:
         items.append(("Why nothing", reason))
     if report.nearest:
         items.append(("Nearest cut that does", f"keep {listed(report.nearest)}"))
-    for way in report.possibilities[:6]:
-        left = listed(map(bar, way.unknown)) or "nothing"
-        items.append((capital(about_words(way.about)), f"leaves {left} unknown"))
-    return bundle([_items(items)])
+    rows = tuple(
+        (Run(about_words(way.about)), Run(listed(map(bar, way.unknown)) or "nothing"))
+        for way in report.possibilities[:MOST_POSSIBILITIES]
+    )
+    return bundle([_items(items), Table((Column("equation"), Column("leaves unknown")), rows)])
 
 
 def _kept_and_cut(cut: Cut | OwnCut) -> list[tuple[str, str]]:
