@@ -37,6 +37,8 @@ HIGHEST: Final = 110.0
 MARGIN: Final = 0.5
 GRID: Final = 5.0
 """Heights of figures are multiples of this, so that text beside them keeps its lines."""
+SHORTEST: Final = 0.05
+"""Lines and gaps shorter than this are not seen."""
 LAYERS: Final = ("dimension", "bar", "inside", "symbol", "joint", "lettering")
 Layer = Literal["dimension", "bar", "inside", "symbol", "joint", "lettering"]
 Style = Literal["plain", "italic", "bold italic"]
@@ -58,6 +60,16 @@ def angle_between(first: Point, second: Point) -> float:
     """Return the angle between two unit vectors in degrees, 0 to 180."""
     dot = max(-1.0, min(1.0, first[0] * second[0] + first[1] * second[1]))
     return math.degrees(math.acos(dot))
+
+
+def fall_together(first: tuple[Point, Point], second: tuple[Point, Point], near: float) -> bool:
+    """Return whether the second of two lines runs on the first, closer than a distance, for some of its length."""
+    way = unit(*first)
+    ahead = [(x - first[0][0], y - first[0][1]) for x, y in second]
+    if max(abs(way[0] * y - way[1] * x) for x, y in ahead) > near:
+        return False
+    low, high = sorted(way[0] * x + way[1] * y for x, y in ahead)
+    return min(high, math.dist(*first)) - max(low, 0.0) > SHORTEST
 
 
 class Board:

@@ -21,7 +21,7 @@ from trusscalc.statics.cuts import Structure, structure_of
 
 LETTERS: Final = "ABCDEFGHJKLMNPQRSTUVWXYZ"
 """Without I and O, which read as digits."""
-MARGIN: Final = 20.0
+MARGIN: Final = 30.0
 """Degrees that a force keeps off the members where its own direction is not free."""
 FULL: Final = 360.0
 Wheels = Mapping[str, Sequence["Spoke"]]
