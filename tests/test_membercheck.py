@@ -13,12 +13,13 @@ import replay
 import trade_trusses as trade
 from stated_truss import Stated
 
-from trusscalc import membercheck, stiffness, verdicts
+from trusscalc import membercheck, stiffness
 from trusscalc.__main__ import main
 from trusscalc.errors import InputError, UnknownNameError, UnstableTrussError
 from trusscalc.loads import LoadCase
 from trusscalc.membercheck import MemberCheck, check_members
 from trusscalc.report import check_data
+from trusscalc.verdicts import WIDEST_TOLERANCE
 
 PRATT = trade.pratt(6)
 SQUARE = {"A": ("0", "0"), "B": ("4", "0"), "C": ("4", "3"), "D": ("0", "3")}
@@ -264,7 +265,7 @@ def test_a_nearly_critical_form_is_undecided() -> None:
     )
     check = flat.check()
     expected = replay.forces_of(flat)
-    assert check.tolerance > verdicts.WIDEST_TOLERANCE
+    assert check.tolerance > WIDEST_TOLERANCE
     for name, item in check.members.items():
         assert item.verdict == "undecided"
         assert "critical" in item.reason
