@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import base64
+import inspect
 import json
 import re
 from collections.abc import Callable
@@ -31,7 +32,7 @@ from trusscalc.render.notebook import notebook
 from trusscalc.sheet import record
 from trusscalc.sheet.blocks import Sheet
 from trusscalc.sheet.compose import compose
-from trusscalc.sheet.digest import content_digest
+from trusscalc.sheet.digest import content_digest, record_of
 from trusscalc.truss import Truss
 
 FILE = """\
@@ -110,6 +111,14 @@ def test_every_option_is_derived_again(suffix: str, tmp_path: Path) -> None:
     path = save(compose(check, project, places=5, drawings=False), tmp_path / f"sheet{suffix}")
     report = recheck.recheck(path)
     assert report.matches, told(report)
+
+
+def test_no_way_of_composing_is_forgotten() -> None:
+    """Whatever a sheet can be asked for is recorded on it, or it could not be derived again."""
+    asked = set(inspect.signature(compose).parameters) - {"check", "truss_text"}
+    assert asked <= set(record_of(small(drawings=False)))
+    asked = set(inspect.signature(check_members).parameters) - {"truss"}
+    assert asked <= set(record_of(small(drawings=False)))
 
 
 @pytest.mark.parametrize("suffix", KINDS)

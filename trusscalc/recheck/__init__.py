@@ -78,11 +78,11 @@ class RecheckReport:
         if self.matches:
             return [*lines, "everything shown is as derived again"]
         count = len(self.differences)
-        return [
-            *lines,
-            f"{count} difference{'s' * (count != 1)}:",
-            *(f"  {one_line(str(each))}" for each in self.differences),
-        ]
+        lines.append(f"{count} difference{'s' * (count != 1)}:")
+        lines += [f"  {one_line(str(each))}" for each in self.differences]
+        if all("figure" in each.where for each in self.differences):
+            lines.append("only drawings differ: altered, or drawn by another version of matplotlib")
+        return lines
 
 
 def recheck(path: str | os.PathLike[str]) -> RecheckReport:
