@@ -180,8 +180,17 @@ def inline(content: Iterable[Inline | None]) -> list[Any]:
             case Decimals(written):
                 found.append(["text", "", written.replace("-", "−")])
             case _:
-                found.append(["mathematics", pieces(piece)])
+                found.append(_mathematics(pieces(piece)))
     return found
+
+
+def _mathematics(found: list[Piece]) -> list[Any]:
+    """Return mathematics in running text; a number that is digits alone is set as text, which looks the same."""
+    match found:
+        case [["", sign, ["digits", digits], _]]:
+            return ["text", "", f"{sign}{digits}"]
+        case _:
+            return ["mathematics", found]
 
 
 def text(written: str, style: str = "") -> list[Any]:
