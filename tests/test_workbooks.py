@@ -70,7 +70,10 @@ def run(path: Path) -> Any:
         try:
             client.execute()
         except CellExecutionError as problem:
-            message = f"{path.name} does not run: {problem}"
+            name = next(
+                name for name, cell in cells(book) if "error" in [o.output_type for o in cell.get("outputs", [])]
+            )
+            message = f"{path.name}, {name}, does not run: {problem.ename}: {problem.evalue}"
             raise AssertionError(message) from None
         left = sorted(file.name for file in there.iterdir())
         assert before == left, f"{path.name} leaves files behind: {sorted(set(left) - set(before))}"
@@ -82,9 +85,22 @@ def stored_form(book: Any) -> str:
     for place, cell in enumerate(book.cells):
         cell["id"] = cell_id(place, cell.source)
         cell["metadata"] = {}
+        if cell.cell_type == "code":
+            cell["outputs"] = streams_joined(cell.outputs)
     book["metadata"] = KERNEL
     nbformat.validate(book)
     return str(nbformat.writes(book)).rstrip("\n") + "\n"
+
+
+def streams_joined(outputs: list[Any]) -> list[Any]:
+    """Return outputs in which what was printed stands in one piece, however the kernel has cut it."""
+    joined: list[Any] = []
+    for output in outputs:
+        if joined and output.output_type == "stream" == joined[-1].output_type and output.name == joined[-1].name:
+            joined[-1]["text"] += output.text
+        else:
+            joined.append(output)
+    return joined
 
 
 def cell_id(place: int, source: str) -> str:
@@ -96,11 +112,11 @@ def cell_id(place: int, source: str) -> str:
 
 
 def shown(cell: Any) -> Shown:
-    """Return everything a cell shows; streams in one piece, however the kernel has cut them."""
+    """Return everything a cell shows."""
     found: Shown = {}
-    for output in cell.get("outputs", []):
+    for output in streams_joined(cell.get("outputs", [])):
         if output.output_type == "stream":
-            found[output.name] = found.get(output.name, "") + output.text
+            found[f"{len(found)} {output.name}"] = output.text
         elif output.output_type == "error":
             found["error"] = output.evalue
         else:
