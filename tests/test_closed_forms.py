@@ -15,10 +15,11 @@ from fractions import Fraction
 import pytest
 from case_files import CASES
 
-from trusscalc.exact import Exact, rational, sqrt
+from trusscalc.exact import Exact, rational
 from trusscalc.exacttext import parse
 from trusscalc.loads import LoadCase
 from trusscalc.membercheck import check_members
+from trusscalc.roots import sqrt
 from trusscalc.statics import matrix
 from trusscalc.truss import Truss
 

@@ -16,9 +16,11 @@ import sympy
 from hypothesis import assume, given, settings
 from hypothesis import strategies as st
 
+from trusscalc.decimals import approximate, rounded
 from trusscalc.errors import InexactNumberError
-from trusscalc.exact import ONE, ZERO, Exact, approximate, exact, rational, rounded, sqrt, symbol
+from trusscalc.exact import ONE, ZERO, Exact, exact, rational, symbol
 from trusscalc.exacttext import LONGEST_TEXT, number, parse, to_text
+from trusscalc.roots import sqrt
 
 Pair = tuple[Exact, mpmath.mpf]
 """A number, and the same number worked out by mpmath to 90 digits."""

@@ -19,11 +19,12 @@ from hypothesis import strategies as st
 
 from trusscalc import files, shapes
 from trusscalc.errors import FileFormatError, InputError, TrusscalcError, TrusscalcWarning, UnknownNameError
-from trusscalc.exact import ONE, rational, sqrt
+from trusscalc.exact import ONE, rational
 from trusscalc.exacttext import parse
 from trusscalc.filetext import LARGEST_FILE, MOST_PROBLEMS
 from trusscalc.loads import Combination, JointLoad, LoadCase
 from trusscalc.project import Project
+from trusscalc.roots import sqrt
 from trusscalc.truss import Truss, name_fault
 from trusscalc.trussfile import TrussFile
 

@@ -15,18 +15,43 @@ PACKAGE = Path(__file__).parents[1] / "trusscalc"
 
 # from the bottom up; a package stands for all its modules, which must be free of circles among themselves
 LAYERS = (
-    *("errors", "convenience", "exact", "exacttext", "units", "truss", "loads", "shapes", "project", "trussfile"),
+    *(
+        "errors",
+        "convenience",
+        "wholenumbers",
+        "exact",
+        "decimals",
+        "roots",
+        "exacttext",
+        "units",
+        "truss",
+        "loads",
+        "shapes",
+        "project",
+        "trussfile",
+    ),
     *("filetext", "replacefile", "files", "symbolparts", "samples", "statics.matrix", "statics.cuts"),
     *("statics.incidence", "statics.bodies", "statics.prices", "statics.derivations", "statics.bridges"),
     *("statics.carrying", "statics.plan", "statics.steps", "statics.owncuts", "statics.cutreport"),
-    *("statics.zeroforce", "stiffness", "verdicts", "membercheck", "report", "compare", "sheet", "render", "recheck", "widgets"),
+    *(
+        "statics.zeroforce",
+        "stiffness",
+        "verdicts",
+        "membercheck",
+        "report",
+        "compare",
+        "sheet",
+        "render",
+        "recheck",
+        "widgets",
+    ),
     *("display", "__init__", "__main__"),
 )
-AT_CALL_TIME = {("exact", "exacttext")}
+AT_CALL_TIME = {("exact", "exacttext"), ("exact", "decimals"), ("exact", "roots")}
 """Upward all the same, inside a function: how a number shows itself to people."""
-MODEL = {"errors", "convenience", "exact", "exacttext", "units", "truss", "loads"}
+MODEL = {"errors", "convenience", "wholenumbers", "exact", "decimals", "roots", "exacttext", "units", "truss", "loads"}
 STIFFNESS_MAY_IMPORT = {"errors", "truss", "loads"}
-RENDER_MAY_IMPORT = {"errors", "exact", "exacttext", "units"}
+RENDER_MAY_IMPORT = {"errors", "exact", "exacttext", "decimals", "units"}
 SHEET_MAY_NAME = {"statics.matrix": {"Bar", "Equilibrium", "GROUND"}}
 SOLVERS = {"stiffness", *(name for name in LAYERS if name.startswith("statics."))} - {"statics.cuts", "statics.steps"}
 CONFINED = {

@@ -15,8 +15,9 @@ import pytest
 from case_files import CASES, FOLDER, PublishedCase
 
 from trusscalc import stiffness
+from trusscalc.decimals import approximate
 from trusscalc.errors import UnstableTrussError
-from trusscalc.exact import Exact, approximate
+from trusscalc.exact import Exact
 from trusscalc.exacttext import parse
 from trusscalc.loads import LoadCase
 from trusscalc.membercheck import MemberCheck, check_members

@@ -14,8 +14,9 @@ import trade_trusses as trade
 from random_trusses import random_truss
 from stated_truss import Stated
 
-from trusscalc.exact import ONE, ZERO, Exact, rational, sqrt
+from trusscalc.exact import ONE, ZERO, Exact, rational
 from trusscalc.exacttext import parse, to_text
+from trusscalc.roots import sqrt
 from trusscalc.statics import matrix
 from trusscalc.statics.cuts import (
     SUM_X,

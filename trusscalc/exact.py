@@ -15,33 +15,27 @@ degree 8 elements multiply 20 times slower). Coefficients are sympy's ``QQ`` and
 from __future__ import annotations
 
 import math
-import operator
 import reprlib
 from collections.abc import Mapping
-from decimal import MAX_PREC, ROUND_HALF_EVEN, Context, Decimal
+from decimal import Decimal
 from fractions import Fraction
-from functools import lru_cache, reduce
+from functools import lru_cache
 from numbers import Integral
 from typing import Any
 
-from sympy import factorint
 from sympy.polys.domains import QQ
 from sympy.polys.fields import FracElement, FracField
 
 from trusscalc.errors import InexactNumberError
+from trusscalc.wholenumbers import a_prime_of
 
 Key = tuple[int, int]
 """A term's root part: radicand without square factor, and a bit mask of the tower's nested roots."""
 
 UNIT_KEY: Key = (1, 0)
 MOST_TERMS = 64
-MOST_NESTED_ROOTS = 3
-LARGEST_LEFT_TO_FACTOR = 10**15
 MANY_DIGITS = 400
 COMPARED_DIGITS = 12
-_LARGE_PRIMES: set[int] = set()
-"""Primes above 1000 met so far, so that products of them need no second search. It only saves time."""
-SMALL_PRIMES = tuple(n for n in range(2, 1000) if all(n % d for d in range(2, math.isqrt(n) + 1)))
 
 
 class Exact:
@@ -84,7 +78,9 @@ class Exact:
         if right is None:
             return NotImplemented
         if self.tower != right.tower:
-            left, right = _same_tower(self, right)
+            from trusscalc.roots import same_tower  # noqa: PLC0415 - rarely needed, and it lies above
+
+            left, right = same_tower(self, right)
         else:
             left = self
         terms = dict(left.terms)
@@ -123,7 +119,9 @@ class Exact:
             return NotImplemented
         left = self
         if left.tower != right.tower:
-            left, right = _same_tower(left, right)
+            from trusscalc.roots import same_tower  # noqa: PLC0415 - rarely needed, and it lies above
+
+            left, right = same_tower(left, right)
         rounded = left.rounded or right.rounded
         if len(left.terms) == 1 and UNIT_KEY in left.terms:
             left, right = right, left
@@ -169,8 +167,8 @@ class Exact:
             ((n, mask), coefficient) = next(iter(self.terms.items()))
             if not mask:
                 return Exact({(n, 0): plain(1 / (coefficient * n))}, self.tower, rounded=self.rounded)
-        conjugate = _conjugate(self)
-        return conjugate * (self * conjugate).inverse()
+        turned = conjugate(self)
+        return turned * (self * turned).inverse()
 
     # --- comparison ---------------------------------------------------------------------------------------
 
@@ -185,6 +183,8 @@ class Exact:
         if self.tower == right.tower:
             return False
         # towers are costly to merge, and numbers that differ mostly differ early
+        from trusscalc.decimals import approximate  # noqa: PLC0415 - rarely needed, and it lies above
+
         near, far = approximate(self, COMPARED_DIGITS), approximate(right, COMPARED_DIGITS)
         apart = near.copy_abs().max(far.copy_abs()).scaleb(2 - COMPARED_DIGITS)
         return (near - far).copy_abs() <= apart and not (self - right).terms
@@ -194,6 +194,8 @@ class Exact:
             return hash(symbols)
         # numbers with nested roots may be equal in different towers, so their value is hashed
         if any(mask for _, mask in self.terms):
+            from trusscalc.decimals import rounded  # noqa: PLC0415 - rarely needed, and it lies above
+
             return hash(rounded(self, COMPARED_DIGITS))
         if self.is_rational:
             return hash(self.as_fraction())
@@ -232,6 +234,8 @@ class Exact:
             coefficient = next(iter(self.terms.values()))
             if not isinstance(coefficient, FracElement):  # roots are positive
                 return 1 if coefficient > 0 else -1
+        from trusscalc.decimals import approximate  # noqa: PLC0415 - rarely needed, and it lies above
+
         return 1 if approximate(self, 12) > 0 else -1
 
     def __abs__(self) -> Exact:
@@ -288,6 +292,8 @@ class Exact:
         """Return the nearest float (the way out of the exact route)."""
         if self.is_rational:
             return float(self.as_fraction())
+        from trusscalc.decimals import approximate  # noqa: PLC0415 - rarely needed, and it lies above
+
         return float(approximate(self, 25))
 
     def __repr__(self) -> str:
@@ -308,6 +314,8 @@ class Exact:
         return total
 
     def _substitute_under_roots(self, values: Mapping[str, Exact]) -> Exact:
+        from trusscalc.roots import sqrt  # noqa: PLC0415 - rarely needed, and it lies above
+
         roots = [sqrt(radicand.substitute(values)) for radicand in self.tower]
         total = ZERO
         for (n, mask), coefficient in self.terms.items():
@@ -484,7 +492,7 @@ def _product(left: Exact, right: Exact, rounded: bool) -> Exact:
     return result
 
 
-def _conjugate(value: Exact) -> Exact:
+def conjugate(value: Exact) -> Exact:
     """Return value with the sign of one of its roots changed: the last nested one, else one prime's."""
     masks = 0
     for _, mask in value.terms:
@@ -493,333 +501,6 @@ def _conjugate(value: Exact) -> Exact:
         top = 1 << (masks.bit_length() - 1)
         terms = {key: -c if key[1] & top else c for key, c in value.terms.items()}
         return Exact(terms, value.tower, rounded=value.rounded)
-    prime = _a_prime_of(next(n for n, _ in value.terms if n > 1))
+    prime = a_prime_of(next(n for n, _ in value.terms if n > 1))
     terms = {key: c if key[0] % prime else -c for key, c in value.terms.items()}
     return Exact(terms, value.tower, rounded=value.rounded)
-
-
-@lru_cache(maxsize=4096)
-def _a_prime_of(n: int) -> int:
-    for prime in SMALL_PRIMES:
-        if n % prime == 0:
-            return prime
-    # radicands are products of roots taken one by one: their large primes were found then
-    for prime in sorted(_LARGE_PRIMES):
-        if n % prime == 0:
-            return prime
-    return int(min(factorint(n)))
-
-
-# --- towers of nested roots -------------------------------------------------------------------------------
-
-
-def _same_tower(left: Exact, right: Exact) -> tuple[Exact, Exact]:
-    if not right.tower:
-        return left, Exact(right.terms, left.tower, rounded=right.rounded)
-    if not left.tower:
-        return Exact(left.terms, right.tower, rounded=left.rounded), right
-    tower, images = _merged(left.tower, right.tower)
-    total = Exact({}, tower)
-    for (n, mask), coefficient in right.terms.items():
-        piece = Exact({(n, 0): coefficient}, tower)
-        for index, image in enumerate(images):
-            if mask >> index & 1:
-                piece = piece * Exact(image.terms, tower)
-        total = total + piece
-    return (
-        Exact(left.terms, tower, rounded=left.rounded),
-        Exact(total.terms, tower, rounded=right.rounded),
-    )
-
-
-@lru_cache(maxsize=256)
-def _merged(left: tuple[Exact, ...], right: tuple[Exact, ...]) -> tuple[tuple[Exact, ...], tuple[Exact, ...]]:
-    """Return a tower that holds both, and the images of right's roots in it."""
-    tower = left
-    images: list[Exact] = []
-    for radicand in right:
-        moved = Exact({}, tower)
-        for (n, mask), coefficient in radicand.terms.items():
-            piece = Exact({(n, 0): coefficient}, tower)
-            for index, image in enumerate(images):
-                if mask >> index & 1:
-                    piece = piece * Exact(image.terms, tower)
-            moved = moved + piece
-        tower, root = _root_in(tower, moved)
-        images.append(root)
-    return tower, tuple(images)
-
-
-def _root_in(tower: tuple[Exact, ...], radicand: Exact) -> tuple[tuple[Exact, ...], Exact]:
-    """Return a tower that holds the positive root of radicand, and that root.
-
-    By Kummer's theorem the root lies in the field (any whole-number roots adjoined) exactly when radicand
-    times some product of the tower's radicands is a square there.
-    """
-    for subset in range(1 << len(tower)):
-        scaled = radicand
-        for index, step in enumerate(tower):
-            if subset >> index & 1:
-                scaled = scaled * Exact(step.terms, tower)
-        root = _known_root(Exact(scaled.terms, tower))
-        if root is not None:
-            root = root / Exact({(1, subset): QQ(1)}, tower)
-            return tower, Exact(root.terms, tower) if root.sign() > 0 else Exact((-root).terms, tower)
-    if len(tower) >= MOST_NESTED_ROOTS:
-        message = f"more than {MOST_NESTED_ROOTS} independent nested roots in one number; use fewer"
-        raise InexactNumberError(message)
-    content, primitive = _without_content(radicand)
-    try:
-        outside = _rational_root(content, proven=True)
-    except InexactNumberError:  # it stays inside, which reads worse and is as right
-        outside, primitive = ONE, radicand
-    higher = (*tower, Exact(primitive.terms, tower))
-    return higher, Exact({(1, 1 << len(tower)): QQ(1)}, higher) * outside
-
-
-def _without_content(value: Exact) -> tuple[Fraction, Exact]:
-    """Return (q, rest) with value = q * rest and rest of coprime whole coefficients: sqrt(2 + sqrt(2))/2 reads best."""
-    numerators = [int(c.numerator) for c in value.terms.values()]
-    denominators = [int(c.denominator) for c in value.terms.values()]
-    content = Fraction(math.gcd(*numerators), math.lcm(*denominators))
-    return content, value * (1 / content)
-
-
-def _known_root(value: Exact) -> Exact | None:
-    """Return a root of value made of whole-number roots and the nested roots value already has, or None.
-
-    With value = a + b*s, s one of its roots over the field below, the root exists exactly when the norm
-    a^2 - b^2 s^2 is a square n^2 below and (a + n)/2 has such a root itself.
-    """
-    if value.sign() < 0:
-        return None
-    if value.is_rational:
-        return _rational_root(value.as_fraction(), proven=True)
-    other = _conjugate(value)
-    a = (value + other) / 2
-    rest = (value - other) / 2
-    norm = value * other
-    # n has to lie in the field below, or the descent would not end
-    below = _group(value) - {_outermost_root(value)}
-    n = _root_over(norm.as_fraction(), below) if norm.is_rational else _known_root(norm)
-    if n is None or not _group(n) <= below:
-        return None
-    for half in ((a + n) / 2, (a - n) / 2):
-        root = _known_root(half) if half else None
-        if root is not None:
-            return root + rest / (root * 2)
-    return None
-
-
-def _outermost_root(value: Exact) -> int:
-    """Return the root that _conjugate turns: a prime, or -1 - index for a nested root."""
-    masks = 0
-    for _, mask in value.terms:
-        masks |= mask
-    return -masks.bit_length() if masks else _a_prime_of(next(n for n, _ in value.terms if n > 1))
-
-
-@lru_cache(maxsize=4096)
-def prime_factors(n: int) -> tuple[int, ...]:
-    """Return the primes of a number without square factor, ascending where small."""
-    found = []
-    while n > 1:
-        found.append(_a_prime_of(n))
-        n //= found[-1]
-    return tuple(found)
-
-
-def _group(value: Exact) -> set[int]:
-    """Return the primes (and, as -1 - index, the nested roots) that value's terms and their radicands are made of."""
-    found: set[int] = set()
-    for n, mask in value.terms:
-        found |= set(prime_factors(n))
-        for index in range(mask.bit_length()):
-            if mask >> index & 1:
-                found |= {-1 - index} | _group(value.tower[index])
-    return found
-
-
-def _root_over(value: Fraction, group: set[int]) -> Exact | None:
-    """Return the root of a fraction if the roots of the group's primes suffice for it; nothing is factored."""
-    rest, kept = value.numerator * value.denominator, 1
-    for prime in group:
-        if prime > 1:
-            while rest and rest % (prime * prime) == 0:
-                rest //= prime * prime
-            if rest % prime == 0:
-                rest, kept = rest // prime, kept * prime
-    if rest < 0 or math.isqrt(rest) ** 2 != rest:
-        return None
-    factor = math.isqrt(value.numerator * value.denominator // kept)
-    return Exact({(kept, 0): QQ(factor, value.denominator)}) if factor else ZERO
-
-
-def _rational_root(value: Fraction, *, proven: bool) -> Exact:
-    """Return the root of a fraction, not negative, as factor * sqrt(whole number)."""
-    factor, n = _without_squares(value.numerator * value.denominator, proven)
-    return Exact({(n, 0): QQ(factor, value.denominator)}) if factor else ZERO
-
-
-@lru_cache(maxsize=4096)
-def _without_squares(n: int, proven: bool) -> tuple[int, int]:
-    """Return (s, k) with n = s^2 k; k is proven free of squares when asked for, else freed of small ones."""
-    if n == 0:
-        return 0, 1
-    factor, kept = 1, 1
-    for prime in SMALL_PRIMES:
-        if prime * prime > n:
-            break
-        while n % (prime * prime) == 0:
-            n //= prime * prime
-            factor *= prime
-        if n % prime == 0:
-            n //= prime
-            kept *= prime
-    whole = math.isqrt(n)
-    if whole * whole == n:
-        return factor * whole, kept
-    # what is left has no factor below 1000 and is no square: below 10^9 it has no square factor either
-    if not proven:
-        return factor, kept * n
-    if n > LARGEST_LEFT_TO_FACTOR:
-        message = f"the root of a number with so large prime factors ({len(str(n))} digits) is not supported"
-        raise InexactNumberError(message)
-    for prime, power in factorint(n).items():
-        _LARGE_PRIMES.add(int(prime))
-        factor *= int(prime) ** (power // 2)
-        kept *= int(prime) ** (power % 2)
-    return factor, kept
-
-
-def sqrt(value: Exact, *, proven: bool = True) -> Exact:
-    """Return the non-negative square root.
-
-    Parameters
-    ----------
-    value : Exact
-        Not negative.
-    proven : bool
-        True: the result may be computed with. False: it is only to be printed or evaluated (a member's
-        length, say), and large factors are not searched for squares.
-
-    Raises
-    ------
-    InexactNumberError
-        Below zero, or when a huge number would have to be factored.
-
-    Notes
-    -----
-    Symbols stand for positive numbers. The root of an expression in symbols is taken out as far as it is a
-    square of single products, and is otherwise kept as it is; it is meant for printing and evaluating.
-
-    Examples
-    --------
-    >>> sqrt(rational(12)) == 2 * sqrt(rational(3))
-    True
-    """
-    if value.symbols:
-        return _symbolic_root(value)
-    if value.sign() < 0:
-        message = "the root of a negative number"
-        raise InexactNumberError(message)
-    if value.is_rational:
-        root = _rational_root(value.as_fraction(), proven=proven)
-    else:
-        root = _root_in(value.tower, value)[1]
-    return Exact(root.terms, root.tower, rounded=value.rounded)
-
-
-def _symbolic_root(value: Exact) -> Exact:
-    """Return sqrt(p / q) as s/q sqrt(k), where p q = s^2 k and s is a product of symbols (which are positive)."""
-    if set(value.terms) != {UNIT_KEY}:
-        return Exact({(1, 1 << len(value.tower)): QQ(1)}, (*value.tower, value), rounded=value.rounded)
-    fraction = value.terms[UNIT_KEY]
-    below = fraction.denom
-    content, factors = (fraction.numer * below).sqf_list()
-    if content < 0:
-        message = "the root of a negative number"
-        raise InexactNumberError(message)
-    field = fraction.field
-    outside, inside = field.one, field.one
-    for monic, power in factors:
-        cleared, factor = monic.clear_denoms()
-        content = content / cleared**power
-        single = len(factor.terms()) == 1
-        outside *= field(factor) ** (power // 2) if single else field.one
-        inside *= field(factor) ** (power % 2 if single else power)
-    root = _rational_root(Fraction(int(content.numerator), int(content.denominator)), proven=True)
-    result = root * Exact({UNIT_KEY: plain(outside / field(below))}, rounded=value.rounded)
-    if inside == field.one:
-        return result
-    return result * Exact({(1, 1): QQ(1)}, (Exact({UNIT_KEY: inside}),))
-
-
-# --- the way out ------------------------------------------------------------------------------------------
-
-
-def approximate(value: Exact, digits: int) -> Decimal:
-    """Return value to at least so many correct significant digits (0 exactly for zero).
-
-    Raises
-    ------
-    InexactNumberError
-        When the number holds a symbol.
-    """
-    if not value.terms:
-        return Decimal(0)
-    precision = digits + 10
-    while True:
-        total, size = _evaluated(value, Context(prec=precision, rounding=ROUND_HALF_EVEN))
-        # every operation is off by half a unit in the last place; 3 digits cover some hundred operations
-        if total and total.copy_abs() > size.scaleb(digits + 3 - precision):
-            return total
-        precision *= 2
-
-
-def _evaluated(value: Exact, context: Context) -> tuple[Decimal, Decimal]:
-    """Return the value and the sum of its terms' sizes, which bounds the rounding error."""
-    # a radicand may be a small difference, so it is asked for its own correct digits
-    masks = reduce(operator.or_, (mask for _, mask in value.terms), 0)
-    roots = [
-        context.sqrt(approximate(radicand, context.prec)) if masks >> index & 1 else Decimal(0)
-        for index, radicand in enumerate(value.tower)
-    ]
-    total, size = Decimal(0), Decimal(0)
-    for (n, mask), coefficient in value.terms.items():
-        if isinstance(coefficient, FracElement):
-            message = "a number with a symbol in it has no decimal value; give the symbol a value"
-            raise InexactNumberError(message)
-        term = context.divide(Decimal(int(coefficient.numerator)), Decimal(int(coefficient.denominator)))
-        if n > 1:
-            term = context.multiply(term, context.sqrt(Decimal(n)))
-        for index, root in enumerate(roots):
-            if mask >> index & 1:
-                term = context.multiply(term, root)
-        total = context.add(total, term)
-        size = context.add(size, term.copy_abs())
-    return total, size
-
-
-def rounded(value: Exact, places: int) -> Decimal:
-    """Return value rounded once, from the exact value, to so many decimal places, half to even.
-
-    Examples
-    --------
-    >>> rounded(rational(5, 2), 0), rounded(sqrt(rational(2)), 3)
-    (Decimal('2'), Decimal('1.414'))
-    """
-    step = Decimal(1).scaleb(-places)
-    if value.is_rational:
-        scaled = value.as_fraction() * Fraction(10) ** places
-        return Decimal(round(scaled)).scaleb(-places, Context(prec=MAX_PREC))
-    digits = 20 + places
-    while True:
-        near = approximate(value, digits)
-        context = Context(prec=digits + abs(near.adjusted()) + 50, rounding=ROUND_HALF_EVEN)
-        slack = near.copy_abs().scaleb(-digits, context)
-        ends = (context.subtract(near, slack), context.add(near, slack))
-        low, high = (end.quantize(step, context=context) for end in ends)
-        if low == high:  # a surd is never exactly on a tie, so more digits always decide
-            return low or low.copy_abs()  # no minus zero
-        digits *= 2

@@ -16,8 +16,10 @@ from typing import Any
 
 from sympy.polys.fields import FracElement
 
+from trusscalc.decimals import approximate
 from trusscalc.errors import InexactNumberError
-from trusscalc.exact import ONE, UNIT_KEY, ZERO, Exact, approximate, exact, rational, sqrt, symbol
+from trusscalc.exact import ONE, UNIT_KEY, ZERO, Exact, exact, rational, symbol
+from trusscalc.roots import sqrt
 
 LONGEST_TEXT = 1000
 DEEPEST_NESTING = 20

@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 from typing import Any
 
-from trusscalc.exact import rounded
+from trusscalc.decimals import rounded
 from trusscalc.exacttext import to_text
 from trusscalc.membercheck import ForceCheck, MemberCheck
 from trusscalc.statics.cuts import About, Cut

@@ -10,8 +10,9 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Final
 
-from trusscalc.exact import ONE, ZERO, Exact, rational, sqrt
+from trusscalc.exact import ONE, ZERO, Exact, rational
 from trusscalc.loads import LoadCase
+from trusscalc.roots import sqrt
 from trusscalc.sheet.blocks import Bracket, Column, Decimals, Inline, Name, Product, Run, Table, Value
 from trusscalc.sheet.reasons import Teller
 from trusscalc.sheet.values import Number, multiplied, printed

@@ -8,7 +8,8 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from trusscalc.errors import TrusscalcError
-from trusscalc.exact import ONE, ZERO, Exact, sqrt, symbol
+from trusscalc.exact import ONE, ZERO, Exact, symbol
+from trusscalc.roots import sqrt
 from trusscalc.sheet.blocks import Formula, Labelled, Name, Product, Value
 from trusscalc.sheet.equations import EquationWriter, plus, signed, unscaled
 from trusscalc.sheet.values import formula, printed

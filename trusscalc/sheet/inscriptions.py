@@ -13,7 +13,8 @@ from fractions import Fraction
 from math import floor
 from typing import Final
 
-from trusscalc.exact import Exact, rounded
+from trusscalc.decimals import rounded
+from trusscalc.exact import Exact
 from trusscalc.exacttext import to_text
 from trusscalc.units import LENGTHS
 

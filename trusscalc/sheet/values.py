@@ -6,7 +6,8 @@ import math
 from decimal import ROUND_HALF_EVEN, Context, Decimal
 from typing import Final, Literal
 
-from trusscalc.exact import ONE, ZERO, Exact, approximate, rounded, symbol
+from trusscalc.decimals import approximate, rounded
+from trusscalc.exact import ONE, ZERO, Exact, symbol
 from trusscalc.exacttext import to_text
 from trusscalc.loads import LoadCase
 from trusscalc.sheet.blocks import Bracket, Decimals, Formula, Name, Power, Product, Value

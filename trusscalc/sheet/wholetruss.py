@@ -8,7 +8,7 @@ import statistics
 from collections.abc import Callable, Collection, Iterable, Iterator, Mapping, Sequence
 from typing import Final
 
-from trusscalc.exact import rounded
+from trusscalc.decimals import rounded
 from trusscalc.loads import LoadCase
 from trusscalc.membercheck import ForceCheck, MemberCheck
 from trusscalc.sheet import words

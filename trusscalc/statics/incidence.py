@@ -20,8 +20,9 @@ from typing import Any
 from sympy import isprime
 from sympy.polys.fields import FracElement
 
-from trusscalc.exact import Exact, prime_factors
+from trusscalc.exact import Exact
 from trusscalc.statics.cuts import GROUND, Structure
+from trusscalc.wholenumbers import prime_factors
 
 Point = tuple[int, int, int]
 """Homogeneous (X, Y, W) modulo the prime: W = 1 for a point, 0 for a direction."""

@@ -19,8 +19,9 @@ from typing import Any
 from sympy.polys.matrices.sdm import sdm_irref
 
 from trusscalc.errors import UnstableTrussError
-from trusscalc.exact import ONE, UNIT_KEY, ZERO, Exact, Key, in_one_field, plain, sqrt
+from trusscalc.exact import ONE, UNIT_KEY, ZERO, Exact, Key, in_one_field, plain
 from trusscalc.loads import LoadCase
+from trusscalc.roots import sqrt
 from trusscalc.truss import Truss
 
 GROUND = ""

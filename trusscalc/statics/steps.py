@@ -14,7 +14,8 @@ from typing import Literal
 
 from trusscalc.convenience import Convenient
 from trusscalc.errors import TrusscalcError
-from trusscalc.exact import ONE, ZERO, Exact, sqrt
+from trusscalc.exact import ONE, ZERO, Exact
+from trusscalc.roots import sqrt
 from trusscalc.statics.cuts import (
     SUM_X,
     SUM_Y,
