@@ -99,7 +99,7 @@ def test_a_window_leaves_nothing_out() -> None:
     """Near joints and far groups make up the truss, and boundaries through groups are the plain ones."""
     found = layout(trade.pratt(60))
     bar = found.bars.index("U20-L21")
-    window = bodies.window_round(found, bar, 28)
+    window = bodies.window_round(found, sum(1 << joint for joint in found.ends[bar]), 28)
     far = [group.joints for group in window.far]
     assert window.near.bit_count() >= 28
     assert all(window.near >> joint & 1 for joint in found.ends[bar])

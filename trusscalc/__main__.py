@@ -18,6 +18,7 @@ from trusscalc.errors import InputError, TrusscalcError, TrusscalcWarning
 
 if TYPE_CHECKING:
     from trusscalc.membercheck import MemberCheck
+    from trusscalc.sheet.blocks import Sheet
     from trusscalc.trussfile import TrussFile
 
 AGREED, DISAGREED, REFUSED = 0, 1, 2
@@ -88,6 +89,18 @@ def _parser() -> argparse.ArgumentParser:
             help="derive member A-B from the cut that keeps these joints (may be given again for other members)",
         )
         command.add_argument("--prefer", choices=("sections", "joints"), default="", help="what to lean to")
+    for command in (sheet, recheck):
+        command.add_argument(
+            "--detail",
+            choices=("members", "all", "summary"),
+            default="members",
+            help="derivations: of more than twelve members those that govern first, all in one place, or none",
+        )
+        command.add_argument(
+            "--graphics",
+            action="store_true",
+            help="an appendix of force polygons and, where it exists, Maxwell's diagram",
+        )
     return parser
 
 
@@ -105,7 +118,10 @@ def _checked(arguments: argparse.Namespace) -> tuple[TrussFile, MemberCheck]:
         kept = [name.strip() for name in joints.split(",") if name.strip()]
         cuts[member.strip()] = own_cut(stated.truss, keep=kept)
     case = stated.case(arguments.case)
-    return stated, check_members(stated.truss, case, names, cuts=cuts, prefer=arguments.prefer)
+    own_checks = arguments.command != "check"  # only a sheet shows them
+    return stated, check_members(
+        stated.truss, case, names, cuts=cuts, prefer=arguments.prefer, own_checks=own_checks
+    )
 
 
 def _check(arguments: argparse.Namespace) -> int:
@@ -121,24 +137,25 @@ def _check(arguments: argparse.Namespace) -> int:
 
 def _sheet(arguments: argparse.Namespace) -> int:
     from trusscalc.display import refuse_unwritable, save  # noqa: PLC0415
-    from trusscalc.sheet.compose import compose  # noqa: PLC0415
 
     refuse_unwritable(arguments.out)
     stated, check = _checked(arguments)
-    place = save(compose(check, stated.project, truss_text=_text(arguments)), arguments.out)
+    place = save(_composed(arguments, stated, check), arguments.out)
     told = "all agree" if check.agreed else "not all agree: see its first lines"
     _print(f"{place}: {len(check.members)} of {check.statics.members} members, {told}")
     return AGREED if check.agreed else DISAGREED
 
 
-def _text(arguments: argparse.Namespace) -> str:
-    """Return the truss file as it stands, so that its digest on the sheet is the file's own."""
-    return Path(arguments.file).read_bytes().decode("utf-8-sig")
+def _composed(arguments: argparse.Namespace, stated: TrussFile, check: MemberCheck) -> Sheet:
+    """Return the sheet; it echoes the truss file as it stands, so that its digest on the sheet is the file's own."""
+    from trusscalc.sheet.compose import compose  # noqa: PLC0415
+
+    text = Path(arguments.file).read_bytes().decode("utf-8-sig")
+    return compose(check, stated.project, truss_text=text, detail=arguments.detail, graphics=arguments.graphics)
 
 
 def _recheck(arguments: argparse.Namespace) -> int:
     from trusscalc.recheck import recheck, recheck_pdf  # noqa: PLC0415
-    from trusscalc.sheet.compose import compose  # noqa: PLC0415
 
     if arguments.against is None:
         report = recheck(arguments.file)
@@ -150,7 +167,7 @@ def _recheck(arguments: argparse.Namespace) -> int:
             raise InputError(message)
         filed, arguments.file = arguments.file, arguments.against
         stated, check = _checked(arguments)
-        report = recheck_pdf(filed, compose(check, stated.project, truss_text=_text(arguments)))
+        report = recheck_pdf(filed, _composed(arguments, stated, check))
     _print("\n".join(report.lines()))
     return AGREED if report.matches else DISAGREED
 

@@ -131,6 +131,7 @@ def check_members(
     *,
     cuts: Mapping[str, OwnCut] | None = None,
     prefer: Preference = "",
+    own_checks: bool = True,
 ) -> MemberCheck:
     """Return the forces of chosen members by hand methods, each beside an independent stiffness value.
 
@@ -147,6 +148,8 @@ def check_members(
         ``members`` again.
     prefer : str
         ``sections`` or ``joints``: what to lean to where both are possible.
+    own_checks : bool
+        Whether each step gets a check by an equation not used before, as a sheet needs it.
 
     Raises
     ------
@@ -181,7 +184,7 @@ def check_members(
     equilibrium = matrix.solve(truss, case)
     structure = structure_of(truss, case, equilibrium.bars)
     decided = [name for name in wanted if name in equilibrium.tensions]
-    steps, tensions = _derivation(structure, equilibrium, decided, case, own, prefer)
+    steps, tensions = _derivation(structure, equilibrium, decided, case, own, prefer, own_checks=own_checks)
     numeric = stiffness.solve(truss, case)
     values = {**numeric.reactions, **stiffness.member_forces(truss, case)}
     runs = Runs(values, numeric.condition, _unit_runs(truss, case), _sample_runs(truss, case))
@@ -281,9 +284,11 @@ def _derivation(  # noqa: PLR0917 - called in one place
     case: LoadCase,
     own: Mapping[str, tuple[str, ...]],
     prefer: Preference,
+    *,
+    own_checks: bool = True,
 ) -> tuple[tuple[Step, ...], dict[str, Exact]]:
     """Write the planned steps one after the other; a value enters an equation only after its own step."""
-    writer = _Writer(structure)
+    writer = _Writer(structure, own_checks=own_checks)
     usable = {name: kept for name, kept in own.items() if name in equilibrium.tensions}
     for planned in plan(structure, equilibrium, wanted, case.as_floats(), cuts=usable, prefer=prefer):
         writer.write(planned)
@@ -293,8 +298,9 @@ def _derivation(  # noqa: PLR0917 - called in one place
 class _Writer:
     """Writes steps one after the other: letters of sections, letters of carried forces, values found so far."""
 
-    def __init__(self, structure: Structure) -> None:
+    def __init__(self, structure: Structure, *, own_checks: bool) -> None:
         self.structure = structure
+        self.own_checks = own_checks
         self.steps: list[Step] = []
         self.tensions: dict[str, Exact] = {}
         self.sections: dict[frozenset[str], str] = {}
@@ -322,7 +328,14 @@ class _Writer:
             self.tensions = {name: tension.substitute(values) for name, tension in self.tensions.items()}
         else:
             step, found = write_step(
-                self.structure, number, planned.bodies, planned.solves, self.tensions, letter=letter, carries=carries
+                self.structure,
+                number,
+                planned.bodies,
+                planned.solves,
+                self.tensions,
+                letter=letter,
+                carries=carries,
+                with_check=self.own_checks,
             )
         self.steps.append(step)
         self.tensions.update(found)

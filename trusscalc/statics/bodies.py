@@ -66,11 +66,9 @@ def everything(layout: Layout) -> int:
     return (1 << len(layout.joints)) - 1
 
 
-def window_round(layout: Layout, bar: int, size: int) -> Window:
-    """Return the window of at least so many joints round a bar (all joints if there are no more)."""
-    start, end = layout.ends[bar]
-    near = 1 << start | (1 << end if end >= 0 else 0)
-    edge = near
+def window_round(layout: Layout, core: int, size: int) -> Window:
+    """Return the window of at least so many joints round some (all joints if there are no more)."""
+    near = edge = core
     while edge and near.bit_count() < size:
         edge = _neighbours(layout, edge) & ~near
         near |= edge
@@ -81,6 +79,28 @@ def window_round(layout: Layout, bar: int, size: int) -> Window:
         groups.append(Group(joints, neighbours & near, cut))
         rest &= ~joints
     return Window(near, tuple(groups), _neighbours(layout, near) & ~near)
+
+
+def stretches(layout: Layout, length: int) -> list[int]:
+    """Return for each joint the stretch of the truss it lies in: so many joints in order along its longer direction.
+
+    Members of one stretch share a window, and which stretch a member lies in depends on the truss alone.
+    """
+    spans = [max(axis) - min(axis) for axis in (layout.x, layout.y)]
+    places = (
+        list(zip(layout.x, layout.y, strict=True))
+        if spans[0] >= spans[1]
+        else list(zip(layout.y, layout.x, strict=True))
+    )
+    order = sorted(range(len(places)), key=places.__getitem__)
+    found = [0] * len(order)
+    for start in range(0, len(order), length):
+        mask = 0
+        for joint in order[start : start + length]:
+            mask |= 1 << joint
+        for joint in order[start : start + length]:
+            found[joint] = mask
+    return found
 
 
 def whole_window(layout: Layout) -> Window:

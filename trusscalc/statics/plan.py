@@ -18,6 +18,7 @@ from trusscalc.statics.bodies import (
     boundary,
     everything,
     hinge_bodies,
+    stretches,
     whole_window,
     window_round,
 )
@@ -31,7 +32,9 @@ from trusscalc.statics.prices import Candidate, Preference, Prices, all_candidat
 
 SMALL_TRUSS = 150
 """Up to so many joints the whole truss is searched at once."""
-WINDOW_JOINTS = 28
+STRETCH = 10
+WINDOW_JOINTS = 32
+"""In a longer truss so many joints are searched round a stretch of so many."""
 
 
 MOST_TOGETHER = 3
@@ -116,6 +119,8 @@ class Search:
         self.prices = Prices(self.layout, zero, prefer)
         self.priced: dict[int, list[Candidate]] = {}
         self.tables: dict[tuple[Window, int], Derivations] = {}
+        self.stretches: list[int] = []
+        self.windows: dict[tuple[int, int], Window] = {}
 
     def plan(self, wanted: Sequence[str], cuts: Mapping[str, tuple[str, ...]]) -> tuple[PlannedStep, ...]:
         """Return the steps to all reactions and all wanted members."""
@@ -218,13 +223,25 @@ class Search:
         layout = self.layout
         size = WINDOW_JOINTS if len(layout.joints) > SMALL_TRUSS else len(layout.joints)
         while True:
-            window = window_round(layout, bar, size) if size < len(layout.joints) else whole_window(layout)
+            window = self._window(bar, size)
             table = self._table(window, given)
             if table.solved >> bar & 1:
                 return table
             if not window.far or size > SMALL_TRUSS:
                 return self._with_bridges(table, bar)
             size *= 2
+
+    def _window(self, bar: int, size: int) -> Window:
+        """Return the window for a bar: round the stretch its first joint lies in, or everything."""
+        layout = self.layout
+        if size >= len(layout.joints):
+            return whole_window(layout)
+        if not self.stretches:
+            self.stretches = stretches(layout, STRETCH)
+        key = (self.stretches[layout.ends[bar][0]], size)
+        if key not in self.windows:
+            self.windows[key] = window_round(layout, *key)
+        return self.windows[key]
 
     def _table(self, window: Window, given: int) -> Derivations:
         """Return the derivations found in a window, worked out once."""

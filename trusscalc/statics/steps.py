@@ -230,6 +230,7 @@ def write_step(
     *,
     letter: str = "",
     carries: Mapping[str, str] | None = None,
+    with_check: bool = True,
 ) -> tuple[Step, dict[str, Exact]]:
     """Return a step, and the tension coefficients it found.
 
@@ -249,6 +250,8 @@ def write_step(
         The section's letter.
     carries : mapping of str to str, optional
         Members carried from this step on, and the letters of their forces; ``known`` holds them already.
+    with_check : bool
+        Whether an equation not used before is written too.
 
     Raises
     ------
@@ -276,7 +279,7 @@ def write_step(
         uses=_uses(structure, equations, {*solves, *carries}),
         results={name: force for name, force in forces.items() if name not in open_forces},
         letter=letter,
-        check=None if open_forces else unused_check(structure, equations, values),
+        check=unused_check(structure, equations, values) if with_check and not open_forces else None,
         carries=carries,
         solves_in=tuple(name for name in solves if name in open_forces),
         partial={name: force for name, force in forces.items() if name in open_forces},
