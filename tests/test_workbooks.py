@@ -121,7 +121,7 @@ def shown(cell: Any) -> Shown:
             found["error"] = output.evalue
         else:
             place = len(found)
-            found |= {f"{place} {kind}": text for kind, text in output.data.items()}
+            found |= {f"{place} {kind}": output.data[kind] for kind in sorted(output.data)}
     return found
 
 
