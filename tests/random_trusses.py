@@ -138,4 +138,4 @@ def trusses(
     """Draw a random truss."""
     joints = draw(st.integers(5, most_joints))
     seed = draw(st.integers(0, 2**32 - 1))
-    return random_truss(random.Random(seed), joints, numbers, complex_share=complex_share, base=base)  # noqa: S311
+    return random_truss(random.Random(seed), joints, numbers, complex_share=complex_share, base=base)

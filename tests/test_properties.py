@@ -77,7 +77,7 @@ def test_mixed_trusses(stated: Stated) -> None:
 def test_every_kind_of_support(base: str) -> None:
     """Pin and roller, three links, two pins at a wall, two parts with a hinge on two pins."""
     for seed in range(4):
-        stated = random_truss(random.Random(seed), 7, base=base)  # noqa: S311
+        stated = random_truss(random.Random(seed), 7, base=base)
         assert replay.faults(stated, stated.data(), stated.members) == []
 
 
@@ -270,7 +270,7 @@ def test_the_trusses_are_what_they_claim() -> None:
     """Well conditioned, determinate by count, and of all kinds."""
     kinds = set()
     for seed in range(30):
-        stated = random_truss(random.Random(seed), 8, complex_share=seed % 2)  # noqa: S311
+        stated = random_truss(random.Random(seed), 8, complex_share=seed % 2)
         bars = replay.bars_of(stated).bars
         assert len(bars) == 2 * len(stated.joints)
         assert condition(stated) < 2e3
