@@ -15,6 +15,7 @@ from __future__ import annotations
 import base64
 import difflib
 import hashlib
+import os
 import re
 import shutil
 import sys
@@ -22,6 +23,7 @@ from collections.abc import Iterator
 from pathlib import Path
 from tempfile import TemporaryDirectory
 from typing import Any
+from unittest.mock import patch
 
 import nbformat
 import pytest
@@ -56,7 +58,7 @@ Shown = dict[str, str]
 
 def run(path: Path) -> Any:
     """Return a workbook after a run from top to bottom, in a copy of its folder that is thrown away."""
-    with TemporaryDirectory() as place:
+    with TemporaryDirectory() as place, patch.dict(os.environ, IPYTHONDIR=place):
         there = Path(place, "workbooks")
         shutil.copytree(FOLDER, there, ignore=shutil.ignore_patterns(".*"))
         book = nbformat.read(there / path.name, as_version=4)
@@ -181,9 +183,8 @@ def cells(book: Any) -> Iterator[tuple[str, Any]]:
 
 
 @pytest.mark.parametrize("path", WORKBOOKS, ids=lambda path: path.stem)
-def test_a_run_shows_what_is_stored(path: Path, tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+def test_a_run_shows_what_is_stored(path: Path) -> None:
     """In a fresh kernel, every cell gives its stored outputs and leaves no file behind."""
-    monkeypatch.setenv("IPYTHONDIR", str(tmp_path))
     stored = nbformat.read(path, as_version=4)
     again = run(path)
     told = []
