@@ -25,6 +25,7 @@ from trusscalc.sheet.digest import record_of
 PAPERS: Final = {"A4": "a4", "US Letter": "us-letter"}
 """What each paper is called by the typesetter."""
 PROFILE: Final = "a-2b"
+FACE: Final = "STIXGeneral"
 UNDATED: Final = dt.date(1970, 1, 1)
 """The profile demands a date; where the title block holds none that can be read, this one, never the clock's."""
 
@@ -96,7 +97,7 @@ def _compiled(inputs: dict[str, str]) -> bytes:
         raise RenderError(message) from problem
     compiler = typst.Compiler(
         input=_page_description(),
-        root=files("trusscalc.render"),
+        root=Path(__file__).parent,  # nothing is read from it; without it the folder of the moment would be the root
         font_paths=_fonts(),
         ignore_system_fonts=True,
         sys_inputs=inputs,
@@ -105,7 +106,10 @@ def _compiled(inputs: dict[str, str]) -> bytes:
         made = compiler.compile(format="pdf", pdf_standards=[PROFILE])
     except typst.TypstError as problem:
         raise RenderError(_told(problem.message)) from problem
-    return bytes(made)
+    if not isinstance(made, bytes):
+        message = f"the typesetter returned {type(made).__name__} instead of one document"
+        raise RenderError(message)
+    return made
 
 
 @cache
@@ -121,7 +125,11 @@ def _fonts() -> Any:
     found = find_spec("matplotlib")
     places = [] if found is None else [Path(place) for place in found.submodule_search_locations or ()]
     folders = [str(place / "mpl-data" / "fonts" / "ttf") for place in places]
-    return typst.Fonts(include_system_fonts=False, font_paths=folders)
+    fonts = typst.Fonts(include_system_fonts=False, font_paths=folders)
+    if FACE not in fonts.families():
+        message = f"the face {FACE}, which matplotlib carries, was not found: pip install --force-reinstall matplotlib"
+        raise RenderError(message)
+    return fonts
 
 
 def _told(problem: str) -> str:
