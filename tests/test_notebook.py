@@ -68,7 +68,7 @@ def test_valid_with_distinct_ids_and_a_record() -> None:
 def test_every_step_is_a_card_with_its_figure() -> None:
     """One Markdown cell for each step, its figures inside as images with words."""
     check = sheet_cases.k_truss()
-    cards = [source for source in cells(compose(check), "markdown") if source.startswith("<div")]
+    cards = [source for source in cells(compose(check, detail="all"), "markdown") if source.startswith("<div")]
     assert len(cards) == len(check.steps)
     for card in cards:
         assert re.search(r'<img alt="[^"]{20,}" src="data:image/svg\+xml;base64,', card)
@@ -246,7 +246,7 @@ def test_two_processes_write_equal_bytes() -> None:
 
 def test_every_kind_of_block_is_on_the_golden_sheet_and_in_every_renderer() -> None:
     """A new block cannot be forgotten: it has to appear here, and each renderer has to know it."""
-    sheet = compose(sheet_cases.warren(), sheet_cases.PROJECT)
+    sheet = compose(sheet_cases.warren(), sheet_cases.PROJECT, detail="all")
     kinds = {type(block) for block in sheet.blocks}
     step = next(block for block in sheet.blocks if isinstance(block, blocks.Derivation))
     kinds |= {type(step.lines)}

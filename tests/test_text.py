@@ -38,7 +38,7 @@ def test_lines_fit_in_a_hundred_columns(name: str) -> None:
 
 def test_figures_are_told_in_words() -> None:
     """With drawings, the text holds their descriptions."""
-    written = renderer.text(compose(sheet_cases.roof()))
+    written = renderer.text(compose(sheet_cases.roof(), detail="all"))
     assert written.count("[Figure: ") >= 2 + len(sheet_cases.roof().steps)
 
 

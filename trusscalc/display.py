@@ -26,6 +26,7 @@ from trusscalc.replacefile import replace_file
 from trusscalc.sheet import compose as composing
 from trusscalc.sheet.blocks import Column, Derivation, Inline, Items, Labelled, Lines, Picture, Run, Sheet, Table, Value
 from trusscalc.sheet.derivation import NOTHING
+from trusscalc.sheet.detail import Detail
 from trusscalc.sheet.equations import times
 from trusscalc.sheet.figures import Figure, cut_figure, mechanism_figure, truss_figure
 from trusscalc.sheet.values import decimal_text, formula
@@ -99,10 +100,25 @@ def attach() -> None:
 
 
 def _sheet(
-    check: MemberCheck, project: Project | None = None, *, truss_text: str = "", places: int = 3, drawings: bool = True
+    check: MemberCheck,
+    project: Project | None = None,
+    *,
+    truss_text: str = "",
+    places: int = 3,
+    drawings: bool = True,
+    detail: Detail = "members",
+    graphics: bool = False,
 ) -> Sheet:
     """Return the calculation sheet of this check; see ``trusscalc.sheet.compose.compose``."""
-    return composing.compose(check, project, truss_text=truss_text, places=places, drawings=drawings)
+    return composing.compose(
+        check,
+        project,
+        truss_text=truss_text,
+        places=places,
+        drawings=drawings,
+        detail=detail,
+        graphics=graphics,
+    )
 
 
 def _derivation(check: MemberCheck, number: int, *, places: int = 3, drawings: bool = True) -> Derivation:

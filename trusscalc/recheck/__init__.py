@@ -270,7 +270,15 @@ def derive(record: Mapping[str, Any], truss_text: str) -> Sheet:
     case = stated.case(record["case"])
     check = check_members(stated.truss, case, record["members"], cuts=cuts, prefer=record["prefer"])
     project = Project(**record["project"], names=record["names"])
-    return compose(check, project, truss_text=truss_text, places=record["places"], drawings=record["drawings"])
+    return compose(
+        check,
+        project,
+        truss_text=truss_text,
+        places=record["places"],
+        drawings=record["drawings"],
+        detail=record["detail"],
+        graphics=record["graphics"],
+    )
 
 
 def _must_be_known(record: Mapping[str, Any]) -> None:
@@ -294,6 +302,8 @@ def _must_be_known(record: Mapping[str, Any]) -> None:
         "prefer": lambda item: item in ("", "sections", "joints"),
         "places": lambda item: type(item) is int,
         "drawings": lambda item: type(item) is bool,
+        "detail": lambda item: item in ("members", "all", "summary"),
+        "graphics": lambda item: type(item) is bool,
         "project": lambda items: entries(items, text) and set(items) <= lines,
         "names": lambda items: entries(items, text),
     }

@@ -18,6 +18,7 @@ from trusscalc.render.text import blocks_text, step_text
 from trusscalc.sheet.blocks import Block, Derivation, Heading, Listing, Origin, Sheet
 from trusscalc.sheet.digest import record_of
 from trusscalc.sheet.marks import Figure
+from trusscalc.sheet.record import INPUT
 
 PLACES: Final = 3
 """Decimal places of a check shown in a notebook without further words."""
@@ -37,11 +38,12 @@ def notebook(sheet: Sheet, *, draw: Svg = svg) -> str:
     from nbformat import v4  # noqa: PLC0415
 
     cells: list[Any] = []
-    for part in _parts(sheet.blocks):
-        listing = next((block for block in part if isinstance(block, Listing)), None)
-        if listing is None:
+    parts = _parts(sheet.blocks)
+    holder = _holder(parts)
+    for part in parts:
+        if not isinstance(part[0], Listing):  # a code cell holds the truss file instead
             cells.append(v4.new_markdown_cell(markdown(part, draw)))
-        else:
+        if part is holder:
             cells.append(_code(v4, file_source(sheet.origin), 1, []))
             cells.append(_code(v4, check_source(sheet.origin), 2, [_result(v4, bundle(sheet.summary, draw), 2)]))
     cells.append(v4.new_markdown_cell("## Derived again\n\nRun all cells: the last one compares every value."))
@@ -94,6 +96,13 @@ def _parts(blocks: Iterable[Block]) -> list[list[Block]]:
             parts.append([])
         parts[-1].append(block)
     return parts
+
+
+def _holder(parts: list[list[Block]]) -> list[Block]:
+    """Return the part that the truss file belongs to: its listing, else the tables of the input, else the last."""
+    listing = next((part for part in parts if isinstance(part[0], Listing)), None)
+    tables = (part for part in parts if isinstance(part[0], Heading) and part[0].text == INPUT)
+    return listing or next(tables, parts[-1])
 
 
 def _code(v4: Any, source: str, count: int, outputs: list[Any]) -> Any:

@@ -260,6 +260,10 @@ class Origin:
         Joints and members with their names elsewhere.
     drawings : bool
         Whether figures are drawn.
+    detail : str
+        Which derivations the sheet holds: ``members``, ``all`` or ``summary``.
+    graphics : bool
+        Whether it has the appendix of graphic statics.
     """
 
     truss_text: str
@@ -274,6 +278,8 @@ class Origin:
     prefer: str = ""
     names: tuple[tuple[str, str], ...] = ()
     drawings: bool = True
+    detail: Literal["members", "all", "summary"] = "members"
+    graphics: bool = False
 
 
 @dataclass(frozen=True, slots=True)

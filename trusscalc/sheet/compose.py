@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import warnings
+from collections.abc import Collection, Sequence
 from dataclasses import replace
 
 from trusscalc.errors import InputError, TrusscalcWarning
@@ -12,9 +13,12 @@ from trusscalc.loads import LoadCase
 from trusscalc.membercheck import MemberCheck
 from trusscalc.project import LINES, Project
 from trusscalc.sheet import figures, front, record
+from trusscalc.sheet.appendix import graphic_statics
 from trusscalc.sheet.atvalues import at_values
 from trusscalc.sheet.blocks import Block, Derivation, Heading, Origin, Picture, Sheet
 from trusscalc.sheet.derivation import Writer, writer_of
+from trusscalc.sheet.detail import DETAILS, Detail, bodies_drawn_once, shown
+from trusscalc.sheet.figures import Figure
 from trusscalc.sheet.words import found_in
 from trusscalc.truss import Truss
 from trusscalc.trussfile import TrussFile
@@ -23,7 +27,14 @@ MOST_PLACES = 12
 
 
 def compose(
-    check: MemberCheck, project: Project | None = None, *, truss_text: str = "", places: int = 3, drawings: bool = True
+    check: MemberCheck,
+    project: Project | None = None,
+    *,
+    truss_text: str = "",
+    places: int = 3,
+    drawings: bool = True,
+    detail: Detail = "members",
+    graphics: bool = False,
 ) -> Sheet:
     """Return the calculation sheet of a check.
 
@@ -39,11 +50,18 @@ def compose(
         Decimal places, 0 to 12.
     drawings : bool
         Whether figures are drawn.
+    detail : str
+        ``members``: all derivations in the main part; of more than twelve members those that govern, the others in
+        an appendix. ``all``: all in the main part, each with its own free body, and the truss file word by word.
+        ``summary``: none, and the scope says so.
+    graphics : bool
+        Whether an appendix of graphic statics is added: force polygons and, where it exists, Maxwell's diagram.
 
     Raises
     ------
     InputError
-        When ``truss_text`` states another truss or other loads than were checked, or places are out of range.
+        When ``truss_text`` states another truss or other loads than were checked, places are out of range, or for
+        another detail.
 
     Examples
     --------
@@ -56,47 +74,72 @@ def compose(
     if not 0 <= places <= MOST_PLACES:
         message = f"{places} decimal places: give a number from 0 to {MOST_PLACES}"
         raise InputError(message)
+    if detail not in DETAILS:
+        message = f"detail {detail!r}: choose {', '.join(DETAILS[:-1])} or {DETAILS[-1]}"
+        raise InputError(message)
     stated = _stated(check, truss_text) if truss_text else None
     project = project or (stated.project if stated else Project())
     text = truss_text or writes(TrussFile(check.truss, (check.case,), (), project))
     check = replace(check, truss=(stated or _read_again(text)).truss)  # the echo is of the text, groups and all
     writer = writer_of(check, places)
     drawn = at_values(check)
-    summary = tuple(front.summary(writer))
+    told = detail != "summary"
+    steps = shown(check, detail)
+    summary = tuple(front.summary(writer, steps=told))
     blocks: list[Block] = [
         front.title_block(check, project),
         *front.opening(check, project),
         *summary,
         *([Picture((figures.elevation(drawn),))] if drawings else []),
-        *front.scope(check),
+        *front.scope(check, detail),
         *record.basis(check, text, places),
-        *record.input_echo(writer, project, text),
+        *record.input_echo(writer, project, text, verbatim=detail == "all"),
         *record.loads(writer),
-        *record.reactions(writer),
-        *derivations(writer, drawings=drawings),
+        *record.reactions(writer, steps=told),
+        *derivations(writer, steps.main, drawings=drawings, each_drawn=detail == "all"),
         *record.cross_check(check),
         *([Picture((figures.result_drawing(drawn),))] if drawings else []),
         *record.cautions(),
         *record.revisions(project),
+        *further_derivations(writer, steps.further, drawings=drawings),
+        *(graphic_statics(check, places) if graphics else []),
     ]
     title = f"{front.TITLE}: {check.truss.title}" if check.truss.title else front.TITLE
-    return Sheet(title, tuple(blocks), summary, _origin(check, project, text, places, drawings=drawings))
+    origin = _origin(check, project, text, places, drawings=drawings)
+    return Sheet(title, tuple(blocks), summary, replace(origin, detail=detail, graphics=graphics))
 
 
-def derivations(writer: Writer, *, drawings: bool = True) -> list[Block]:
-    """Return all steps in their order: those that find reactions first stand under their own heading."""
+def derivations(
+    writer: Writer, numbers: Collection[int], *, drawings: bool = True, each_drawn: bool = False
+) -> list[Block]:
+    """Return steps in their order: those that find reactions first stand under their own heading."""
     blocks: list[Block] = []
     heading = ""
     drawn = at_values(writer.check)
-    for step, shown in zip(writer.check.steps, drawn.steps, strict=True):
+    once = {} if each_drawn or not drawings else bodies_drawn_once(writer.check)
+    for step in writer.check.steps:
+        if step.number not in numbers:
+            continue
         links = all(writer.teller.is_link(name) for name in found_in(step))
         wanted = "Derivation of the reactions" if links and heading != "Derivation of the members" else ""
         wanted = wanted or "Derivation of the members"
         if wanted != heading:
             heading = wanted
             blocks.append(Heading(2, heading))
-        blocks.append(writer.derivation(step, figures.free_body(drawn, shown) if drawings else ()))
+        beside, drawn_as = once.get(step.number, (step.number, step.number))
+        own: Sequence[Figure] = ()
+        if drawings and beside == step.number:
+            own = figures.free_body(drawn, drawn.steps[drawn_as - 1])
+        if own and drawn_as != beside:
+            own = tuple(replace(figure, caption=f"{figure.caption} As step {drawn_as} uses it.") for figure in own)
+        blocks.append(writer.derivation(step, own, drawn_with=beside if beside != step.number else 0))
     return blocks
+
+
+def further_derivations(writer: Writer, numbers: Collection[int], *, drawings: bool = True) -> list[Block]:
+    """Return the appendix of steps that no governing member rests on, [] when there are none."""
+    blocks = derivations(writer, numbers, drawings=drawings)
+    return [Heading(2, front.FURTHER), *(block for block in blocks if isinstance(block, Derivation))] if blocks else []
 
 
 def derivation(check: MemberCheck, number: int, *, places: int = 3, drawings: bool = True) -> Derivation:
@@ -108,9 +151,9 @@ def derivation(check: MemberCheck, number: int, *, places: int = 3, drawings: bo
         When there is no step of that number.
     """
     drawn = at_values(check)
-    for step, shown in zip(check.steps, drawn.steps, strict=True):
+    for step, other in zip(check.steps, drawn.steps, strict=True):
         if step.number == number:
-            return writer_of(check, places).derivation(step, figures.free_body(drawn, shown) if drawings else ())
+            return writer_of(check, places).derivation(step, figures.free_body(drawn, other) if drawings else ())
     message = f"there is no step {number}; the steps are 1 to {len(check.steps)}"
     raise InputError(message)
 

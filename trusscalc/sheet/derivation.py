@@ -81,13 +81,13 @@ class Writer:
         """What tells of steps in words."""
         return self.equations.teller
 
-    def derivation(self, step: Step, figures: Sequence[Figure] = ()) -> Derivation:
-        """Return a step as a block."""
+    def derivation(self, step: Step, figures: Sequence[Figure] = (), *, drawn_with: int = 0) -> Derivation:
+        """Return a step as a block; ``drawn_with`` is the step beside which its free body stands, if not this one."""
         lines, notes, tables = self._lines(step)
         check, check_notes = self._check(step)
         return Derivation(
             heading=Heading(3, self.teller.title(step), str(step.number), self._right(step)),
-            reason=Paragraph((Run(self.teller.reason(step)),)),
+            reason=Paragraph((Run(self.teller.reason(step) + (f" Free body: step {drawn_with}." * bool(drawn_with))),)),
             picture=Picture(tuple(figures)) if figures else None,
             lines=Lines(tuple(lines)),
             tables=(*tables, *self._numbered(step)),

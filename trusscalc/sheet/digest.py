@@ -35,6 +35,8 @@ def record_of(sheet: Sheet) -> dict[str, Any]:
         "prefer": origin.prefer,
         "places": origin.places,
         "drawings": origin.drawings,
+        "detail": origin.detail,
+        "graphics": origin.graphics,
         "project": dict(origin.project),
         "names": dict(origin.names),
         "input": hashlib.sha256(origin.truss_text.encode()).hexdigest(),

@@ -19,7 +19,9 @@ from trusscalc.sheet.blocks import (
     Table,
     TitleBlock,
 )
+from trusscalc.sheet.compact import without_columns
 from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, sense, tension_of
+from trusscalc.sheet.detail import Detail, shown
 from trusscalc.sheet.values import DIGITS, bound, decimal_text, difference, is_readable, printed, scientific
 from trusscalc.sheet.words import bar, capital, counted, listed
 
@@ -29,6 +31,11 @@ LIMIT = (
     "both routes use the same geometry, supports and loads: an error there passes both. Compare the input with the "
     "drawings."
 )
+NOT_DERIVED = (
+    "none on this sheet: forces and verdicts are stated, and how they were derived is not shown. By itself it is no "
+    "hand check that can be followed; a sheet with derivations comes from the same truss file"
+)
+FURTHER = "Further derivations"
 FIELDS = (
     "project",
     "structure",
@@ -100,13 +107,13 @@ def _has_coefficients(check: MemberCheck) -> bool:
     return any(found.coefficients for found in (*check.members.values(), *check.reactions.values()))
 
 
-def summary(writer: Writer) -> list[Block]:
-    """Return conclusion, table and notes: the sheet in short."""
+def summary(writer: Writer, *, steps: bool = True) -> list[Block]:
+    """Return conclusion, table and notes: the sheet in short; ``steps`` says whether it may point at them."""
     check = writer.check
-    return [Paragraph(tuple(_conclusion(writer)), "conclusion"), summary_table(writer), *_notes(check)]
+    return [Paragraph(tuple(_conclusion(writer)), "conclusion"), summary_table(writer, steps=steps), *_notes(check)]
 
 
-def summary_table(writer: Writer) -> Table:
+def summary_table(writer: Writer, *, steps: bool = True) -> Table:
     """Return one row for each member asked for."""
     check = writer.check
     by_number = {step.number: step for step in check.steps}
@@ -125,7 +132,8 @@ def summary_table(writer: Writer) -> Table:
         if found.verdict == "differs":
             strong.append(place)
     columns = (Column("member"), Column("derived by"), Column("step", "right"), *RESULT_COLUMNS)
-    return Table(columns, tuple(rows), strong_rows=tuple(strong))
+    table = Table(columns, tuple(rows), strong_rows=tuple(strong))
+    return table if steps else without_columns(table, lambda place, _: columns[place].head == "step")
 
 
 # --- conclusion -------------------------------------------------------------------------------------------
@@ -293,7 +301,7 @@ def _notes(check: MemberCheck) -> list[Block]:
 # --- scope ------------------------------------------------------------------------------------------------
 
 
-def scope(check: MemberCheck) -> list[Block]:
+def scope(check: MemberCheck, detail: Detail = "members") -> list[Block]:
     """Return what was checked, what was not, and what no such check can see; with room to sign and to seal."""
     checked = [name for name, found in check.members.items() if found.exact is not None]
     rest = [member.name for member in check.truss.members if member.name not in set(checked)]
@@ -310,9 +318,18 @@ def scope(check: MemberCheck) -> list[Block]:
             f"{counted(len(rest), 'member')}{': ' + listed(map(bar, rest)) if rest else ''}; other load cases",
         ),
         ("Not covered", "strength, buckling, connections, fatigue, bracing, foundations, deflection"),
-        (
-            "Limit",
-            LIMIT,
-        ),
+        *_derived(check, detail),
+        ("Limit", LIMIT),
     ]
     return [Heading(2, "Scope"), Items(tuple((term, (Run(text),)) for term, text in items)), Seal()]
+
+
+def _derived(check: MemberCheck, detail: Detail) -> list[tuple[str, str]]:
+    """Return where derivations stand, unless all of them stand in the main part."""
+    if detail == "summary":
+        return [("Derivations", NOT_DERIVED)]
+    steps = shown(check, detail)
+    if not steps.further:
+        return []
+    text = f"of {listed(map(bar, steps.governing))} in the main part; of the others in the appendix “{FURTHER}”"
+    return [("Derivations", text)]

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import hashlib
+from collections.abc import Sequence
 from importlib.metadata import version
 
 from trusscalc.exact import ZERO, Exact
@@ -21,8 +22,9 @@ from trusscalc.sheet.blocks import (
     Run,
     Table,
 )
+from trusscalc.sheet.compact import ends_within, is_blank, without_columns
 from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, tension_of, without_sense
-from trusscalc.sheet.values import decimal_text, printed, scientific
+from trusscalc.sheet.values import decimal_text, is_readable, printed, scientific
 from trusscalc.sheet.words import bar, counted, listed
 
 ASSUMPTIONS = (
@@ -53,6 +55,14 @@ METHOD = (
 )
 WELL_CONDITIONED = "what double precision keeps of a well-conditioned truss; more is a mistake, not a tolerance"
 ILL_CONDITIONED = "ten times the rounding error to be expected of the numeric route at the condition told below"
+
+INPUT = "Input"
+NOT_VERBATIM = (
+    "The truss file is not printed word by word: these tables, with the loads and the title block, say all that it "
+    "states of this load case. Its digest stands under Basis."
+)
+UNGROUPED = "members"
+"""What members are called that were stated without groups."""
 
 AXIAL_ONLY = (
     "This sheet checks axial forces of an ideal truss only. It says nothing about the strength, stability, "
@@ -110,8 +120,8 @@ def basis(check: MemberCheck, truss_text: str, places: int) -> list[Block]:
 # --- input ------------------------------------------------------------------------------------------------
 
 
-def input_echo(writer: Writer, project: Project, truss_text: str) -> list[Block]:
-    """Return joints, members with their lengths, supports, other names, and the truss file itself."""
+def input_echo(writer: Writer, project: Project, truss_text: str, *, verbatim: bool = True) -> list[Block]:
+    """Return joints, members with their lengths, supports, other names, and, ``verbatim``, the truss file itself."""
     check = writer.check
     truss = check.truss
     other = project.names
@@ -127,36 +137,57 @@ def input_echo(writer: Writer, project: Project, truss_text: str) -> list[Block]
         cells = (Run(bar(member.name)), Run(member.group), *_both(writer, length), Run(others))
         members.append((*cells, Run(_behaviour(check, member.name))))
     unit = truss.length
+    joint_table = Table(
+        (
+            Column("joint"),
+            Column(f"x exact, {unit}", "right"),
+            Column("decimal", "right"),
+            Column(f"y exact, {unit}", "right"),
+            Column("decimal", "right"),
+            Column("name elsewhere"),
+        ),
+        joints,
+        f"{counted(len(joints), 'joint')}.",
+    )
+    member_table = Table(
+        (
+            Column("member"),
+            Column("group"),
+            Column(f"length exact, {unit}", "right"),
+            Column("decimal", "right"),
+            Column("name elsewhere"),
+            Column("stated behaviour"),
+        ),
+        tuple(members),
+        f"{counted(len(members), 'member')}; lengths calculated from the joints.",
+    )
+    stated = [part for joint in truss.joints for part in (joint.x, joint.y)]
+    directions = [part for link in truss.links for part in (link.dx, link.dy)]
+    forces = [part for load in check.case.loads for part in (load.fx, load.fy)]
+    whole = all(map(is_readable, (*stated, *directions, *forces)))
     blocks: list[Block] = [
-        Heading(2, "Input"),
-        Table(
-            (
-                Column("joint"),
-                Column(f"x exact, {unit}", "right"),
-                Column("decimal", "right"),
-                Column(f"y exact, {unit}", "right"),
-                Column("decimal", "right"),
-                Column("name elsewhere"),
-            ),
-            joints,
-            f"{counted(len(joints), 'joint')}.",
-        ),
-        Table(
-            (
-                Column("member"),
-                Column("group"),
-                Column(f"length exact, {unit}", "right"),
-                Column("decimal", "right"),
-                Column("name elsewhere"),
-                Column("stated behaviour"),
-            ),
-            tuple(members),
-            f"{counted(len(members), 'member')}; lengths calculated from the joints.",
-        ),
+        Heading(2, INPUT),
+        _close(joint_table, stated, writer.places),
+        _close(member_table, [bars[member.name].length for member in truss.members], writer.places),
         _supports(check),
-        Listing(truss_text, "The truss file, as read"),
     ]
+    if verbatim or not whole:
+        blocks.append(Listing(truss_text, "The truss file, as read"))
+    else:
+        blocks.append(Paragraph((Run(NOT_VERBATIM),), "note"))
     return blocks
+
+
+def _close(table: Table, values: Sequence[Exact], places: int) -> Table:
+    """Return a table without what tells nothing: empty columns, one group for all, decimals of short decimals."""
+    exact = all(ends_within(value, places) for value in values)
+
+    def idle(place: int, cells: Sequence[Inline | None]) -> bool:
+        head = table.columns[place].head
+        ungrouped = head == "group" and set(cells) == {Run(UNGROUPED)}
+        return is_blank(cells) or ungrouped or (head == "decimal" and exact)
+
+    return without_columns(table, idle)
 
 
 def _both(writer: Writer, value: Exact) -> tuple[Inline, Inline]:
@@ -222,13 +253,15 @@ def _force_cells(writer: Writer, fx: Exact, fy: Exact, symbolic: bool) -> tuple[
     return (*exact, _near(case.value(fx), writer.places), _near(case.value(fy), writer.places))
 
 
-def reactions(writer: Writer) -> list[Block]:
-    """Return the reactions and the proof that they balance the loads."""
+def reactions(writer: Writer, *, steps: bool = True) -> list[Block]:
+    """Return the reactions and the proof that they balance the loads; ``steps`` says whether it may point at them."""
     check = writer.check
     rows, strong = [], []
     for place, (name, found) in enumerate(check.reactions.items()):
         cells = writer.result_cells(name, found.exact, found)
         source = f"step {found.steps[-1]}" if found.steps else "not decided by statics"
+        if found.steps and not steps:
+            source = writer.teller.found_by(check.steps[found.steps[-1] - 1])
         rows.append((Run(bar(name)), Run(source), *cells))
         if found.verdict == "differs":
             strong.append(place)
