@@ -80,7 +80,7 @@ def _terms(node: Node, lead: str) -> list[Piece]:
     return found
 
 
-def listed(node: Node) -> list[Any]:  # noqa: C901, PLR0911 - one line for each kind of node
+def listed(node: Node) -> list[Any]:  # noqa: PLR0911 - one line for each kind of node
     """Return a node as a list: its kind, then what it holds.
 
     Raises
