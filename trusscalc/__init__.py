@@ -27,6 +27,7 @@ if TYPE_CHECKING:
     from trusscalc.sheet.blocks import Sheet
     from trusscalc.statics.owncuts import OwnCut
     from trusscalc.truss import Truss
+    from trusscalc.trussfile import TrussFile
 
 __version__ = "0.1.0"
 
@@ -38,6 +39,7 @@ _HOME = {
     "Project": "project",
     "Sheet": "sheet.blocks",
     "Truss": "truss",
+    "TrussFile": "trussfile",
     "TrusscalcError": "errors",
     "TrusscalcWarning": "errors",
     "check_members": "membercheck",
@@ -56,6 +58,7 @@ __all__ = [
     "Project",
     "Sheet",
     "Truss",
+    "TrussFile",
     "TrusscalcError",
     "TrusscalcWarning",
     "check_members",
