@@ -24,14 +24,18 @@ NO_POLYGON = "No force polygon: of no free body are all forces on this sheet."
 
 
 def graphic_statics(check: MemberCheck, places: int) -> list[Block]:
-    """Return Maxwell's diagram, or why there is none, and the polygons of all free bodies whose forces are known."""
-    blocks: list[Block] = [Heading(2, TITLE), Paragraph((Run(ABOUT),), "note")]
+    """Return Maxwell's diagram, or why there is none, and the polygons of free bodies whose forces are all known.
+
+    Those of sections only where there is no Maxwell diagram, which holds them.
+    """
+    blocks: list[Block] = [Heading(2, TITLE)]
     diagram = maxwell_diagram(check)
     if diagram is None:
         blocks.append(Paragraph((Run(why_no_maxwell(check)),)))
     else:
         blocks += [Picture((diagram,)), _names(check, places)]
-    polygons = _polygons(check)
+    blocks.append(Paragraph((Run(ABOUT),), "note"))
+    polygons = _polygons(check, sections=diagram is None)
     if not polygons:
         blocks.append(Paragraph((Run(NO_POLYGON),)))
     for place in range(0, len(polygons), SIDE_BY_SIDE):
@@ -60,10 +64,11 @@ def _on_the_way(check: MemberCheck, name: str) -> Exact | None:
     return next((step.results[name] for step in check.steps if name in step.results), None)
 
 
-def _polygons(check: MemberCheck) -> list[Figure]:
-    """Return one polygon for each free body, in the order of the steps; the last step that has it, if several."""
+def _polygons(check: MemberCheck, *, sections: bool) -> list[Figure]:
+    """Return one polygon for each free body, in the order of the steps."""
     by_body: dict[tuple[str, ...], Step] = {}
     for step in check.steps:
-        by_body.setdefault(step.cut.kept, step)
+        if sections or step.cut.kind != "section":
+            by_body.setdefault(step.cut.kept, step)
     found = (force_polygon(check, step) for step in by_body.values())
     return [figure for figure in found if figure is not None]

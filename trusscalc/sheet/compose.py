@@ -90,7 +90,7 @@ def compose(
         front.title_block(check, project),
         *front.opening(check, project),
         *summary,
-        *([Picture((figures.elevation(drawn),))] if drawings else []),
+        *([Picture((figures.elevation(drawn if told else replace(drawn, steps=())),))] if drawings else []),
         *front.scope(check, detail),
         *record.basis(check, text, places),
         *record.input_echo(writer, project, text, verbatim=detail == "all"),

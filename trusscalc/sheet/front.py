@@ -133,7 +133,7 @@ def summary_table(writer: Writer, *, steps: bool = True) -> Table:
             strong.append(place)
     columns = (Column("member"), Column("derived by"), Column("step", "right"), *RESULT_COLUMNS)
     table = Table(columns, tuple(rows), strong_rows=tuple(strong))
-    return table if steps else without_columns(table, lambda place, _: columns[place].head == "step")
+    return table if steps else without_columns(table, lambda place, _: columns[place].head in ("derived by", "step"))
 
 
 # --- conclusion -------------------------------------------------------------------------------------------
