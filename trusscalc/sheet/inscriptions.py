@@ -24,6 +24,8 @@ PLACES: Final = 3
 LONGEST_ARM: Final = 8
 """Arms whose exact text is longer are written as decimals."""
 STEPS: Final = (Fraction(1), Fraction(2), Fraction(5, 2), Fraction(5))
+BRIDGE_STEPS: Final = (Fraction(3), Fraction(4))
+"""On the scale rule between 1:250 and 1:500, where whole bridges are drawn (common practice, no source)."""
 FEET_TO_AN_INCH: Final = (1, 2, 3, 4, 5, 6, 8, 10, 15, 20, 30, 40, 50, 60, 80)
 LARGEST_LEG: Final = 99
 
@@ -109,8 +111,10 @@ def scales(unit: str) -> list[Scale]:
     one = float(LENGTHS[unit] * 1000)
     found = []
     for power in range(-3, 8):
-        for step in STEPS:
+        for step in sorted((*STEPS, *BRIDGE_STEPS)):
             n = step * Fraction(10) ** power
+            if step in BRIDGE_STEPS and power != 2:  # noqa: PLR2004 - 1:300 and 1:400
+                continue
             text = f"1:{n}" if n >= 1 and n.denominator == 1 else f"{1 / n}:1"
             if n.denominator == 1 or (1 / n).denominator == 1:
                 found.append(Scale(one / float(n), text))
