@@ -21,8 +21,8 @@ mp.dps = DIGITS
 Number = Any
 TINY = mp.mpf(10) ** -45
 """Relative size below which a number of 60 digits is zero."""
-TINY_WHEN_ROUNDED = mp.mpf(10) ** -27
-"""The same where a truss's angles are rounded to 30 digits on the way in."""
+TINY_WHEN_ROUNDED = mp.mpf(10) ** -31
+"""The same where angles are rounded on the way in, to some digits more than 30."""
 
 Sum = dict[str, Number]
 """A value: its number under '', and what multiplies each carried unknown."""

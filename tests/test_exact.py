@@ -349,16 +349,18 @@ class TestAngles:
         if cosine:
             assert same(parse(f"tan({degrees})"), mpmath.tan(angle), 50)
 
-    @pytest.mark.parametrize("degrees", ["20", "1", "-100", "123.456", "359.9", "1/3", "100000"])
+    @pytest.mark.parametrize("degrees", ["20", "1", "-100", "123.456", "359.9", "1/3", "100000", "1e-9", "89.999999"])
     def test_other_angles_are_rounded_and_say_so(self, degrees: str) -> None:
-        """To 28 digits at least, with sin^2 + cos^2 still exactly 1, and the mark survives arithmetic."""
+        """To 34 digits, in short fractions with sin^2 + cos^2 exactly 1, and the mark survives arithmetic."""
         sine, cosine = parse(f"sin({degrees})"), parse(f"cos({degrees})")
         angle = mpmath.radians(big(Fraction(degrees)))
         assert sine.rounded
         assert cosine.rounded
-        assert same(sine, mpmath.sin(angle), 28)
-        assert same(cosine, mpmath.cos(angle), 28)
+        assert same(sine, mpmath.sin(angle), 34)
+        assert same(cosine, mpmath.cos(angle), 34)
         assert sine * sine + cosine * cosine == ONE
+        if degrees != "1e-9":
+            assert cosine.as_fraction().denominator < 10**45
         assert (2 * sine + sqrt(rational(2))).rounded
         assert (ONE / cosine).rounded
         assert sqrt(cosine * cosine).rounded

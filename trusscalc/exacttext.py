@@ -9,7 +9,6 @@ from __future__ import annotations
 
 import re
 from collections.abc import Collection
-from decimal import Context, Decimal
 from fractions import Fraction
 from functools import lru_cache
 from typing import Any
@@ -32,6 +31,8 @@ MOST_SYMBOL_TERMS = 16
 HIGHEST_DEGREE = 6
 MOST_HARD_ROOTS = 6
 ANGLE_DIGITS = 30
+GUARD_DIGITS = 5
+"""Carried besides, so that what cancels with the true angle still cancels to 30 digits after some arithmetic."""
 FUNCTIONS = ("sqrt", "sin", "cos", "tan")
 MOST_HALVINGS = 3
 
@@ -307,7 +308,8 @@ def cosine_and_sine(degrees: Fraction) -> tuple[Exact, Exact]:
     -----
     Multiples of 6 degrees, halved up to three times, have square roots for sine and cosine (they come from
     the equilateral triangle and the regular pentagon). Any other angle is rounded once: the tangent of its
-    half to 30 digits, so that cosine and sine are rational and their squares still add up to exactly 1.
+    half becomes a fraction, right to a few digits more than 30. So cosine and sine are rational, right to 30
+    digits, and their squares still add up to exactly 1.
     """
     degrees = degrees % 360
     halvings = 0
@@ -348,11 +350,15 @@ def _rounded_angle(degrees: Fraction) -> tuple[Exact, Exact]:
     import mpmath  # noqa: PLC0415 - only angles that are no surds need it
 
     quarter_turns, rest = divmod(degrees + 45, 90)
-    with mpmath.workdps(ANGLE_DIGITS + 20):
+    with mpmath.workdps(2 * ANGLE_DIGITS):
         angle = (mpmath.mpf(rest.numerator) / rest.denominator - 45) / 2
-        half = mpmath.tan(mpmath.radians(angle))
-        text = mpmath.nstr(half, ANGLE_DIGITS, strip_zeros=False, min_fixed=-2, max_fixed=2)
-    tangent = Fraction(Context(prec=ANGLE_DIGITS + 5).create_decimal(Decimal(text)))
+        text = mpmath.nstr(mpmath.tan(mpmath.radians(angle)), ANGLE_DIGITS + 2 * GUARD_DIGITS)
+    half = Fraction(text)
+    # the fraction with the smallest denominator: half the digits that a rounded decimal takes, in all that follows
+    tangent, largest = Fraction(0), 10 ** (ANGLE_DIGITS // 2)
+    while abs(tangent - half) > abs(half) / 10 ** (ANGLE_DIGITS + GUARD_DIGITS):
+        tangent = half.limit_denominator(largest)
+        largest *= 10
     below = 1 + tangent * tangent
     c, s = (1 - tangent * tangent) / below, 2 * tangent / below
     for _ in range(int(quarter_turns)):
