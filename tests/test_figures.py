@@ -412,7 +412,7 @@ def test_values_without_room_are_named() -> None:
     """Members whose value finds no room are listed in the caption, not dropped in silence."""
     truss, case, _ = drawn_trusses.pratt(60)
     figure = result_drawing(check_members(truss, case, ["L1-L2", "U29-U30"]), width=60)
-    assert "see the table" in figure.caption or len([t for t in texts(figure) if t.endswith((" T", " C"))]) == 2
+    assert "see the summary" in figure.caption or len([t for t in texts(figure) if t.endswith((" T", " C"))]) == 2
 
 
 @pytest.mark.parametrize(("name", "text"), [("k", "8 panels of 4 m, together 32 m"), ("arch", "2 panels of 4")])

@@ -19,7 +19,7 @@ from trusscalc.exact import Exact, rational
 from trusscalc.exacttext import to_text
 from trusscalc.files import writes
 from trusscalc.loads import LoadCase
-from trusscalc.membercheck import MemberCheck
+from trusscalc.membercheck import MemberCheck, check_members
 from trusscalc.render.text import text
 from trusscalc.sheet import hence
 from trusscalc.sheet.blocks import (
@@ -125,6 +125,14 @@ def test_golden_model() -> None:
     sheet = compose(sheet_cases.warren(), sheet_cases.PROJECT, drawings=False)
     path = GOLDEN / "warren_model.txt"
     assert model_text(sheet) == path.read_text(encoding="utf-8")
+
+
+def test_a_check_without_own_checks_makes_no_sheet() -> None:
+    """The sheet shows a check beside every step, so it refuses a result made without them."""
+    check = sheet_cases.warren()
+    bare = check_members(check.truss, check.case, list(check.members), own_checks=False)
+    with pytest.raises(InputError, match="own_checks=True"):
+        compose(bare)
 
 
 def test_parts_stand_in_their_order() -> None:

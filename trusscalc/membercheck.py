@@ -99,6 +99,8 @@ class MemberCheck(Convenient):
         For some members the joints of the cut the engineer chose.
     prefer : str
         What the engineer leaned to: ``sections``, ``joints`` or ''.
+    own_checks : bool
+        Whether the steps have their checks by unused equations; a sheet is made only with them.
     """
 
     truss: Truss
@@ -118,6 +120,7 @@ class MemberCheck(Convenient):
     unstable_where: tuple[str, ...] = ()
     cuts: Mapping[str, tuple[str, ...]] = field(default_factory=dict)
     prefer: Preference = ""
+    own_checks: bool = True
 
     def value(self, amount: Exact) -> Exact:
         """Return an amount with all symbols, of dimensions and of loads, replaced by their stated values."""
@@ -213,6 +216,7 @@ def check_members(
         unstable_where=vanishing(equilibrium.tensions.values()) if truss.symbols else (),
         cuts=own,
         prefer=prefer,
+        own_checks=own_checks,
     )
 
 

@@ -8,6 +8,7 @@ from fractions import Fraction
 
 from trusscalc.exact import Exact
 from trusscalc.sheet.blocks import Inline, Run, Table
+from trusscalc.sheet.words import listed
 
 
 def without_columns(table: Table, idle: Callable[[int, Sequence[Inline | None]], bool]) -> Table:
@@ -28,3 +29,23 @@ def ends_within(value: Exact, places: int) -> bool:
         return False
     scaled: Fraction = value.as_fraction() * 10**places
     return scaled.denominator == 1
+
+
+def together(rows: Sequence[tuple[Inline | None, ...]]) -> tuple[tuple[Inline | None, ...], ...]:
+    """Return rows that differ in their first cell only put into one, which lists these cells.
+
+    Where that saves less than half of the rows they stay as they are: a long narrow table is then read more easily.
+
+    Parameters
+    ----------
+    rows : sequence of tuple
+        The first cell of each is a ``Run``.
+    """
+    alike: dict[tuple[Inline | None, ...], list[str]] = {}
+    for first, *rest in rows:
+        alike.setdefault(tuple(rest), []).append(first.text if isinstance(first, Run) else "")
+    if 2 * len(alike) > len(rows):
+        return tuple(rows)
+    return tuple(
+        (Run(f"{listed(names)}, each" if len(names) > 1 else names[0]), *rest) for rest, names in alike.items()
+    )

@@ -71,6 +71,9 @@ def compose(
     >>> [block.text for block in sheet.blocks if isinstance(block, Heading) and block.level == 2][:3]
     ['Scope', 'Basis', 'Input']
     """
+    if not check.own_checks:
+        message = "this check was made without the steps' own checks, which a sheet shows; make it with own_checks=True"
+        raise InputError(message)
     if not 0 <= places <= MOST_PLACES:
         message = f"{places} decimal places: give a number from 0 to {MOST_PLACES}"
         raise InputError(message)

@@ -98,7 +98,10 @@ def result_drawing(check: MemberCheck, *, width: float = FULL_WIDTH) -> Figure:
         return _results(check, scale, places)
 
     single = _fitted_drawing(check.truss, width, draw)
-    rows = in_rows(check, places, width, len(single.without_room)) if single.without_room else []
+    missing = len(single.without_room)
+    # a few members of many stand in the summary too: values told there only are no reason for a second row
+    few = 2 * len(check.members) < len(check.truss.members)
+    rows = in_rows(check, places, width, missing) if missing and not few else []
     drawings = rows or [single]
     figures = [drawing.board.figure("", "", width=width) for drawing in drawings]
     return stacked(figures, _result_caption(check, drawings), alt)
@@ -140,7 +143,7 @@ def _result_caption(check: MemberCheck, drawings: Sequence[WholeTruss]) -> str:
         text += f" Not decided by statics, thin without a value: {_names(undecided)}."
     missing = [name for drawing in drawings for name in drawing.without_room]
     if missing:
-        text += f" No room in the drawing for the values of {_names(missing)}: see the table."
+        text += f" No room in the drawing for the values of {_names(missing)}: see the summary."
     return text
 
 

@@ -22,10 +22,10 @@ from trusscalc.sheet.blocks import (
     Run,
     Table,
 )
-from trusscalc.sheet.compact import ends_within, is_blank, without_columns
+from trusscalc.sheet.compact import ends_within, is_blank, together, without_columns
 from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, tension_of, without_sense
 from trusscalc.sheet.values import decimal_text, is_readable, printed, scientific
-from trusscalc.sheet.words import bar, counted, listed
+from trusscalc.sheet.words import bar, capital, counted, listed
 
 ASSUMPTIONS = (
     ("Members meet in frictionless hinges at their ends.", "Stiff joints add bending; axial forces change a little."),
@@ -147,7 +147,7 @@ def input_echo(writer: Writer, project: Project, truss_text: str, *, verbatim: b
             Column("name elsewhere"),
         ),
         joints,
-        f"{counted(len(joints), 'joint')}.",
+        f"{capital(counted(len(joints), 'joint'))}.",
     )
     member_table = Table(
         (
@@ -158,8 +158,8 @@ def input_echo(writer: Writer, project: Project, truss_text: str, *, verbatim: b
             Column("name elsewhere"),
             Column("stated behaviour"),
         ),
-        tuple(members),
-        f"{counted(len(members), 'member')}; lengths calculated from the joints.",
+        together(members),
+        f"{capital(counted(len(members), 'member'))}; lengths calculated from the joints.",
     )
     stated = [part for joint in truss.joints for part in (joint.x, joint.y)]
     directions = [part for link in truss.links for part in (link.dx, link.dy)]
@@ -231,10 +231,12 @@ def loads(writer: Writer) -> list[Block]:
     check = writer.check
     case, force = check.case, check.truss.force
     symbolic = any(part.symbols for load in case.loads for part in (load.fx, load.fy))
-    rows = [(Run(load.joint), *_force_cells(writer, load.fx, load.fy, symbolic)) for load in case.loads]
+    rows: list[tuple[Inline | None, ...]] = [
+        (Run(load.joint), *_force_cells(writer, load.fx, load.fy, symbolic)) for load in case.loads
+    ]
     fx = sum((load.fx for load in case.loads), start=ZERO)
     fy = sum((load.fy for load in case.loads), start=ZERO)
-    rows.append((Run("total"), *_force_cells(writer, fx, fy, symbolic)))
+    rows = [*together(rows), (Run("total"), *_force_cells(writer, fx, fy, symbolic))]
     columns = [Column("joint"), Column(f"Fx, {force}", "right"), Column(f"Fy, {force}", "right")]
     if symbolic:
         columns += [Column("Fx at values", "right"), Column("Fy at values", "right")]
