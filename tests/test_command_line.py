@@ -10,6 +10,7 @@ import sys
 from pathlib import Path
 from typing import Any
 
+import pikepdf
 import pytest
 import replay
 import trade_trusses as trade
@@ -522,6 +523,16 @@ def test_a_sheet_is_written(sheet: Any, tmp_path: Path, suffix: str) -> None:
     assert "6.928" in text
     if suffix == ".ipynb":
         assert json.loads(text)["nbformat"] == 4
+
+
+def test_a_pdf_on_either_paper(sheet: Any, tmp_path: Path) -> None:
+    """The media box is that of the paper asked for, in points."""
+    boxes = []
+    for paper in ("A4", "US Letter"):
+        assert sheet(FILE, "sheet.pdf", "--paper", paper, members="A-B").code in (0, 1)
+        with pikepdf.open(tmp_path / "sheet.pdf") as filed:
+            boxes.append([round(float(side)) for side in filed.pages[0].mediabox[2:]])
+    assert boxes == [[595, 842], [612, 792]]
 
 
 def test_the_same_sheet_again_is_the_same_bytes(tmp_path: Path) -> None:

@@ -73,6 +73,7 @@ def _parser() -> argparse.ArgumentParser:
     check.add_argument("--json", action="store_true", help="print the whole result as JSON")
     check.set_defaults(run=_check)
     sheet.add_argument("--out", required=True, help="the sheet; its suffix says how it is written")
+    sheet.add_argument("--paper", choices=("A4", "US Letter"), default="A4", help="of a PDF")
     sheet.set_defaults(run=_sheet)
     recheck = commands.add_parser("recheck", help="derive a filed sheet again and compare it with what it shows")
     recheck.add_argument("file", metavar="SHEET", help="a filed notebook (.ipynb), page (.html) or PDF")
@@ -119,9 +120,7 @@ def _checked(arguments: argparse.Namespace) -> tuple[TrussFile, MemberCheck]:
         cuts[member.strip()] = own_cut(stated.truss, keep=kept)
     case = stated.case(arguments.case)
     own_checks = arguments.command != "check"  # only a sheet shows them
-    return stated, check_members(
-        stated.truss, case, names, cuts=cuts, prefer=arguments.prefer, own_checks=own_checks
-    )
+    return stated, check_members(stated.truss, case, names, cuts=cuts, prefer=arguments.prefer, own_checks=own_checks)
 
 
 def _check(arguments: argparse.Namespace) -> int:
@@ -140,7 +139,7 @@ def _sheet(arguments: argparse.Namespace) -> int:
 
     refuse_unwritable(arguments.out)
     stated, check = _checked(arguments)
-    place = save(_composed(arguments, stated, check), arguments.out)
+    place = save(_composed(arguments, stated, check), arguments.out, paper=arguments.paper)
     told = "all agree" if check.agreed else "not all agree: see its first lines"
     _print(f"{place}: {len(check.members)} of {check.statics.members} members, {told}")
     return AGREED if check.agreed else DISAGREED

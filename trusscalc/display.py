@@ -48,7 +48,7 @@ MOST_POSSIBILITIES: Final = 6
 """Equations of a cut that are shown, those with fewest unknowns first."""
 
 
-def save(sheet: Sheet, path: str | os.PathLike[str]) -> Path:
+def save(sheet: Sheet, path: str | os.PathLike[str], *, paper: str = "A4") -> Path:
     """Write a sheet to a file; the file appears complete or not at all.
 
     Parameters
@@ -56,7 +56,9 @@ def save(sheet: Sheet, path: str | os.PathLike[str]) -> Path:
     sheet : Sheet
         What to write.
     path : path
-        Its suffix says how: ``.ipynb``, ``.html``, ``.pdf`` (on A4; ``render.pdf`` has other paper) or ``.txt``.
+        Its suffix says how: ``.ipynb``, ``.html``, ``.pdf`` or ``.txt``.
+    paper : str
+        ``A4`` or ``US Letter``, for a PDF; the other formats have no paper.
 
     Raises
     ------
@@ -68,7 +70,7 @@ def save(sheet: Sheet, path: str | os.PathLike[str]) -> Path:
     place = Path(path)
     refuse_unwritable(place)
     writer = WRITERS[place.suffix.lower()]
-    written = writer(sheet)
+    written = pdf(sheet, paper=paper) if writer is pdf else writer(sheet)
     replace_file(place, written.encode() if isinstance(written, str) else written)
     return place
 
