@@ -26,6 +26,8 @@ from trusscalc.sheet.values import DIGITS, bound, decimal_text, difference, is_r
 from trusscalc.sheet.words import bar, capital, counted, listed
 
 TITLE = "Independent check of truss member forces"
+MOST_NAMED = 24
+"""More members than this that were not checked are listed further back, so that the first sheet keeps its drawing."""
 
 LIMIT = (
     "both routes use the same geometry, supports and loads: an error there passes both. Compare the input with the "
@@ -301,10 +303,19 @@ def _notes(check: MemberCheck) -> list[Block]:
 # --- scope ------------------------------------------------------------------------------------------------
 
 
+def unchecked(check: MemberCheck) -> list[str]:
+    """Return the members no force is stated for."""
+    checked = {name for name, found in check.members.items() if found.exact is not None}
+    return [member.name for member in check.truss.members if member.name not in checked]
+
+
 def scope(check: MemberCheck, detail: Detail = "members") -> list[Block]:
     """Return what was checked, what was not, and what no such check can see; with room to sign and to seal."""
     checked = [name for name, found in check.members.items() if found.exact is not None]
-    rest = [member.name for member in check.truss.members if member.name not in set(checked)]
+    rest = unchecked(check)
+    told = ": " + listed(map(bar, rest)) if rest else ""
+    if len(rest) > MOST_NAMED:
+        told = ", listed under Cross-check"
     names = listed(map(bar, checked)) or "none"
     count = f"{len(checked)} of {len(check.truss.members)} members"
     balance = ", equilibrium of every joint" if check.statics.determinate else ""
@@ -315,7 +326,7 @@ def scope(check: MemberCheck, detail: Detail = "members") -> list[Block]:
         ),
         (
             "Not checked",
-            f"{counted(len(rest), 'member')}{': ' + listed(map(bar, rest)) if rest else ''}; other load cases",
+            f"{counted(len(rest), 'member')}{told}; other load cases",
         ),
         ("Not covered", "strength, buckling, connections, fatigue, bracing, foundations, deflection"),
         *_derived(check, detail),

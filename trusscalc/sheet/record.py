@@ -24,6 +24,7 @@ from trusscalc.sheet.blocks import (
 )
 from trusscalc.sheet.compact import ends_within, is_blank, together, without_columns
 from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, tension_of, without_sense
+from trusscalc.sheet.front import MOST_NAMED, unchecked
 from trusscalc.sheet.values import decimal_text, is_readable, printed, scientific
 from trusscalc.sheet.words import bar, capital, counted, listed
 
@@ -344,9 +345,16 @@ def cross_check(check: MemberCheck) -> list[Block]:
             (Run("imbalance at the worst joint "), _small(check.stiffness_residual), Run(" of the largest force")),
         ),
         ("Condition", (Run("estimated condition number "), _size(check.condition))),
+        *_not_checked(check),
         ("Independence", (Run("the two routes share no arithmetic; they share geometry, supports and loads"),)),
     ]
     return [Heading(2, "Cross-check"), Items(tuple(items))]
+
+
+def _not_checked(check: MemberCheck) -> list[tuple[str, tuple[Inline, ...]]]:
+    """Return the members the scope counts without naming them."""
+    names = unchecked(check)
+    return [("Members not checked", (Run(listed(map(bar, names))),))] if len(names) > MOST_NAMED else []
 
 
 def _shared(check: MemberCheck) -> list[tuple[str, tuple[Inline, ...]]]:
