@@ -215,6 +215,7 @@ def test_what_moves_is_named(why: str) -> None:
         solve(stated)
     problem = caught.value
     assert set(problem.joints) == moving
+    assert f"joints that can move: {', '.join(name for name in stated.joints if name in moving)}" in str(problem)
     assert set(problem.mechanism) <= moving
     assert max(abs(part) for move in problem.mechanism.values() for part in move) == 1
     assert no_bar_changes_length(stated, problem.mechanism)

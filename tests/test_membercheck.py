@@ -386,3 +386,13 @@ def test_steps_that_a_value_rests_on() -> None:
         needed = {each for number in item.steps for each in check.steps[number - 1].uses} | {name}
         for number in item.steps:
             assert needed & set(check.steps[number - 1].solves)
+
+
+def test_every_unknown_member_is_told() -> None:
+    """Not the first alone."""
+    with pytest.raises(InputError) as caught:
+        PRATT.check(["L0-L1", "L0-L9", "U1-X2"])
+    assert [problem.split(";")[0] for problem in caught.value.problems] == [
+        "there is no member 'L0-L9'",
+        "there is no member 'U1-X2'",
+    ]

@@ -11,7 +11,7 @@ from typing import Literal
 
 from trusscalc import stiffness
 from trusscalc.convenience import Convenient
-from trusscalc.errors import InexactNumberError, InputError, UnstableTrussError
+from trusscalc.errors import InexactNumberError, InputError, UnknownNameError, UnstableTrussError
 from trusscalc.exact import Exact, symbol
 from trusscalc.loads import LoadCase
 from trusscalc.samples import at_sample, samples, vanishing
@@ -159,7 +159,7 @@ def check_members(
     UnknownNameError
         For a member that is not there.
     InputError
-        For loads on joints that are not there, or nothing asked for.
+        For several members that are not there, loads on joints that are not there, or nothing asked for.
     UnstableTrussError
         When the truss cannot resist every load.
     NoCutError
@@ -271,10 +271,17 @@ def _wanted(truss: Truss, members: Iterable[str] | Literal["all"], own: Collecti
             return tuple(member.name for member in truss.members)
         members = [members]
     by_ends = {frozenset((member.start, member.end)): member.name for member in truss.members}
-    found = []
+    found, unknown = [], []
     for name in members:
         ends = frozenset(part.strip() for part in name.split("-"))
-        found.append(by_ends[ends] if ends in by_ends else truss.member(name).name)
+        try:
+            found.append(by_ends[ends] if ends in by_ends else truss.member(name).name)
+        except UnknownNameError as problem:
+            unknown.append(problem)
+    if len(unknown) > 1:
+        raise InputError(tuple(dict.fromkeys(map(str, unknown))))
+    if unknown:
+        raise unknown[0]
     if not found and not own:
         message = "no member was asked for; name some, or say all"
         raise InputError(message)

@@ -422,5 +422,5 @@ def _instability_text(truss: Truss, bars: tuple[Bar, ...], rank: int, names: lis
     else:
         cause = "one part is held more than once and another not at all"
     shown = ", ".join(names[:MOST_NAMED]) + (f" and {len(names) - MOST_NAMED} more" if len(names) > MOST_NAMED else "")
-    who = "the whole truss can move" if len(names) == joints else f"joints that can move: {shown}"
+    who = f"{'the whole truss can move, ' if len(names) == joints else ''}joints that can move: {shown}"
     return f"the truss is unstable ({count}): {cause}; {who}. Add or rearrange members or supports there."
