@@ -16,6 +16,7 @@ import sympy
 from hypothesis import assume, given, settings
 from hypothesis import strategies as st
 
+from trusscalc import wholenumbers
 from trusscalc.decimals import approximate, rounded
 from trusscalc.errors import InexactNumberError
 from trusscalc.exact import ONE, ZERO, Exact, exact, rational, symbol
@@ -365,6 +366,19 @@ class TestAngles:
         assert (ONE / cosine).rounded
         assert sqrt(cosine * cosine).rounded
 
+    @pytest.mark.parametrize("degrees", ["3.75", "11.25", "4.5", "22.5", "7.5"])
+    def test_roots_that_cancel_leave_the_tower(self, degrees: str) -> None:
+        """The way to an angle passes nested roots that are not in its sine; a length has to find room beside it."""
+        rise = parse(f"6*tan({degrees})")
+        length = sqrt(25 + rise * rise)
+        assert not rise.rounded
+        assert len(length.tower) <= 3
+        assert same(length, mpmath.sqrt(25 + (6 * mpmath.tan(mpmath.radians(big(Fraction(degrees))))) ** 2), 50)
+
+    def test_a_field_that_grows_too_large_is_not_entered(self) -> None:
+        """1.5 degrees could be written with roots, too many to compute in."""
+        assert parse("sin(1.5)").rounded
+
     def test_well_known_values(self) -> None:
         """As in any table of trigonometric functions (from memory)."""
         assert parse("sin(30)") == rational(1, 2)
@@ -528,3 +542,27 @@ def test_hashes_tell_nested_numbers_apart() -> None:
     numbers = [n + sqrt(2 + sqrt(rational(2))) for n in range(200)]
     assert len({hash(n) for n in numbers}) == 200
     assert exact(numbers[0]) in set(numbers)
+
+
+def test_large_numbers_in_nested_roots() -> None:
+    """Lengths between joints with nested coordinates, whose norms nobody factors, are told apart and cancel."""
+    first = sqrt(2 + sqrt(rational(2))) * Fraction(10**12 + 39, 10**9 + 7) + 1
+    second = sqrt(2 + sqrt(rational(3)) * 5) * Fraction(10**11 + 3, 10**10 + 19)
+    length = sqrt(first * first + 1)
+    assert length * length == first * first + 1
+    assert (length + second) - second == length
+    assert (length + second) * (length - second) == first * first + 1 - second * second
+
+
+def test_a_root_taken_for_new_is_never_met_again(monkeypatch: pytest.MonkeyPatch) -> None:
+    """A number nobody can factor has an unknown part free of squares; a prime that would give it away is refused."""
+    monkeypatch.setattr(wholenumbers, "_UNFACTORED", set())
+    monkeypatch.setattr(wholenumbers, "_LARGE_PRIMES", set())
+    huge = (10**20 + 39) ** 2 * 1000003 * 1000033
+    assert wholenumbers.take_for_new(huge)
+    assert wholenumbers.without_squares(4 * 1000003, proven=True) == (2, 1000003)
+    for _ in range(2):
+        with pytest.raises(InexactNumberError, match="1000033 is not supported beside"):
+            wholenumbers.without_squares(4 * 1000033, proven=True)
+    monkeypatch.setattr(wholenumbers, "_LARGE_PRIMES", {1000003, 1000033})
+    assert not wholenumbers.take_for_new(huge)

@@ -654,7 +654,7 @@ class TestWriting:
 
     def test_what_a_file_cannot_hold_is_not_written(self, tmp_path: Path) -> None:
         """Nor is anything left behind."""
-        long = "tan(0.75)*tan(2.25)"
+        long = "1.37*tan(3.75)*tan(4.5)"
         truss = Truss({"A": (0, 0), "B": (4, 0), "C": (2, long)}, ["A-B", "C-B", "A-C"], {"A": "pin", "B": "roller"})
         with pytest.raises(InputError, match=r"cannot be written to a truss file: .*longer than"):
             files.write(TrussFile(truss), tmp_path / "x.toml")

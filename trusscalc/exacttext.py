@@ -18,7 +18,7 @@ from sympy.polys.fields import FracElement
 from trusscalc.decimals import approximate
 from trusscalc.errors import InexactNumberError
 from trusscalc.exact import ONE, UNIT_KEY, ZERO, Exact, exact, rational, symbol
-from trusscalc.roots import sqrt
+from trusscalc.roots import sqrt, trimmed
 
 LONGEST_TEXT = 1000
 DEEPEST_NESTING = 20
@@ -34,7 +34,8 @@ ANGLE_DIGITS = 30
 GUARD_DIGITS = 5
 """Carried besides, so that what cancels with the true angle still cancels to 30 digits after some arithmetic."""
 FUNCTIONS = ("sqrt", "sin", "cos", "tan")
-MOST_HALVINGS = 3
+EXACT_HALVINGS = {6: 1, 18: 2, 30: 3}
+"""How often multiples of so many degrees may be halved before the field of their roots gets slow to compute in."""
 
 _TOKEN = re.compile(
     r"\s*(?:(?P<number>(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][+-]?[0-9]+)?)"
@@ -306,19 +307,21 @@ def cosine_and_sine(degrees: Fraction) -> tuple[Exact, Exact]:
 
     Notes
     -----
-    Multiples of 6 degrees, halved up to three times, have square roots for sine and cosine (they come from
-    the equilateral triangle and the regular pentagon). Any other angle is rounded once: the tangent of its
-    half becomes a fraction, right to a few digits more than 30. So cosine and sine are rational, right to 30
-    digits, and their squares still add up to exactly 1.
+    Multiples of 6 degrees, halved once, of 18 halved twice and of 30 halved three times, have square roots for
+    sine and cosine (they come from the equilateral triangle and the regular pentagon). Any other angle is
+    rounded once: the tangent of its half becomes a fraction, right to a few digits more than 30. So cosine and
+    sine are rational, right to 30 digits, and their squares still add up to exactly 1.
     """
     degrees = degrees % 360
-    halvings = 0
-    whole = degrees
-    while whole % 6 and halvings < MOST_HALVINGS:
-        whole = whole * 2
-        halvings += 1
-    if whole % 6:
+    found = [
+        halvings
+        for multiple, most in EXACT_HALVINGS.items()
+        for halvings in range(most + 1)
+        if degrees * 2**halvings % multiple == 0
+    ]
+    if not found:
         return _rounded_angle(degrees)
+    halvings = min(found)
     return _cosine(degrees, halvings), _cosine((90 - degrees) % 360, halvings)
 
 
@@ -334,7 +337,7 @@ def _cosine(degrees: Fraction, halvings: int) -> Exact:
     steps = int(degrees / 6)
     c36, s36 = _multiple((1 + sqrt(rational(5))) / 4, steps)
     c30, s30 = _multiple(sqrt(rational(3)) / 2, steps)
-    return c36 * c30 + s36 * s30
+    return trimmed(c36 * c30 + s36 * s30)
 
 
 def _multiple(cosine: Exact, steps: int) -> tuple[Exact, Exact]:

@@ -3,14 +3,16 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Mapping
 from fractions import Fraction
 from functools import lru_cache
+from typing import Any
 
 from sympy.polys.domains import QQ
 
 from trusscalc.errors import InexactNumberError
-from trusscalc.exact import ONE, UNIT_KEY, ZERO, Exact, conjugate, plain
-from trusscalc.wholenumbers import a_prime_of, prime_factors, without_squares
+from trusscalc.exact import ONE, UNIT_KEY, ZERO, Exact, Key, conjugate, plain
+from trusscalc.wholenumbers import a_prime_of, prime_factors, take_for_new, without_squares
 
 MOST_NESTED_ROOTS = 3
 
@@ -21,6 +23,10 @@ def same_tower(left: Exact, right: Exact) -> tuple[Exact, Exact]:
         return left, Exact(right.terms, left.tower, rounded=right.rounded)
     if not left.tower:
         return Exact(left.terms, right.tower, rounded=left.rounded), right
+    left, right = trimmed(left), trimmed(right)
+    if left.tower == right.tower or not left.tower or not right.tower:
+        tower = left.tower or right.tower
+        return Exact(left.terms, tower, rounded=left.rounded), Exact(right.terms, tower, rounded=right.rounded)
     tower, images = _merged(left.tower, right.tower)
     total = Exact({}, tower)
     for (n, mask), coefficient in right.terms.items():
@@ -33,6 +39,41 @@ def same_tower(left: Exact, right: Exact) -> tuple[Exact, Exact]:
         Exact(left.terms, tower, rounded=left.rounded),
         Exact(total.terms, tower, rounded=right.rounded),
     )
+
+
+def trimmed(value: Exact) -> Exact:
+    """Return a number without the nested roots of its tower that have cancelled."""
+    masks = 0
+    for _, mask in value.terms:
+        masks |= mask
+    if masks.bit_count() == len(value.tower):
+        return value
+    tower, places = _trimmed_tower(value.tower, masks)
+    return Exact(_moved(value.terms, places), tower, rounded=value.rounded)
+
+
+@lru_cache(maxsize=1024)
+def _trimmed_tower(tower: tuple[Exact, ...], masks: int) -> tuple[tuple[Exact, ...], dict[int, int]]:
+    """Return the tower of the roots that these, and the radicands of these, are made of, and their new places."""
+    for index in reversed(range(len(tower))):
+        if masks >> index & 1:
+            for _, mask in tower[index].terms:
+                masks |= mask
+    kept: tuple[Exact, ...] = ()
+    places: dict[int, int] = {}
+    for index, radicand in enumerate(tower):
+        if masks >> index & 1:
+            places[index] = len(kept)
+            kept = (*kept, Exact(_moved(radicand.terms, places), kept, rounded=radicand.rounded))
+    return kept, places
+
+
+def _moved(terms: Mapping[Key, Any], places: Mapping[int, int]) -> dict[Key, Any]:
+    """Return terms whose nested roots stand at other places of the tower."""
+    return {
+        (n, sum(1 << new for old, new in places.items() if mask >> old & 1)): coefficient
+        for (n, mask), coefficient in terms.items()
+    }
 
 
 @lru_cache(maxsize=256)
@@ -97,7 +138,13 @@ def _known_root(value: Exact) -> Exact | None:
     if value.sign() < 0:
         return None
     if value.is_rational:
-        return _rational_root(value.as_fraction(), proven=True)
+        fraction = value.as_fraction()
+        try:
+            return _rational_root(fraction, proven=True)
+        except InexactNumberError:  # too large to factor: a root of its own, unless one in use says otherwise
+            if take_for_new(fraction.numerator * fraction.denominator):
+                return None
+            raise
     other = conjugate(value)
     a = (value + other) / 2
     rest = (value - other) / 2
@@ -189,6 +236,7 @@ def sqrt(value: Exact, *, proven: bool = True) -> Exact:
     if value.is_rational:
         root = _rational_root(value.as_fraction(), proven=proven)
     else:
+        value = trimmed(value)
         root = _root_in(value.tower, value)[1]
     return Exact(root.terms, root.tower, rounded=value.rounded)
 
