@@ -1,4 +1,4 @@
-"""Drawn examples are the same on every run: a suite that passes by luck says nothing, and one that fails by luck less."""
+"""Drawn examples are the same on every run, so that the suite neither passes nor fails by luck."""
 
 from __future__ import annotations
 
