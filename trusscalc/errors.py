@@ -100,10 +100,6 @@ class UnstableTrussError(TrusscalcError, ValueError):
         super().__init__(message)
 
 
-class IndeterminateTrussError(TrusscalcError, ValueError):
-    """Statics alone does not decide what was asked for."""
-
-
 class NoCutError(TrusscalcError, ValueError):
     """No free body with a single equation reaches a wanted member.
 

@@ -13,14 +13,13 @@ from typing import Final, Literal
 
 from trusscalc.exact import ZERO, Exact
 from trusscalc.sheet.board import THIN, Board
+from trusscalc.sheet.equations import MOST_LOADS
 from trusscalc.sheet.lettering import Point
 from trusscalc.statics.cuts import Structure
 from trusscalc.statics.steps import Equation, Term
 
 GAP_WIDTH: Final = 9.0
 """Width on paper of a stretch left out, mm."""
-MOST_LOADS: Final = 8
-"""Loads in one equation beyond which they are collected to their resultant."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -88,11 +88,6 @@ def arm(value: Exact) -> str:
     return decimal_text(near)
 
 
-def member_text(name: str) -> str:
-    """Return a member's name as it is printed: joints joined by an en dash."""
-    return name.replace("-", DASH)
-
-
 @dataclass(frozen=True, slots=True)
 class Scale:
     """A drawing scale: millimetres on paper for one unit of the truss, and how it is written."""

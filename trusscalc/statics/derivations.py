@@ -260,12 +260,6 @@ class Derivations:
         return steps
 
 
-def _written_first(first: Candidate, second: Candidate) -> bool:
-    """Return whether the first equation of a pair is written before the second: joints, then axis sums, then left."""
-    keys = [(c.body.found != "joint", c.recipe[0] != "axis", c.place) for c in (first, second)]
-    return keys[0] <= keys[1]
-
-
 def found_by(steps: Sequence[Found]) -> int:
     """Return the mask of everything the steps solve."""
     mask = 0
