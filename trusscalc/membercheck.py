@@ -5,7 +5,7 @@ A disagreement is a verdict, never an exception: the caller, the sheet and the e
 
 from __future__ import annotations
 
-from collections.abc import Collection, Iterable, Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
 from typing import Literal
 
@@ -177,7 +177,7 @@ def check_members(
     if faults:
         raise InputError(faults)
     own = {truss.member(name).name: cut.kept for name, cut in (cuts or {}).items()}
-    wanted = tuple(dict.fromkeys((*_wanted(truss, members, own), *own)))
+    wanted = tuple(dict.fromkeys((*members_named(truss, members, also=bool(own)), *own)))
     if truss.symbols:
         faults = _different_values(truss, case)
         if faults:
@@ -265,7 +265,23 @@ def _redundancy(equilibrium: matrix.Equilibrium) -> Redundancy:
     return Redundancy(*degrees, equilibrium.sharing)
 
 
-def _wanted(truss: Truss, members: Iterable[str] | Literal["all"], own: Collection[str]) -> tuple[str, ...]:
+def members_named(truss: Truss, members: Iterable[str] | Literal["all"], *, also: bool = False) -> tuple[str, ...]:
+    """Return the members asked for as the truss spells them, each once.
+
+    Parameters
+    ----------
+    truss : Truss
+        The truss.
+    members : iterable of str, or "all"
+        Their ends in either order.
+    also : bool
+        Whether something else was asked for too, so that no member may be named.
+
+    Raises
+    ------
+    UnknownNameError, InputError
+        For one member that is not there; for several, or when nothing was asked for.
+    """
     if isinstance(members, str):
         if members == "all":
             return tuple(member.name for member in truss.members)
@@ -282,7 +298,7 @@ def _wanted(truss: Truss, members: Iterable[str] | Literal["all"], own: Collecti
         raise InputError(tuple(dict.fromkeys(map(str, unknown))))
     if unknown:
         raise unknown[0]
-    if not found and not own:
+    if not found and not also:
         message = "no member was asked for; name some, or say all"
         raise InputError(message)
     return tuple(dict.fromkeys(found))

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 import sys
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from typing import Literal
 
@@ -12,7 +12,7 @@ from trusscalc.exact import ZERO, Exact
 from trusscalc.loads import LoadCase
 from trusscalc.samples import sign_depends
 from trusscalc.statics.cuts import Structure
-from trusscalc.statics.matrix import Equilibrium
+from trusscalc.statics.matrix import Bar, Equilibrium
 from trusscalc.statics.steps import Step
 from trusscalc.symbolparts import Monomial, by_monomial, monomial_text
 
@@ -131,29 +131,17 @@ class Judge:
         self.by_hand = {name: result for step in steps for name, result in step.results.items()}
         self.tensions = tensions
         self.rests_on = _foundations(steps)
-        self.tolerance = _tolerance(runs.condition)
+        self.tolerance = tolerance_at(runs.condition)
         loads = [abs(part) for pair in case.as_floats().values() for part in pair]
-        self.largest = max([self._largest_confirmed(), *loads])
-
-    def _largest_confirmed(self) -> float:
-        """Return the largest numeric force that the exact solution confirms in size.
-
-        A wrong value of the numeric route, infinite at worst, must not widen the tolerance of all others.
-        """
-        tensions = self.equilibrium.tensions
-        finite = {name: abs(force) for name, force in self.numeric.items() if name in tensions and math.isfinite(force)}
-        for name in sorted(finite, key=finite.__getitem__, reverse=True):
-            length = math.sqrt(float(self._at_values(self.structure.bars[name].length_squared)))
-            if finite[name] <= 2 * length * abs(float(self._at_values(tensions[name]))):
-                return finite[name]
-        return 0.0
+        confirmed = largest_confirmed(self.numeric, equilibrium, structure.bars, self._at_values)
+        self.largest = max([confirmed, *loads])
 
     def verdict(self, name: str) -> ForceCheck:
         """Return a member or reaction by both routes, judged."""
         steps = self.rests_on.get(name, ())
         numeric = self.numeric.get(name)
         if name not in self.by_hand:
-            reason = self._undecided(name)
+            reason = undecided_reason(self.equilibrium, name)
             return ForceCheck(name, None, None, None, numeric, None, "undecided", reason, steps)
         value = self.by_hand[name]
         at_values = self._at_values(value)
@@ -183,7 +171,7 @@ class Judge:
         for values, forces, condition in self.runs.samples:
             decimal = float(value.substitute(values))
             largest = max((abs(force) for force in forces.values() if math.isfinite(force)), default=0.0)
-            agrees = abs(decimal - forces[name]) <= _tolerance(condition) * largest
+            agrees = abs(decimal - forces[name]) <= tolerance_at(condition) * largest
             found.append(Sample(tuple(values.items()), decimal, forces[name], agrees))
         return tuple(found)
 
@@ -201,16 +189,6 @@ class Judge:
         found += [Coefficient(monomial_text(m), exact[m], float(exact[m]), 0.0, agrees=False) for m in stray]
         return tuple(found)
 
-    def _undecided(self, name: str) -> str:
-        group = next((group for group in self.equilibrium.sharing if name in group), ())
-        others = [other for other in group if other != name]
-        shown = ", ".join(others[:8]) + (f" and {len(others) - 8} more" if len(others) > 8 else "")  # noqa: PLR2004
-        degree = self.equilibrium.degree
-        return (
-            f"statics alone does not decide it: the truss is statically indeterminate (degree {degree}), "
-            f"and it shares the redundancy with {shown}"
-        )
-
     def _judgement(self, name: str, difference: float) -> tuple[Verdict, str]:
         if name in self.equilibrium.tensions and self.tensions[name] != self.equilibrium.tensions[name]:
             return "differs", "the step's value differs from the exact solution of all joint equations"
@@ -225,10 +203,40 @@ class Judge:
         return "differs", "the two routes differ by more than the tolerance"
 
 
-def _tolerance(condition: float) -> float:
+def tolerance_at(condition: float) -> float:
     """Return the share of the largest force that the numeric route can be trusted to."""
     bound = 10 * sys.float_info.epsilon * condition
     return max(TOLERANCE, bound) if math.isfinite(bound) else math.inf
+
+
+def largest_confirmed(
+    numeric: Mapping[str, float],
+    equilibrium: Equilibrium,
+    bars: Mapping[str, Bar],
+    value: Callable[[Exact], Exact],
+) -> float:
+    """Return the largest numeric force that the exact solution confirms in size.
+
+    A wrong value of the numeric route, infinite at worst, must not widen the tolerance of all others.
+    """
+    tensions = equilibrium.tensions
+    finite = {name: abs(force) for name, force in numeric.items() if name in tensions and math.isfinite(force)}
+    for name in sorted(finite, key=finite.__getitem__, reverse=True):
+        length = math.sqrt(float(value(bars[name].length_squared)))
+        if finite[name] <= 2 * length * abs(float(value(tensions[name]))):
+            return finite[name]
+    return 0.0
+
+
+def undecided_reason(equilibrium: Equilibrium, name: str) -> str:
+    """Return why statics alone does not decide a member or reaction."""
+    group = next((group for group in equilibrium.sharing if name in group), ())
+    others = [other for other in group if other != name]
+    shown = ", ".join(others[:8]) + (f" and {len(others) - 8} more" if len(others) > 8 else "")  # noqa: PLR2004
+    return (
+        f"statics alone does not decide it: the truss is statically indeterminate (degree {equilibrium.degree}), "
+        f"and it shares the redundancy with {shown}"
+    )
 
 
 def _foundations(steps: tuple[Step, ...]) -> dict[str, tuple[int, ...]]:
