@@ -229,6 +229,22 @@ class TestFaults:
                 r"line 28: \[combinations.1.2D\+1.6L\] deed: there is no such case; did you",
             ),
             ('dead = "1.2"', 'dead = "P"', r"line 28: \[combinations.1.2D\+1.6L\] dead: 'P'"),
+            ('dead = "1.2"', 'dead = ["1.2"]', r"line 28: \[combinations.1.2D\+1.6L\] dead: one factor .*or a pair"),
+            ('dead = "1.2"', "dead = [1, 2, 3]", r"line 28: \[combinations.1.2D\+1.6L\] dead: one factor .*or a pair"),
+            ('dead = "1.2"', 'dead = [1, "x"]', r"line 28: \[combinations.1.2D\+1.6L\] dead: 'x'"),
+            ('dead = "1.2"', "optional = 1.2", r"line 28: \[combinations.1.2D\+1.6L\] optional: a list of case names"),
+            ('dead = "1.2"', 'optional = "dead"', r"line 28: \[comb.*\] optional: a list of case names is needed"),
+            ('dead = "1.2"', "optional = {}", r"line 28: \[combinations.1.2D\+1.6L\] optional: a list of case names"),
+            (
+                '"live, east" = 1.6',
+                'optional = ["deed"]',
+                r"line 29: \[combinations.1.2D\+1.6L\] optional 'deed': is not among the factors .*did you mean dead",
+            ),
+            (
+                'dead = "1.2"\n"live, east" = 1.6\n',
+                'optional = ["dead"]\n',
+                r"line 27: \[combinations\] 1.2D\+1.6L: a table of case = factor",
+            ),
             (
                 'dead = "1.2"\n"live, east" = 1.6\n',
                 "",
@@ -598,8 +614,10 @@ def truss_files(draw: st.DrawFn) -> TrussFile:
     drawn = draw(st.lists(case_names, max_size=4, unique=True))
     half = len(drawn) // 2
     cases = [LoadCase(name, {c: (draw(load), draw(load))}, symbols=symbols) for name in drawn[half:]]
-    factors = {case.name: draw(numbers) for case in cases}
-    combinations = [Combination(name, factors) for name in drawn[:half] if factors]
+    factor = st.one_of(numbers, st.tuples(numbers, numbers))
+    factors = {case.name: draw(factor) for case in cases if case.name != "optional"}
+    optional = [name for name in factors if draw(st.booleans())]
+    combinations = [Combination(name, factors, optional=optional) for name in drawn[:half] if factors]
     project = Project(location=draw(lines), basis=draw(st.sampled_from(["", "service"])), names={b: draw(lines)})
     return TrussFile(truss, tuple(cases), tuple(combinations), project)
 
@@ -631,6 +649,20 @@ class TestWriting:
         assert '"lower chord" = ["L0-L1", "L1-L2"]' in text
         assert "L1 = { reaction = [2, -5] }" in text
         assert '[cases."live, east"]' in text
+
+    def test_pairs_and_optional_cases(self) -> None:
+        """Read as lists, written as lists; one factor stays one."""
+        text = FULL.replace('dead = "1.2"', 'dead = ["1.25", 0.90]').replace(
+            '"live, east" = 1.6', '"live, east" = 1.6\noptional = ["live, east"]'
+        )
+        stated = files.reads(text)
+        factors = {"dead": ("5/4", "9/10"), "live, east": "8/5"}
+        assert stated.combinations == (Combination("1.2D+1.6L", factors, optional=["live, east"]),)
+        again = files.writes(stated)
+        assert 'dead = ["5/4", "9/10"]\n"live, east" = "8/5"\noptional = ["live, east"]' in again
+        assert files.reads(again) == stated
+        with pytest.raises(InputError, match=r"'dead' has the pair of factors 1.25 or 0.9, .*ask for the envelope"):
+            stated.case("1.2D+1.6L")
 
     def test_members_without_a_group(self) -> None:
         """Become one group, and stay in order."""

@@ -9,7 +9,7 @@ import pytest
 from trusscalc.errors import InputError, UnknownNameError
 from trusscalc.exact import Exact
 from trusscalc.exacttext import parse
-from trusscalc.loads import Combination, JointLoad, LoadCase, combine
+from trusscalc.loads import Combination, JointLoad, LoadCase, combine, factor_text
 from trusscalc.truss import Truss
 
 
@@ -126,3 +126,78 @@ class TestCombine:
         total = combine(Combination("x", [("live", "sqrt(2)")]), [self.live])
         assert isinstance(total.loads[0].fy, Exact)
         assert total.loads[0].fy == parse("-5*sqrt(2)")
+
+    def test_optional_cases_are_taken_as_written(self) -> None:
+        """Trying them absent is the envelope's work."""
+        total = combine(Combination("x", {"dead": 1, "live": 2}, optional=["live"]), [self.dead, self.live])
+        assert total == combine(Combination("x", {"dead": 1, "live": 2}), [self.dead, self.live])
+
+    def test_a_pair_is_not_decided_here(self) -> None:
+        """Which factor is adverse depends on the member."""
+        message = (
+            "combination 'x': 'dead' has the pair of factors 1.25 or 0.9, and which one is adverse differs from member "
+            "to member; name the factor in a combination of its own, or ask for the envelope"
+        )
+        with pytest.raises(InputError, match=message):
+            combine(Combination("x", {"live": 1, "dead": ["1.25", "0.90"]}), [self.dead, self.live])
+
+
+class TestCombination:
+    """Pairs of factors and optional cases."""
+
+    def test_pairs_keep_their_order(self) -> None:
+        """As a list or a tuple, of any exact numbers; no source unless it is said."""
+        stated = Combination("x", {"dead": ("1.25", 0.9), "live": 2, "earth": [1, "sqrt(2)"]}, optional=["live"])
+        assert stated.factors == (
+            ("dead", (parse("5/4"), parse("9/10"))),
+            ("live", (parse("2"),)),
+            ("earth", (parse("1"), parse("sqrt(2)"))),
+        )
+        assert (stated.optional, stated.source) == (("live",), "")
+        assert Combination("x", {"dead": 1}, source="somewhere").source == "somewhere"
+
+    @pytest.mark.parametrize(
+        ("factors", "optional", "message"),
+        [
+            ({"dead": []}, (), r"\[combinations.x\] dead: one factor is needed, or a pair such as"),
+            ({"dead": ["1.2"]}, (), r"\[combinations.x\] dead: one factor is needed, or a pair"),
+            ({"dead": (1, 2, 3)}, (), r"\[combinations.x\] dead: one factor is needed, or a pair"),
+            ({"dead": ("1.25", "o.9")}, (), r"\[combinations.x\] dead: 'o.9'"),
+            ({"dead": ([1], 2)}, (), r"\[combinations.x\] dead: .*is not a number"),
+            ({"dead": 1, "optional": 2}, (), r"\[combinations.x\] optional: lists cases .*; rename that case"),
+            ({"dead": 1}, "dead", r"\[combinations.x\] optional: a list of case names is needed, such as \[\"live\"\]"),
+            ({"dead": 1}, {"dead": 1}, r"\[combinations.x\] optional: a list of case names"),
+            ({"dead": 1}, 7, r"\[combinations.x\] optional: a list of case names"),
+            ({"dead": 1}, [7], r"\[combinations.x\] optional: a list of case names"),
+            ({"dead": 1}, ["deed"], r"optional 'deed': is not among the factors .*; did you mean dead\?"),
+            ([("dead", 1), ("dead", 2)], (), r"\[combinations.x\] dead: stated twice; add its factors up"),
+        ],
+    )
+    def test_each_fault_is_named(self, factors: Any, optional: Any, message: str) -> None:
+        """What, where, and what to do."""
+        with pytest.raises(InputError, match=message):
+            Combination("x", factors, optional=optional)
+
+    def test_faults_come_together(self) -> None:
+        """Factors and optional cases in one report."""
+        with pytest.raises(InputError) as caught:
+            Combination("x", {"dead": ["a", "b"], "live": [1]}, optional=["wind"])
+        assert len(caught.value.problems) == 4
+
+    @pytest.mark.parametrize(
+        ("factor", "written"),
+        [
+            ("1.20", "1.2"),
+            ("3", "3"),
+            ("200", "200"),
+            ("0", "0"),
+            ("-1.5", "-1.5"),
+            ("0.9225*1.35", "1.245375"),
+            ("1e-7", "1/10000000"),
+            ("1/3", "1/3"),
+            ("sqrt(2)", "sqrt(2)"),
+        ],
+    )
+    def test_factors_as_engineers_write_them(self, factor: str, written: str) -> None:
+        """Never a rounded one."""
+        assert factor_text(parse(factor)) == written

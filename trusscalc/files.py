@@ -17,7 +17,7 @@ from trusscalc.errors import FileFormatError, InputError, TrusscalcWarning
 from trusscalc.exact import ONE, Exact
 from trusscalc.exacttext import to_text
 from trusscalc.filetext import LARGEST_FILE, data_of, faulty, one_line
-from trusscalc.loads import Combination, LoadCase
+from trusscalc.loads import OPTIONAL, Combination, LoadCase
 from trusscalc.project import LINES, Project, line_fault
 from trusscalc.replacefile import replace_file
 from trusscalc.truss import Support, Truss, did_you_mean
@@ -268,14 +268,17 @@ def _combinations(tables: dict[str, Any], problems: list[str]) -> list[Combinati
     for name, table in tables.items():
         if fault := _name_fault(name):
             problems.append(f"[combinations] {name}: {fault}")
-        if not isinstance(table, dict) or not table:
+        stated = table if isinstance(table, dict) else {}
+        factors = {case: factor for case, factor in stated.items() if case != OPTIONAL}
+        if not factors:
             problems.append(f'[combinations] {name}: a table of case = factor is needed, such as dead = "1.2"')
             continue
         try:
-            combinations.append(Combination(name, table))
+            combinations.append(Combination(name, factors, optional=stated.get(OPTIONAL, ())))
         except InputError as fault:
             problems += fault.problems
-            combinations.append(Combination(name, dict.fromkeys(table, 1)))
+            # cases that are not there are still to be found
+            combinations.append(Combination(name, dict.fromkeys(factors, 1)))
     return combinations
 
 
@@ -356,7 +359,7 @@ def _sections(truss_file: TrussFile) -> list[tuple[str, dict[str, Any]]]:
             (f"cases.{_key(case.name)}", {load.joint: [load.fx, load.fy] for load in case.loads})
             for case in truss_file.cases
         ),
-        *((f"combinations.{_key(each.name)}", dict(each.factors)) for each in truss_file.combinations),
+        *((f"combinations.{_key(each.name)}", _factored(each)) for each in truss_file.combinations),
         ("behaviour", {key: list(getattr(truss, key)) for key in KEYS["behaviour"]}),
         ("project", {key: getattr(project, key) for key in LINES if getattr(project, key)}),
         ("project.names", dict(project.names)),
@@ -365,6 +368,11 @@ def _sections(truss_file: TrussFile) -> list[tuple[str, dict[str, Any]]]:
 
 def _is_written(name: str, entries: dict[str, Any]) -> bool:
     return name.startswith("cases.") or any(entry != [] for entry in entries.values())
+
+
+def _factored(combination: Combination) -> dict[str, Any]:
+    factors: dict[str, Any] = {case: list(pair) if pair[1:] else pair[0] for case, pair in combination.factors}
+    return factors | ({OPTIONAL: list(combination.optional)} if combination.optional else {})
 
 
 def _stated(support: Support) -> Any:

@@ -2,15 +2,23 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Collection, Iterable, Mapping, Sequence
 from dataclasses import dataclass
+from typing import Any, Final
 
+from trusscalc.decimals import rounded
 from trusscalc.errors import InexactNumberError, InputError, UnknownNameError
-from trusscalc.exact import ZERO, Exact
-from trusscalc.exacttext import number
+from trusscalc.exact import Exact
+from trusscalc.exacttext import number, to_text
 from trusscalc.truss import Truss, did_you_mean, symbol_values
 
-PLANE = 2
+PLANE: Final = 2
+PAIR: Final = 2
+MOST_PLACES: Final = 6
+"""Of a factor's decimal; a longer one is written as a fraction."""
+OPTIONAL: Final = "optional"
+"""The key of a combination that lists cases instead of giving a factor; so no case may be called that there."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -74,7 +82,7 @@ class LoadCase:
         if isinstance(loads, Mapping):
             read = [_joint_load(name, joint, pair, values, problems) for joint, pair in loads.items()]
         else:
-            read = list(_summed(loads))
+            read = list(loads)
         if problems:
             raise InputError(problems)
         object.__setattr__(self, "name", name)
@@ -108,14 +116,27 @@ class Combination:
     ----------
     name : str
         Such as ``1.2D+1.6L``.
-    factors : tuple of (str, Exact)
-        Case name and factor.
+    factors : tuple of (str, tuple of Exact)
+        Case name, and its one factor or the two of a pair, of which each member takes the adverse one.
+    optional : tuple of str
+        Cases that are tried absent as well, because leaving them out may be adverse.
+    source : str
+        Edition and clause, with how well they are known; '' for the user's own.
     """
 
     name: str
-    factors: tuple[tuple[str, Exact], ...]
+    factors: tuple[tuple[str, tuple[Exact, ...]], ...]
+    optional: tuple[str, ...]
+    source: str
 
-    def __init__(self, name: str, factors: Mapping[str, object] | Iterable[tuple[str, object]]) -> None:
+    def __init__(
+        self,
+        name: str,
+        factors: Mapping[str, object] | Iterable[tuple[str, object]],
+        *,
+        optional: Iterable[str] = (),
+        source: str = "",
+    ) -> None:
         """State a combination.
 
         Parameters
@@ -123,7 +144,11 @@ class Combination:
         name : str
             What it is called.
         factors : mapping of case name to factor, or pairs of them
-            Factors; numbers as in ``Truss``.
+            Factors; numbers as in ``Truss``, or a list or tuple of two of them for a pair.
+        optional : iterable of str
+            Cases among the factors that are tried absent as well.
+        source : str
+            Where a published combination is from.
 
         Raises
         ------
@@ -133,58 +158,110 @@ class Combination:
         Examples
         --------
         >>> Combination("1.2D+1.6L", {"dead": 1.2, "live": "8/5"}).factors
-        (('dead', Exact('6/5')), ('live', Exact('8/5')))
+        (('dead', (Exact('6/5'),)), ('live', (Exact('8/5'),)))
+        >>> Combination("uplift", {"dead": ["1.25", "0.90"], "wind": 1.4}).factors[0]
+        ('dead', (Exact('5/4'), Exact('9/10')))
         """
-        problems = []
-        read = []
-        for case, factor in factors.items() if isinstance(factors, Mapping) else factors:
-            try:
-                read.append((case, number(factor)))
-            except InexactNumberError as problem:
-                problems.append(f"[combinations.{name}] {case}: {problem}")
+        stated = list(factors.items() if isinstance(factors, Mapping) else factors)
+        problems: list[str] = []
+        read = [(case, _factors(f"[combinations.{name}] {case}", factor, problems)) for case, factor in stated]
+        cases = [case for case, _ in stated]
+        problems += [f"[combinations.{name}] {case}: stated twice; add its factors up" for case in twice(cases)]
+        if OPTIONAL in cases:
+            problems.append(f"[combinations.{name}] {OPTIONAL}: lists cases tried absent as well; rename that case")
+        absent = _optional_cases(f"[combinations.{name}] {OPTIONAL}", optional, cases, problems)
         if problems:
             raise InputError(problems)
         object.__setattr__(self, "name", name)
         object.__setattr__(self, "factors", tuple(read))
+        object.__setattr__(self, "optional", absent)
+        object.__setattr__(self, "source", source)
+
+
+def _factors(where: str, stated: object, problems: list[str]) -> tuple[Exact, ...]:
+    """Return the one factor or the two of a pair."""
+    if isinstance(stated, (list, tuple)) and len(stated) != PAIR:
+        problems.append(f'{where}: one factor is needed, or a pair such as ["1.25", "0.90"]')
+        return ()
+    read = []
+    for factor in stated if isinstance(stated, (list, tuple)) else (stated,):
+        try:
+            read.append(number(factor))
+        except InexactNumberError as problem:
+            problems.append(f"{where}: {problem}")
+    return tuple(read)
+
+
+def _optional_cases(where: str, stated: Any, cases: Sequence[str], problems: list[str]) -> tuple[str, ...]:
+    listed = isinstance(stated, Iterable) and not isinstance(stated, (str, Mapping))
+    names: list[Any] = list(stated) if listed else [None]
+    if not all(isinstance(name, str) for name in names):
+        problems.append(f'{where}: a list of case names is needed, such as ["live"]')
+        return ()
+    problems += [
+        f"{where} {name!r}: is not among the factors of this combination{did_you_mean(name, cases)}"
+        for name in names
+        if name not in cases
+    ]
+    return tuple(dict.fromkeys(names))
+
+
+def twice(names: Iterable[str]) -> list[str]:
+    """Return the names that stand more than once."""
+    return [name for name, times in Counter(names).items() if times > 1]
+
+
+def factor_text(factor: Exact) -> str:
+    """Return a factor as engineers write it: a decimal where one of few places is exact, else exact text.
+
+    Examples
+    --------
+    >>> factor_text(number("0.90")), factor_text(number("1/3"))
+    ('0.9', '1/3')
+    """
+    if factor.is_rational:
+        for places in range(MOST_PLACES + 1):
+            if number(decimal := rounded(factor, places)) == factor:
+                return str(decimal)
+    return to_text(factor)
 
 
 def combine(combination: Combination, cases: Collection[LoadCase]) -> LoadCase:
-    """Return the combination as one load case, joint by joint, exactly.
+    """Return the combination as one load case, joint by joint, exactly; optional cases as written.
 
     Raises
     ------
     UnknownNameError
         When the combination names a case that is not there.
     InputError
-        When two cases give one symbol different values.
+        When two cases give one symbol different values, or a case has a pair of factors: which of the two is
+        adverse is another question for each member.
     """
     by_name = {case.name: case for case in cases}
-    totals: dict[str, tuple[Exact, Exact]] = {}
+    totals: list[JointLoad] = []
     symbols: dict[str, Exact] = {}
-    for name, factor in combination.factors:
+    for name, factors in combination.factors:
         if name not in by_name:
             message = f"combination {combination.name!r}: there is no case {name!r}{did_you_mean(name, by_name)}"
             raise UnknownNameError(message, name=name)
+        if len(factors) > 1:
+            raise InputError(_undecided_pair(combination.name, name, factors))
         for symbol, value in by_name[name].symbols:
             if symbols.setdefault(symbol, value) != value:
                 message = (
                     f"combination {combination.name!r}: its cases give {symbol!r} different values; use two symbols"
                 )
                 raise InputError(message)
-        for load in by_name[name].loads:
-            fx, fy = totals.get(load.joint, (ZERO, ZERO))
-            totals[load.joint] = (fx + factor * load.fx, fy + factor * load.fy)
-    loads = [JointLoad(joint, fx, fy) for joint, (fx, fy) in totals.items()]
-    return LoadCase(combination.name, loads, symbols=list(symbols.items()))
+        totals += [JointLoad(load.joint, factors[0] * load.fx, factors[0] * load.fy) for load in by_name[name].loads]
+    return LoadCase(combination.name, totals, symbols=list(symbols.items()))
 
 
-def _summed(loads: Iterable[JointLoad]) -> list[JointLoad]:
-    """Return one load for each joint: several on one joint are added."""
-    totals: dict[str, JointLoad] = {}
-    for load in loads:
-        before = totals.get(load.joint)
-        totals[load.joint] = JointLoad(load.joint, before.fx + load.fx, before.fy + load.fy) if before else load
-    return list(totals.values())
+def _undecided_pair(combination: str, case: str, pair: tuple[Exact, ...]) -> str:
+    both = " or ".join(map(factor_text, pair))
+    return (
+        f"combination {combination!r}: {case!r} has the pair of factors {both}, and which one is adverse differs from "
+        "member to member; name the factor in a combination of its own, or ask for the envelope"
+    )
 
 
 def _joint_load(
@@ -209,6 +286,7 @@ def _joint_load(
 
 
 def _one_each(loads: Iterable[JointLoad]) -> tuple[JointLoad, ...]:
+    """Return one load for each joint: several on one joint are added."""
     joints: dict[str, JointLoad] = {}
     for load in loads:
         before = joints.get(load.joint)

@@ -2,13 +2,12 @@
 
 from __future__ import annotations
 
-from collections import Counter
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, field
 
 from trusscalc.errors import InputError, UnknownNameError
 from trusscalc.exact import Exact
-from trusscalc.loads import Combination, LoadCase, combine
+from trusscalc.loads import Combination, LoadCase, combine, twice
 from trusscalc.project import Project
 from trusscalc.truss import Truss, did_you_mean
 
@@ -81,7 +80,7 @@ def case_faults(joints: Sequence[str], cases: Sequence[LoadCase]) -> list[str]:
     """Return loads on joints that are not there, and case names stated twice."""
     missing = _missing(((case.name, load.joint) for case in cases for load in case.loads), joints)
     problems = [f"[cases.{case}] {joint}: there is no such joint{near}" for case, joint, near in missing]
-    return problems + [f"[cases] {name}: stated twice; rename one" for name in _twice(case.name for case in cases)]
+    return problems + [f"[cases] {name}: stated twice; rename one" for name in twice(case.name for case in cases)]
 
 
 def combination_faults(cases: Sequence[str], combinations: Sequence[Combination]) -> list[str]:
@@ -90,7 +89,7 @@ def combination_faults(cases: Sequence[str], combinations: Sequence[Combination]
     problems = [f"[combinations.{name}] {case}: there is no such case{near}" for name, case, near in missing]
     names = [each.name for each in combinations]
     problems += [f"[combinations] {name}: is also the name of a case; rename one" for name in names if name in cases]
-    return problems + [f"[combinations] {name}: stated twice; rename one" for name in _twice(names)]
+    return problems + [f"[combinations] {name}: stated twice; rename one" for name in twice(names)]
 
 
 def name_faults(truss: Truss, project: Project) -> list[str]:
@@ -106,7 +105,3 @@ def _missing(asked: Iterable[tuple[str, str]], known: Sequence[str]) -> list[tup
     there = set(known)
     missing = [(where, name) for where, name in asked if name not in there]
     return [(where, name, did_you_mean(name, known, told=told)) for told, (where, name) in enumerate(missing)]
-
-
-def _twice(names: Iterable[str]) -> list[str]:
-    return [name for name, times in Counter(names).items() if times > 1]
