@@ -3,9 +3,11 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Collection, Sequence
 from typing import Any
 
 from trusscalc.decimals import rounded
+from trusscalc.exact import Exact
 from trusscalc.exacttext import to_text
 from trusscalc.membercheck import ForceCheck, MemberCheck
 from trusscalc.statics.cuts import About, Cut
@@ -170,15 +172,7 @@ def verdict_lines(check: MemberCheck, places: int = 3) -> list[str]:
     unit = check.truss.force
     head = ["member or reaction", "exact", f"decimal, {unit}", "T/C", f"stiffness, {unit}", "verdict"]
     rows = [head] + [_verdict_row(check, item, places) for item in (*check.members.values(), *check.reactions.values())]
-    widths = [max(len(row[column]) for row in rows) for column in range(len(head))]
-    right = (1, 2, 4)
-    lines = [
-        "  ".join(
-            cell.rjust(width) if column in right else cell.ljust(width)
-            for column, (cell, width) in enumerate(zip(row, widths, strict=True))
-        ).rstrip()
-        for row in rows
-    ]
+    lines = aligned(rows, right=(1, 2, 4))
     notes = [
         f"{item.name}: {item.reason}" for item in (*check.members.values(), *check.reactions.values()) if item.reason
     ]
@@ -188,11 +182,28 @@ def verdict_lines(check: MemberCheck, places: int = 3) -> list[str]:
     return [*lines, *notes, f"{asked} of {check.statics.members} members checked: {told}", CAUTION]
 
 
+def short_exact(value: Exact) -> str:
+    """Return an exact value for a terminal."""
+    text = to_text(value)
+    return text if len(text) <= WIDEST_EXACT else "(long)"
+
+
+def aligned(rows: Sequence[Sequence[str]], right: Collection[int]) -> list[str]:
+    """Return rows of cells as lines of text with columns of even width, some of them aligned right."""
+    widths = [max(len(row[column]) for row in rows) for column in range(len(rows[0]))]
+    return [
+        "  ".join(
+            cell.rjust(width) if column in right else cell.ljust(width)
+            for column, (cell, width) in enumerate(zip(row, widths, strict=True))
+        ).rstrip()
+        for row in rows
+    ]
+
+
 def _verdict_row(check: MemberCheck, item: ForceCheck, places: int) -> list[str]:
     if item.exact is None:
         return [item.name, "", "", "", "", item.verdict]
-    text = to_text(item.exact)
-    exact = text if len(text) <= WIDEST_EXACT else "(long)"
+    exact = short_exact(item.exact)
     decimal = str(rounded(check.value(item.exact), places))
     numeric = "" if item.stiffness is None else f"{item.stiffness:.{places}f}"
     return [item.name, exact, decimal, item.sense or "", numeric, item.verdict]
