@@ -26,6 +26,7 @@ LAYERS = (
         "units",
         "truss",
         "loads",
+        "chains",
         "shapes",
         "project",
         "trussfile",
