@@ -316,6 +316,8 @@ def test_requests_that_cannot_be_met(run: Any) -> None:
         refused(run(FILE, members=nothing), "no member was asked for")
     refused(run(FILE, members="A-C\nB-C"), "no member")
     refused(run(FILE.replace("[combinations.both]", "[combinations.snow]")), "snow", "also the name of a case")
+    pair = FILE.replace('snow = "1.2"', 'snow = ["1.25", "0.90"]')
+    refused(run(pair, case="both"), "'both': 'snow' has the pair of factors 1.25 or 0.9", "ask for the envelope")
 
 
 def test_missing_arguments(capsys: pytest.CaptureFixture[str], tmp_path: Path) -> None:
