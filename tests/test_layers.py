@@ -31,7 +31,8 @@ LAYERS = (
         "project",
         "trussfile",
     ),
-    *("filetext", "replacefile", "files", "symbolparts", "samples", "statics.matrix", "statics.cuts"),
+    *("filetext", "replacefile", "files", "symbolparts", "samples"),
+    *("statics.scaling", "statics.matrix", "statics.cuts"),
     *("statics.incidence", "statics.bodies", "statics.prices", "statics.derivations", "statics.bridges"),
     *("statics.carrying", "statics.plan", "statics.steps", "statics.owncuts", "statics.cutreport"),
     *(
@@ -39,6 +40,7 @@ LAYERS = (
         "stiffness",
         "verdicts",
         "membercheck",
+        "influence",
         "report",
         "compare",
         "sheet",

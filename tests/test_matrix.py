@@ -16,7 +16,10 @@ from stated_truss import Stated
 from trusscalc.errors import UnstableTrussError
 from trusscalc.exact import ONE, Exact
 from trusscalc.exacttext import parse, to_text
+from trusscalc.loads import LoadCase
 from trusscalc.statics import matrix
+
+Loads = dict[str, tuple[str, str]]
 
 SQUARE = {"A": ("0", "0"), "B": ("4", "0"), "C": ("4", "3"), "D": ("0", "3")}
 SIDES = ("A-B", "B-C", "C-D", "D-A")
@@ -78,6 +81,43 @@ def test_roots_in_loads_alone() -> None:
     """A rational truss under loads with roots, one of them under another."""
     stated = trade.pratt(6).under({"L2": ("sqrt(2)", "-3*sqrt(5)"), "U3": ("sqrt(1+sqrt(2))", "-1")})
     assert differences(stated, solve(stated).forces) == []
+
+
+MANY_LOADS: dict[str, Loads] = {
+    "whole numbers": {"L2": ("0", "-1")},
+    "a root": {"L3": ("sqrt(7)", "-1/3")},
+    "none": {},
+    "a root under a root": {"L4": ("0", "-sqrt(1+sqrt(2))")},
+    "a symbol": {"L2": ("0", "-P"), "U3": ("2*Q", "0")},
+    "another symbol": {"L2": ("R", "-P^2")},
+    "an angle rounded": {"L5": ("sin(20)", "0")},
+}
+
+
+@pytest.mark.parametrize("kind", ROOTS)
+@pytest.mark.parametrize("left_out", ["a root under a root", "", *(set(MANY_LOADS) - {"none"})])
+def test_many_load_cases_from_one_elimination(kind: str, left_out: str) -> None:
+    """Each as if it were solved alone, whatever numbers the others are made of, with what was rounded still told."""
+    truss = ROOTS[kind].truss
+    values = {"P": 3, "Q": 4, "R": 5}
+    cases = [LoadCase(name, loads, symbols=values) for name, loads in MANY_LOADS.items() if name != left_out]
+    together = matrix.solve_all(truss, cases)
+    assert len(together) == len(cases)
+    for case, found in zip(cases, together, strict=True):
+        alone = matrix.solve(truss, case)
+        assert found == alone
+        assert any(t.rounded for t in found.tensions.values()) == any(t.rounded for t in alone.tensions.values())
+
+
+def test_many_load_cases_on_trusses_nothing_is_known_of() -> None:
+    """Unstable ones are refused with and without load cases; an indeterminate one tells each time who shares."""
+    braced = Stated(SQUARE, (*SIDES, "A-C", "B-D"), {"A": "pin", "B": "roller"}, {})
+    cases = [LoadCase("push", {"D": (1, 0)}), LoadCase("press", {"C": (0, -1)})]
+    assert matrix.solve_all(braced.truss, cases) == tuple(matrix.solve(braced.truss, case) for case in cases)
+    assert matrix.solve_all(braced.truss, ()) == ()
+    for few in (cases, ()):
+        with pytest.raises(UnstableTrussError, match="one bar or support link too few"):
+            matrix.solve_all(replace(braced, members=SIDES).truss, few)
 
 
 def test_symbols_in_loads() -> None:

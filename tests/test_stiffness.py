@@ -352,7 +352,7 @@ def test_member_lost_in_floats() -> None:
     ends, held = np.array([(0, 1), (1, 2), (2, 3)]), np.array([0, 0, 1, 1, 3, 3])
     directions = np.array([(1.0, 0.0), (0.0, 1.0)] * 3)
     loads = np.array([(0, 0), (0, 0), (0.0, -6.0), (0, 0)])
-    found = stiffness.displacement_method(places, ends, held, directions, loads)
+    found = stiffness.Factored(places, ends, held, directions).response(loads)
     assert found.forces == pytest.approx([0, -math.sqrt(13), -math.sqrt(13)], rel=1e-14)
     assert found.condition == math.inf
 
@@ -392,6 +392,18 @@ def test_links_almost_parallel() -> None:
     found = stiffness.solve(truss, LoadCase("gust", {"C": (1, 0)}))
     assert found.reactions["A.r2"] == pytest.approx(-1e7, rel=1e-7)
     assert 1e7 < found.condition < 1e8
+
+
+def test_many_load_cases_from_one_factor() -> None:
+    """Each as if it were solved alone, digit by digit; a joint that is not there is told for whichever case."""
+    truss, case = random_truss(11, 20)
+    other = LoadCase("other", {truss.joints[-1].name: (3, -1)})
+    assert stiffness.solve_all(truss, (case, other, case)) == tuple(
+        stiffness.solve(truss, each) for each in (case, other, case)
+    )
+    assert stiffness.solve_all(truss, ()) == ()
+    with pytest.raises(InputError, match="nowhere: there is no such joint"):
+        stiffness.solve_all(truss, (case, LoadCase("lost", {"nowhere": (0, -1)})))
 
 
 def test_a_wrong_force_shows_in_the_residual() -> None:

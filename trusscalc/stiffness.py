@@ -16,6 +16,7 @@ All members have the same EA; in a statically determinate truss the forces do no
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from itertools import pairwise
 from typing import Final
@@ -132,75 +133,95 @@ def solve(truss: Truss, case: LoadCase) -> StiffnessResult:
     >>> found.residual < 1e-14, found.condition < 5
     (True, True)
     """
-    faults = case.faults(truss)
+    return solve_all(truss, (case,))[0]
+
+
+def solve_all(truss: Truss, cases: Sequence[LoadCase]) -> tuple[StiffnessResult, ...]:
+    """Return what ``solve`` does for many load cases, in their order, from one factor.
+
+    Raises
+    ------
+    InputError
+        When a case loads a joint the truss does not have.
+    """
+    faults = [fault for case in cases for fault in case.faults(truss)]
     if faults:
         raise InputError(faults)
     model = truss.as_floats()
     index = {name: place for place, name in enumerate(model.joints)}
-    loads = np.zeros((len(index), 2))
-    for joint, force in case.as_floats().items():
-        loads[index[joint]] += force
-    found = displacement_method(
+    factored = Factored(
         np.array(list(model.joints.values()), dtype=np.float64),
         np.array([(index[start], index[end]) for _, start, end in model.members], dtype=np.intp),
         np.array([index[joint] for _, joint, _, _ in model.links], dtype=np.intp),
         np.array([(dx, dy) for _, _, dx, dy in model.links], dtype=np.float64),
-        loads,
     )
-    moves: list[list[float]] = found.displacements.tolist()
-    return StiffnessResult(
-        forces=dict(zip((name for name, _, _ in model.members), found.forces.tolist(), strict=True)),
-        reactions=dict(zip((name for name, *_ in model.links), found.reactions.tolist(), strict=True)),
-        displacements={name: (x, y) for name, (x, y) in zip(index, moves, strict=True)},
-        residual=found.residual,
-        condition=found.condition,
-    )
-
-
-def displacement_method(places: Floats, ends: Whole, held: Whole, directions: Floats, loads: Floats) -> Response:
-    """Return the response of a plane truss with EA = 1 in all members.
-
-    Parameters
-    ----------
-    places : (joints, 2) float
-        Coordinates.
-    ends : (members, 2) int
-        The joints each member connects.
-    held : (links,) int
-        The joint each support link holds.
-    directions : (links, 2) float
-        The links' unit vectors.
-    loads : (joints, 2) float
-        Forces on the joints.
-
-    Returns
-    -------
-    Response
-        Forces in the unit of the loads; displacements in that unit times the unit of the coordinates.
-    """
-    # a hopeless truss may overflow; that is seen in what comes out
-    with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
-        bars = _bars(places, ends)
-        supports = _supports(len(places), held, directions)
-        factor = _factor(bars, supports)
-        load_unit = _binary_order(loads)
-        scaled = np.ldexp(loads, -load_unit)
-        forces, moves = np.zeros(len(ends)), np.zeros_like(places)
-        for _ in range(1 + REFINEMENTS):
-            further = factor.moves(scaled + _pull(bars, forces))
-            moves += further
-            forces += _elongations(bars, further) / bars.lengths
-        condition = max(factor.condition(), supports.condition)
-        if not (np.isfinite(forces).all() and np.isfinite(moves).all()):
-            forces, moves, condition = np.zeros(len(ends)), np.zeros_like(places), np.inf
-        reactions, residual = _balance(bars, supports, forces, scaled)
-        return Response(
-            forces=np.ldexp(forces, load_unit),
-            reactions=np.ldexp(reactions, load_unit),
-            displacements=np.ldexp(np.ldexp(moves, load_unit), bars.unit),
-            residual=residual,
-            condition=condition if bars.sound else np.inf,
+    results = []
+    for case in cases:
+        loads = np.zeros((len(index), 2))
+        for joint, force in case.as_floats().items():
+            loads[index[joint]] += force
+        found = factored.response(loads)
+        moves: list[list[float]] = found.displacements.tolist()
+        results.append(
+            StiffnessResult(
+                forces=dict(zip((name for name, _, _ in model.members), found.forces.tolist(), strict=True)),
+                reactions=dict(zip((name for name, *_ in model.links), found.reactions.tolist(), strict=True)),
+                displacements={name: (x, y) for name, (x, y) in zip(index, moves, strict=True)},
+                residual=found.residual,
+                condition=found.condition,
+            )
         )
+    return tuple(results)
+
+
+class Factored:
+    """A plane truss with EA = 1 in all members, factored once for any number of loads."""
+
+    def __init__(self, places: Floats, ends: Whole, held: Whole, directions: Floats) -> None:
+        """Factor the truss.
+
+        Parameters
+        ----------
+        places : (joints, 2) float
+            Coordinates.
+        ends : (members, 2) int
+            The joints each member connects.
+        held : (links,) int
+            The joint each support link holds.
+        directions : (links, 2) float
+            The links' unit vectors.
+        """
+        # a hopeless truss may overflow; that is seen in what comes out
+        with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
+            self._bars = _bars(places, ends)
+            self._supports = _supports(len(places), held, directions)
+            self._factor = _factor(self._bars, self._supports)
+            self._condition = max(self._factor.condition(), self._supports.condition)
+
+    def response(self, loads: Floats) -> Response:
+        """Return the response to loads, (joints, 2): forces on the joints.
+
+        Forces are in the unit of the loads, displacements in that unit times the unit of the coordinates.
+        """
+        bars, condition = self._bars, self._condition
+        with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
+            load_unit = _binary_order(loads)
+            scaled = np.ldexp(loads, -load_unit)
+            forces, moves = np.zeros(len(bars.lengths)), np.zeros_like(loads)
+            for _ in range(1 + REFINEMENTS):
+                further = self._factor.moves(scaled + _pull(bars, forces))
+                moves += further
+                forces += _elongations(bars, further) / bars.lengths
+            if not (np.isfinite(forces).all() and np.isfinite(moves).all()):
+                forces, moves, condition = np.zeros_like(forces), np.zeros_like(moves), np.inf
+            reactions, residual = _balance(bars, self._supports, forces, scaled)
+            return Response(
+                forces=np.ldexp(forces, load_unit),
+                reactions=np.ldexp(reactions, load_unit),
+                displacements=np.ldexp(np.ldexp(moves, load_unit), bars.unit),
+                residual=residual,
+                condition=condition if bars.sound else np.inf,
+            )
 
 
 # --- bars and supports ------------------------------------------------------------------------------------

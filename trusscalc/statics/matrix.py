@@ -12,16 +12,17 @@ of sqrt(3)) the elimination is rational all the same.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any
 
 from sympy.polys.matrices.sdm import sdm_irref
 
 from trusscalc.errors import UnstableTrussError
-from trusscalc.exact import ONE, UNIT_KEY, ZERO, Exact, Key, in_one_field, plain
+from trusscalc.exact import UNIT_KEY, ZERO, Exact, Key, in_one_field, plain
 from trusscalc.loads import LoadCase
 from trusscalc.roots import sqrt
+from trusscalc.statics.scaling import scaled, scaling
 from trusscalc.truss import Truss
 
 GROUND = ""
@@ -137,27 +138,42 @@ def solve(truss: Truss, case: LoadCase) -> Equilibrium:
     >>> solve(truss, LoadCase("dead", {"C": (0, -2)})).forces["A-C"]
     Exact('-sqrt(5)')
     """
+    return solve_all(truss, (case,))[0]
+
+
+def solve_all(truss: Truss, cases: Sequence[LoadCase]) -> tuple[Equilibrium, ...]:
+    """Return the exact solutions for many load cases, in their order, from one elimination with many right sides.
+
+    Raises
+    ------
+    UnstableTrussError
+        When the matrix is short of rank; names the joints that move.
+    """
     bars = bars_of(truss)
     order = _joint_order(truss)
     columns = sorted(range(len(bars)), key=lambda index: _bar_place(bars[index], order))
     rows = _equations(bars, columns, order)
-    loads = _right_sides(case, order)
+    loads = [_right_sides(case, order) for case in cases]
     result = _rational_solution(rows, loads, len(bars)) or _field_solution(rows, loads, len(bars))
     pivots, free_of, values = result
     if len(pivots) < len(rows):
         raise _mechanism(truss, bars, rows, order)
-    tensions: dict[str, Exact] = {}
-    for place, column in enumerate(columns):
-        if place in pivots and not free_of[place]:
-            tensions[bars[column].name] = values[place]
-    undecided = tuple(bar.name for bar in bars if bar.name not in tensions)
-    if not undecided:
-        return Equilibrium(bars, tensions, undecided, len(pivots))
     names = {place: bars[column].name for place, column in enumerate(columns)}
-    groups = _sharing([{names[c] for c in circuit} for circuit in _circuits(free_of, len(columns), pivots)])
-    order_of = {bar.name: place for place, bar in enumerate(bars)}
-    sharing = tuple(tuple(sorted(group, key=order_of.__getitem__)) for group in groups)
-    return Equilibrium(bars, tensions, undecided, len(pivots), sharing, _internal_degree(bars, columns, rows))
+    decided = [place for place in names if place in pivots and not free_of[place]]
+    undecided = tuple(sorted(set(names.values()) - {names[place] for place in decided}, key=_place_of(bars)))
+    sharing: tuple[tuple[str, ...], ...] = ()
+    internal = 0
+    if undecided:
+        groups = _sharing([{names[c] for c in circuit} for circuit in _circuits(free_of, len(columns), pivots)])
+        sharing = tuple(tuple(sorted(group, key=_place_of(bars))) for group in groups)
+        internal = _internal_degree(bars, columns, rows)
+    tensions = [{names[place]: of_case[place] for place in decided} for of_case in values]
+    return tuple(Equilibrium(bars, found, undecided, len(pivots), sharing, internal) for found in tensions)
+
+
+def _place_of(bars: tuple[Bar, ...]) -> Callable[[str], int]:
+    """Return the key that sorts names of bars in the order of the truss."""
+    return {bar.name: place for place, bar in enumerate(bars)}.__getitem__
 
 
 def _circuits(free_of: Mapping[int, tuple[int, ...]], width: int, pivots: set[int]) -> list[set[int]]:
@@ -260,120 +276,87 @@ def _right_sides(case: LoadCase, order: Mapping[str, int]) -> dict[int, Exact]:
 
 # --- elimination ------------------------------------------------------------------------------------------
 
-Solution = tuple[set[int], dict[int, tuple[int, ...]], dict[int, Exact]]
-"""Pivot columns, the free columns in each pivot's row, and the value with free columns at zero."""
+Sides = Mapping[int, Exact]
+"""The right side of one load case: minus the load in each row that has one."""
+
+Solution = tuple[set[int], dict[int, tuple[int, ...]], list[dict[int, Exact]]]
+"""Pivot columns, the free columns in each pivot's row, and for each case the values with free columns at zero."""
 
 
-def _field_solution(rows: list[dict[int, Exact]], loads: Mapping[int, Exact], width: int) -> Solution:
+def _field_solution(rows: list[dict[int, Exact]], loads: Sequence[Sides], width: int) -> Solution:
     """Eliminate in the number field itself."""
-    matrix = {
-        index: {**row, **({width: loads[index]} if index in loads else {})}
-        for index, row in enumerate(rows)
-        if row or index in loads
-    }
-    return _read_off(matrix, width, lambda row: row.get(width, ZERO))
+    matrix: dict[int, Row] = {index: dict(row) for index, row in enumerate(rows) if row}
+    for place, sides in enumerate(loads):
+        for index, side in sides.items():
+            matrix.setdefault(index, {})[width + place] = side
+    return _read_off(matrix, width, lambda row: [row.get(width + place, ZERO) for place in range(len(loads))])
 
 
-def _read_off(matrix: dict[int, Row], width: int, value: Callable[[Row], Exact]) -> Solution:
+def _read_off(matrix: dict[int, Row], width: int, value: Callable[[Row], list[Exact]]) -> Solution:
     reduced, pivots, _ = sdm_irref(matrix)
     found = [pivot for pivot in pivots if pivot < width]
     free_of: dict[int, tuple[int, ...]] = {}
-    values = {}
+    values = []
     for place, pivot in enumerate(found):
         row = reduced[place]
         free_of[pivot] = tuple(sorted(column for column in row if column < width and column != pivot))
-        values[pivot] = value(row)
-    return set(found), free_of, values
+        values.append(value(row))
+    return set(found), free_of, [dict(zip(found, of_case, strict=True)) for of_case in zip(*values, strict=True)]
 
 
-def _rational_solution(rows: list[dict[int, Exact]], loads: Mapping[int, Exact], width: int) -> Solution | None:
+def _rational_solution(rows: list[dict[int, Exact]], loads: Sequence[Sides], width: int) -> Solution | None:
     """Eliminate over the rationals after scaling rows and columns; None when no scaling makes them rational.
 
     A right side with roots is split into one rational column for each root.
     """
-    scaling = _scaling(rows, width)
-    if scaling is None:
+    scales = scaling(rows, width)
+    if scales is None:
         return None
-    row_scale, column_scale = scaling
+    row_scale, column_scale = scales
     matrix: dict[int, Row] = {}
-    keys: dict[Key, int] = {}
-    sides: dict[tuple[int, int], Any] = {}
     for index, row in enumerate(rows):
-        scaled: Row = {}
-        for column, entry in row.items():
-            factor = _scaled(_scaled(entry, row_scale[index]), column_scale[column])
-            scaled[column] = factor.terms[UNIT_KEY]
-        if index in loads:
-            side = _scaled(loads[index], row_scale[index])
+        if row:
+            matrix[index] = {
+                column: scaled(scaled(entry, row_scale[index]), column_scale[column]).terms[UNIT_KEY]
+                for column, entry in row.items()
+            }
+    split = _split_sides(loads, row_scale)
+    if split is None:
+        return None
+    columns = {owner: width + place for place, owner in enumerate(dict.fromkeys(owner for _, owner in split))}
+    for (index, owner), coefficient in in_one_field(split).items():
+        matrix.setdefault(index, {})[columns[owner]] = coefficient
+    owners = list(columns)
+    in_rows = any(part.rounded for row in rows for part in row.values())
+    is_rounded = [in_rows or any(part.rounded for part in sides.values()) for sides in loads]
+
+    def value(row: Row) -> list[Exact]:
+        terms: list[dict[Key, Any]] = [{} for _ in loads]
+        for column, coefficient in row.items():
+            if column >= width:
+                case, key = owners[column - width]
+                terms[case][key] = plain(coefficient)
+        return [Exact(own, rounded=rounded) for own, rounded in zip(terms, is_rounded, strict=True)]
+
+    pivots, free_of, values = _read_off(matrix, width, value)
+    return (
+        pivots,
+        free_of,
+        [{column: scaled(amount, column_scale[column]) for column, amount in of_case.items()} for of_case in values],
+    )
+
+
+def _split_sides(loads: Sequence[Sides], row_scale: list[Exact]) -> dict[tuple[int, tuple[int, Key]], Any] | None:
+    """Return the coefficient of every root in every right side, by row and by case and root; None for nested roots."""
+    split: dict[tuple[int, tuple[int, Key]], Any] = {}
+    for case, sides in enumerate(loads):
+        for index, load in sides.items():
+            side = scaled(load, row_scale[index])
             if side.tower:
                 return None
             for key, coefficient in side.terms.items():
-                sides[index, width + keys.setdefault(key, len(keys))] = coefficient
-        if scaled or index in loads:
-            matrix[index] = scaled
-    for (index, column), coefficient in in_one_field(sides).items():
-        matrix[index][column] = coefficient
-
-    def value(row: Row) -> Exact:
-        terms = {key: plain(row[width + place]) for key, place in keys.items() if width + place in row}
-        return Exact(terms, rounded=any_rounded)
-
-    any_rounded = any(part.rounded for row in rows for part in row.values()) or any(
-        part.rounded for part in loads.values()
-    )
-    pivots, free_of, values = _read_off(matrix, width, value)
-    return pivots, free_of, {column: _scaled(amount, column_scale[column]) for column, amount in values.items()}
-
-
-def _scaled(value: Exact, scale: Exact) -> Exact:
-    """Return a product that costs nothing for the usual scale 1."""
-    return value if scale is ONE else value * scale
-
-
-def _scaling(rows: list[dict[int, Exact]], width: int) -> tuple[list[Exact], list[Exact]] | None:
-    """Return factors for rows and columns that make every entry rational, or None."""
-    if all(part.is_rational for row in rows for part in row.values()):
-        return [ONE] * len(rows), [ONE] * width
-    row_scale, column_scale = _spread_scales(rows, width)
-    fits = all(
-        (row_scale[index] * entry * column_scale[column]).is_rational
-        for index, row in enumerate(rows)
-        for column, entry in row.items()
-    )
-    if not fits:
-        return None
-    return [row_scale[index] for index in range(len(rows))], [column_scale.get(c, ONE) for c in range(width)]
-
-
-def _spread_scales(rows: list[dict[int, Exact]], width: int) -> tuple[dict[int, Exact], dict[int, Exact]]:
-    """Return factors that make one entry of every row and column rational, passed on from entry to entry."""
-    in_column: list[list[int]] = [[] for _ in range(width)]
-    for index, row in enumerate(rows):
-        for column in row:
-            in_column[column].append(index)
-    row_scale: dict[int, Exact] = {}
-    column_scale: dict[int, Exact] = {}
-    for start in range(len(rows)):
-        waiting = [] if start in row_scale else [start]
-        row_scale.setdefault(start, ONE)
-        while waiting:
-            index = waiting.pop()
-            for column, entry in rows[index].items():
-                if column in column_scale:
-                    continue
-                column_scale[column] = _root_part(row_scale[index] * entry).inverse()
-                new = [other for other in in_column[column] if other not in row_scale]
-                for other in new:
-                    row_scale[other] = _root_part(rows[other][column] * column_scale[column]).inverse()
-                waiting += new
-    return row_scale, column_scale
-
-
-def _root_part(value: Exact) -> Exact:
-    """Return the root of a one-term number without its rational factor (other numbers as they are)."""
-    if len(value.terms) == 1 and not value.symbols:
-        return Exact({next(iter(value.terms)): ONE.terms[UNIT_KEY]}, value.tower)
-    return value
+                split[index, (case, key)] = coefficient
+    return split
 
 
 # --- mechanism --------------------------------------------------------------------------------------------
