@@ -31,7 +31,7 @@ LAYERS = (
         "project",
         "trussfile",
     ),
-    *("filetext", "replacefile", "files", "symbolparts", "samples"),
+    *("filetext", "combinationfiles", "replacefile", "files", "symbolparts", "samples"),
     *("statics.scaling", "statics.matrix", "statics.cuts"),
     *("statics.incidence", "statics.bodies", "statics.prices", "statics.derivations", "statics.bridges"),
     *("statics.carrying", "statics.plan", "statics.steps", "statics.owncuts", "statics.cutreport"),

@@ -10,15 +10,15 @@ import json
 import os
 import re
 import warnings
-from pathlib import Path
 from typing import Any, Final
 
+from trusscalc.combinationfiles import MOST_COMBINATIONS, combinations_in
 from trusscalc.errors import FileFormatError, InputError, TrusscalcWarning
 from trusscalc.exact import ONE, Exact
 from trusscalc.exacttext import to_text
-from trusscalc.filetext import LARGEST_FILE, data_of, faulty, one_line
+from trusscalc.filetext import data_of, faulty, one_line, text_of
 from trusscalc.loads import OPTIONAL, Combination, LoadCase
-from trusscalc.project import LINES, Project, line_fault
+from trusscalc.project import LINES, Project, line_fault, title_fault
 from trusscalc.replacefile import replace_file
 from trusscalc.truss import Support, Truss, did_you_mean
 from trusscalc.trussfile import TrussFile, case_faults, combination_faults, name_faults
@@ -31,7 +31,7 @@ MOST: Final = {
     "symbols": 40,
     "loads": 100_000,
     "cases": 1_000,
-    "combinations": 1_000,
+    "combinations": MOST_COMBINATIONS,
 }
 WIDEST_LINE: Final = 100
 
@@ -61,28 +61,7 @@ def read(path: str | os.PathLike[str]) -> TrussFile:
     FileFormatError
         When the file cannot be read or states something wrong; with every fault found in ``problems``.
     """
-    source = one_line(os.fspath(path))
-    try:
-        content = _content(Path(path))
-        text = content.decode("utf-8-sig")
-    except UnicodeDecodeError as problem:
-        line = problem.object.count(b"\n", 0, problem.start) + 1
-        message = f"line {line}: is not UTF-8 text; save the file as UTF-8"
-    except FileNotFoundError:
-        message = "there is no such file; check the name and the folder"
-    except (OSError, ValueError) as problem:
-        message = f"cannot be read: {one_line(getattr(problem, 'strerror', None) or str(problem))}"
-    else:
-        return reads(text, source)
-    raise FileFormatError(message, source=source)
-
-
-def _content(path: Path) -> bytes:
-    if path.exists() and not path.is_file():
-        message = "is not an ordinary file; name the truss file itself"
-        raise ValueError(message)
-    with path.open("rb") as file:
-        return file.read(LARGEST_FILE + 1)
+    return reads(text_of(path), one_line(os.fspath(path)))
 
 
 def reads(text: str, source: str = "") -> TrussFile:
@@ -139,7 +118,7 @@ def reads(text: str, source: str = "") -> TrussFile:
     symbols = _symbols(tables["symbols"], problems)
     truss = _truss(data, tables, symbols, problems)
     cases = _cases(tables["cases"], symbols, problems)
-    combinations = _combinations(tables["combinations"], problems)
+    combinations = combinations_in(tables["combinations"], problems)
     project = _project(tables["project"], problems)
     problems += case_faults(list(tables["joints"]), cases)
     problems += combination_faults(list(tables["cases"]), combinations)
@@ -249,7 +228,7 @@ def _symbols(table: dict[str, Any], problems: list[str]) -> dict[str, Exact]:
 def _cases(tables: dict[str, Any], symbols: dict[str, Exact], problems: list[str]) -> list[LoadCase]:
     cases = []
     for name, table in tables.items():
-        if fault := _name_fault(name):
+        if fault := title_fault(name):
             problems.append(f"[cases] {name}: {fault}")
         if not isinstance(table, dict):
             problems.append(f"[cases] {name}: a table is needed, such as [cases.dead] with L1 = [0, -120] below")
@@ -263,35 +242,12 @@ def _cases(tables: dict[str, Any], symbols: dict[str, Exact], problems: list[str
     return cases
 
 
-def _combinations(tables: dict[str, Any], problems: list[str]) -> list[Combination]:
-    combinations = []
-    for name, table in tables.items():
-        if fault := _name_fault(name):
-            problems.append(f"[combinations] {name}: {fault}")
-        stated = table if isinstance(table, dict) else {}
-        factors = {case: factor for case, factor in stated.items() if case != OPTIONAL}
-        if not factors:
-            problems.append(f'[combinations] {name}: a table of case = factor is needed, such as dead = "1.2"')
-            continue
-        try:
-            combinations.append(Combination(name, factors, optional=stated.get(OPTIONAL, ())))
-        except InputError as fault:
-            problems += fault.problems
-            # cases that are not there are still to be found
-            combinations.append(Combination(name, dict.fromkeys(factors, 1)))
-    return combinations
-
-
 def _project(table: dict[str, Any], problems: list[str]) -> Project | None:
     try:
         return Project(**{key: value for key, value in table.items() if key in KEYS["project"]})
     except InputError as fault:
         problems += fault.problems
     return None
-
-
-def _name_fault(name: str) -> str | None:
-    return line_fault(name) if name.strip() else "a name is needed"
 
 
 # --- writing ----------------------------------------------------------------------------------------------

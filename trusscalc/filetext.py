@@ -1,4 +1,4 @@
-"""The text of a truss file as plain data, and the way back from a fault to its line.
+"""The text of a file on disk, as plain data where it is TOML, and the way back from a fault to its line.
 
 The text is untrusted: size, depth and what would take too long are refused before anything looks at it, and
 numbers with a point or an exponent keep their text, so that no float stands between file and exact number.
@@ -6,9 +6,11 @@ numbers with a point or an exponent keep their text, so that no float stands bet
 
 from __future__ import annotations
 
+import os
 import re
 import tomllib
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
+from pathlib import Path
 from typing import Any, Final
 
 from trusscalc.errors import FileFormatError
@@ -33,6 +35,34 @@ class DecimalText(str):
     """A number with a point or an exponent, as it stands in the file."""
 
     __slots__ = ()
+
+
+def text_of(path: str | os.PathLike[str]) -> str:
+    """Return the text of a file on disk, without a byte-order mark and never more than ``LARGEST_FILE`` and a little.
+
+    Raises
+    ------
+    FileFormatError
+        When it is no ordinary file, cannot be read or is not UTF-8.
+    """
+    try:
+        return _content(Path(path)).decode("utf-8-sig")
+    except UnicodeDecodeError as problem:
+        line = problem.object.count(b"\n", 0, problem.start) + 1
+        message = f"line {line}: is not UTF-8 text; save the file as UTF-8"
+    except FileNotFoundError:
+        message = "there is no such file; check the name and the folder"
+    except (OSError, ValueError) as problem:
+        message = f"cannot be read: {one_line(getattr(problem, 'strerror', None) or str(problem))}"
+    raise FileFormatError(message, source=one_line(os.fspath(path)))
+
+
+def _content(path: Path) -> bytes:
+    if path.exists() and not path.is_file():
+        message = "is not an ordinary file; name the file itself"
+        raise ValueError(message)
+    with path.open("rb") as file:
+        return file.read(LARGEST_FILE + 1)
 
 
 def data_of(text: str, source: str) -> dict[str, Any]:
@@ -91,10 +121,14 @@ def faulty(problems: list[str], text: str, source: str) -> FileFormatError:
     found = sorted(
         ((_line_of(problem, lines), problem) for problem in dict.fromkeys(problems)), key=lambda pair: pair[0]
     )
-    told = [one_line(f"line {line}: {problem}" if line else problem) for line, problem in found]
-    if len(told) > MOST_PROBLEMS:
-        told = [*told[:MOST_PROBLEMS], f"and {len(told) - MOST_PROBLEMS} more problems"]
-    return FileFormatError(told, source=source)
+    told = [f"line {line}: {problem}" if line else problem for line, problem in found]
+    return FileFormatError(capped(told), source=source)
+
+
+def capped(problems: Iterable[str]) -> list[str]:
+    """Return the problems a reader can take in: each on one line, and not too many."""
+    told = [one_line(problem) for problem in dict.fromkeys(problems)]
+    return [*told[:MOST_PROBLEMS], *([f"and {more} more problems"] if (more := len(told) - MOST_PROBLEMS) > 0 else [])]
 
 
 def _lines(text: str) -> dict[str, int]:

@@ -107,3 +107,8 @@ def line_fault(value: object) -> str | None:
         if unicodedata.category(character) in ("Cc", "Cs", "Cn", "Co", "Zl", "Zp") or character in OVERRIDES:
             return f"the character U+{ord(character):04X} does not belong in a line of text; remove it"
     return None
+
+
+def title_fault(name: str) -> str | None:
+    """Return what is wrong with the name of a case or a combination, or None."""
+    return line_fault(name) if name.strip() else "a name is needed"
