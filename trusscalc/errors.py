@@ -114,5 +114,19 @@ class NoCutError(TrusscalcError, ValueError):
         super().__init__(message)
 
 
+class UndecidedError(TrusscalcError, ValueError):
+    """A force was asked for that statics alone does not decide.
+
+    Attributes
+    ----------
+    name : str
+        The member, reaction or shear, as the truss spells it.
+    """
+
+    def __init__(self, message: str, *, name: str) -> None:
+        self.name = name
+        super().__init__(message)
+
+
 class RenderError(TrusscalcError, ValueError):
     """A sheet that cannot be drawn or written as asked."""

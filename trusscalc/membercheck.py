@@ -315,17 +315,18 @@ def _derivation(  # noqa: PLR0917 - called in one place
     own_checks: bool = True,
 ) -> tuple[tuple[Step, ...], dict[str, Exact]]:
     """Write the planned steps one after the other; a value enters an equation only after its own step."""
-    writer = _Writer(structure, own_checks=own_checks)
+    writer = Writer(structure, own_checks=own_checks)
     usable = {name: kept for name, kept in own.items() if name in equilibrium.tensions}
     for planned in plan(structure, equilibrium, wanted, case.as_floats(), cuts=usable, prefer=prefer):
         writer.write(planned)
     return tuple(writer.steps), writer.tensions
 
 
-class _Writer:
+class Writer:
     """Writes steps one after the other: letters of sections, letters of carried forces, values found so far."""
 
     def __init__(self, structure: Structure, *, own_checks: bool) -> None:
+        """Begin with nothing found; ``own_checks`` asks for a check of each step by an unused equation."""
         self.structure = structure
         self.own_checks = own_checks
         self.steps: list[Step] = []

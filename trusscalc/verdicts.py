@@ -192,15 +192,30 @@ class Judge:
     def _judgement(self, name: str, difference: float) -> tuple[Verdict, str]:
         if name in self.equilibrium.tensions and self.tensions[name] != self.equilibrium.tensions[name]:
             return "differs", "the step's value differs from the exact solution of all joint equations"
-        if self.tolerance > WIDEST_TOLERANCE:
-            return "undecided", (
-                f"the geometry is so close to a critical form that the numeric route is good for no more than "
-                f"{self.tolerance:.0e} of the largest force"
-            )
-        # written so that a difference that is not a number never passes
-        if abs(difference) <= self.tolerance * self.largest:
-            return "agrees", ""
-        return "differs", "the two routes differ by more than the tolerance"
+        return compared(difference, self.tolerance, self.largest)
+
+
+def compared(difference: float, tolerance: float, largest: float) -> tuple[Verdict, str]:
+    """Return what is to be made of a difference between the routes, and why where they do not agree.
+
+    Parameters
+    ----------
+    difference : float
+        Exact less numeric value.
+    tolerance : float
+        Share of the largest force that the numeric route can be trusted to.
+    largest : float
+        The largest force.
+    """
+    if tolerance > WIDEST_TOLERANCE:
+        return "undecided", (
+            f"the geometry is so close to a critical form that the numeric route is good for no more than "
+            f"{tolerance:.0e} of the largest force"
+        )
+    # written so that a difference that is not a number never passes
+    if abs(difference) <= tolerance * largest:
+        return "agrees", ""
+    return "differs", "the two routes differ by more than the tolerance"
 
 
 def tolerance_at(condition: float) -> float:
