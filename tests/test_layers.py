@@ -40,6 +40,7 @@ LAYERS = (
         "stiffness",
         "verdicts",
         "membercheck",
+        "influencetargets",
         "influence",
         "report",
         "compare",
