@@ -155,6 +155,7 @@ class TestCombination:
         )
         assert (stated.optional, stated.source) == (("live",), "")
         assert Combination("x", {"dead": 1}, source="somewhere").source == "somewhere"
+        assert Combination("x", stated.factors, optional=stated.optional) == stated
 
     @pytest.mark.parametrize(
         ("factors", "optional", "message"),

@@ -180,7 +180,8 @@ class Combination:
 
 def _factors(where: str, stated: object, problems: list[str]) -> tuple[Exact, ...]:
     """Return the one factor or the two of a pair."""
-    if isinstance(stated, (list, tuple)) and len(stated) != PAIR:
+    one = isinstance(stated, tuple) and len(stated) == 1  # as ``Combination.factors`` has it
+    if isinstance(stated, (list, tuple)) and len(stated) != PAIR and not one:
         problems.append(f'{where}: one factor is needed, or a pair such as ["1.25", "0.90"]')
         return ()
     read = []
