@@ -17,7 +17,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from trusscalc import files, shapes
+from trusscalc import files, filewriting, shapes
 from trusscalc.errors import FileFormatError, InputError, TrusscalcError, TrusscalcWarning, UnknownNameError
 from trusscalc.exact import ONE, rational
 from trusscalc.exacttext import parse
@@ -408,7 +408,9 @@ class TestHostileFiles:
     """A truss file is untrusted: a clear refusal or an exact truss, never anything else, and never for long."""
 
     @pytest.mark.parametrize("place", PLACES)
-    @pytest.mark.parametrize("value", [*map(files._value, NUMBERS), *BARE], ids=lambda value: ascii(value)[:24])
+    @pytest.mark.parametrize(
+        "value", [*map(filewriting.value_text, NUMBERS), *BARE], ids=lambda value: ascii(value)[:24]
+    )
     def test_wherever_a_number_may_stand(self, place: str, value: str) -> None:
         """Programs, monsters and nonsense are refused by name of the place."""
         old, new = PLACES[place].split("|")
@@ -451,7 +453,7 @@ class TestHostileFiles:
     )
     def test_forbidden_joint_names(self, name: str) -> None:
         """Refused, and shown so that they cannot disturb a terminal."""
-        problems = fails(TRIANGLE.replace("[members]", f"{files._value(name)} = [9, 9]\n[members]"))
+        problems = fails(TRIANGLE.replace("[members]", f"{filewriting.value_text(name)} = [9, 9]\n[members]"))
         assert any("[joints]" in problem for problem in problems)
 
     @pytest.mark.parametrize(
@@ -460,7 +462,7 @@ class TestHostileFiles:
     @pytest.mark.parametrize("name", ["a\nb", "a\x1b[2J", "\u202ea", "\x7f", "x" * 100_000, "\u2028"], ids=ascii)
     def test_odd_names_stay_on_one_line(self, key: str, name: str) -> None:
         """The message is one line without control characters, whatever the key."""
-        text = TRIANGLE.replace(f"[{key}]\n", "") + f"[{key}]\n{files._value(name)} = 'x'\n"
+        text = TRIANGLE.replace(f"[{key}]\n", "") + f"[{key}]\n{filewriting.value_text(name)} = 'x'\n"
         fails(text)
 
     @pytest.mark.parametrize(
@@ -543,7 +545,9 @@ class TestHostileFiles:
     def test_any_data_in_any_table(self, entries: dict[str, Any], table: str) -> None:
         """Whatever TOML can state in a table is read or refused by name."""
         text = TRIANGLE.replace(f"[{table}]\n", f"[old{table}]\n") + f"[{table}]\n"
-        text += "".join(f"{files._value(key)} = {toml(value)}\n" for key, value in entries.items() if value is not None)
+        text += "".join(
+            f"{filewriting.value_text(key)} = {toml(value)}\n" for key, value in entries.items() if value is not None
+        )
         read_or_refused(text)
 
 
@@ -560,14 +564,16 @@ def read_or_refused(text: str) -> None:
 def toml(value: Any) -> str:
     """Return any value as TOML."""
     if isinstance(value, dict):
-        return "{" + ", ".join(f"{files._value(k)} = {toml(v)}" for k, v in value.items() if v is not None) + "}"
+        return (
+            "{" + ", ".join(f"{filewriting.value_text(k)} = {toml(v)}" for k, v in value.items() if v is not None) + "}"
+        )
     if isinstance(value, list):
         return "[" + ", ".join(toml(item) for item in value if item is not None) + "]"
     if isinstance(value, bool):
         return str(value).lower()
     if isinstance(value, dt.date):
         return value.isoformat()
-    return files._value(value) if isinstance(value, str) else repr(value)
+    return filewriting.value_text(value) if isinstance(value, str) else repr(value)
 
 
 names = st.text(st.characters(exclude_categories=["C"]), min_size=1, max_size=10).filter(

@@ -6,24 +6,21 @@ in one line with the line number where that is certain. What is written is read 
 
 from __future__ import annotations
 
-import json
 import os
-import re
 import warnings
 from typing import Any, Final
 
 from trusscalc.combinationfiles import MOST_COMBINATIONS, combinations_in
 from trusscalc.errors import FileFormatError, InputError, TrusscalcWarning
 from trusscalc.exact import ONE, Exact
-from trusscalc.exacttext import to_text
 from trusscalc.filetext import data_of, faulty, one_line, text_of
-from trusscalc.loads import OPTIONAL, Combination, LoadCase
+from trusscalc.filewriting import BEHAVIOUR, FORMAT, UNGROUPED, text_of_stated
+from trusscalc.loads import LoadCase
 from trusscalc.project import LINES, Project, line_fault, title_fault
 from trusscalc.replacefile import replace_file
-from trusscalc.truss import Support, Truss, did_you_mean
+from trusscalc.truss import Truss, did_you_mean
 from trusscalc.trussfile import TrussFile, case_faults, combination_faults, name_faults
 
-FORMAT: Final = 1
 MOST: Final = {
     "joints": 10_000,
     "members": 40_000,
@@ -33,16 +30,17 @@ MOST: Final = {
     "cases": 1_000,
     "combinations": MOST_COMBINATIONS,
 }
-WIDEST_LINE: Final = 100
-
-TABLES: Final = ("units", "joints", "members", "supports", "symbols", "cases", "combinations", "behaviour", "project")
+LOAD_TABLES: Final = ("chains", "trains", "moving", "panel_loads", "published_combinations")
+TABLES: Final = (
+    *("units", "joints", "members", "supports", "symbols", "cases", "combinations", "behaviour", "project"),
+    *LOAD_TABLES,
+)
 KEYS: Final = {
     "": ("format", "title", *TABLES),
     "units": ("length", "force"),
-    "behaviour": ("tension_only", "no_uplift"),
+    "behaviour": BEHAVIOUR,
     "project": (*LINES, "names"),
 }
-_BARE_KEY: Final = re.compile(r"[A-Za-z0-9_-]+")
 
 
 # --- reading ----------------------------------------------------------------------------------------------
@@ -120,13 +118,30 @@ def reads(text: str, source: str = "") -> TrussFile:
     cases = _cases(tables["cases"], symbols, problems)
     combinations = combinations_in(tables["combinations"], problems)
     project = _project(tables["project"], problems)
+    loads = _load_tables(tables, symbols, truss, problems)
+    stated_names = (*tables["cases"], *tables["panel_loads"])
     problems += case_faults(list(tables["joints"]), cases)
-    problems += combination_faults(list(tables["cases"]), combinations)
+    problems += combination_faults(stated_names, combinations, moving=list(tables["moving"]))
     if truss is not None and project is not None:
         problems += name_faults(truss, project)
         if not problems:
-            return TrussFile(truss, tuple(cases), tuple(combinations), project)
+            try:
+                return TrussFile(truss, tuple(cases), tuple(combinations), project, **loads)
+            except InputError as fault:
+                problems += fault.problems
     raise faulty(problems, text, source)
+
+
+def _load_tables(
+    tables: dict[str, dict[str, Any]], symbols: dict[str, Exact], truss: Truss | None, problems: list[str]
+) -> dict[str, Any]:
+    """Return what the tables of loads state, as TrussFile's fields; most files have none of them."""
+    if not any(tables[name] for name in LOAD_TABLES):
+        return {}
+    from trusscalc.filetables import load_tables  # noqa: PLC0415 - see above
+
+    units = (truss.force, truss.length) if truss else ("kN", "m")
+    return load_tables({name: tables[name] for name in LOAD_TABLES}, symbols, units, problems)
 
 
 def _check_format(data: dict[str, Any], source: str, problems: list[str]) -> None:
@@ -252,12 +267,6 @@ def _project(table: dict[str, Any], problems: list[str]) -> Project | None:
 
 # --- writing ----------------------------------------------------------------------------------------------
 
-UNGROUPED: Final = "members"
-ROUNDED_MARK: Final = " + 0*sin(1)"
-ROUNDED_NOTE: Final = (
-    f"# a number ending in {ROUNDED_MARK.strip()} holds an angle that was rounded when it was first read\n"
-)
-
 
 def writes(truss_file: TrussFile) -> str:
     """Return the text of a truss file that reads back to an equal TrussFile.
@@ -272,9 +281,7 @@ def writes(truss_file: TrussFile) -> str:
     InputError
         When it holds something a truss file cannot hold: a number longer than the reader takes, say.
     """
-    text = "\n".join(_section(name, entries) for name, entries in _sections(truss_file) if _is_written(name, entries))
-    if ROUNDED_MARK in text:
-        text = ROUNDED_NOTE + text
+    text = text_of_stated(truss_file)
     _prove(text, truss_file)
     return text
 
@@ -299,72 +306,6 @@ def write(truss_file: TrussFile, path: str | os.PathLike[str]) -> None:
     replace_file(path, writes(truss_file).encode())
 
 
-def _sections(truss_file: TrussFile) -> list[tuple[str, dict[str, Any]]]:
-    truss, project = truss_file.truss, truss_file.project
-    groups: dict[str, Any] = {}
-    for member in truss.members:
-        groups.setdefault(member.group or UNGROUPED, []).append(member.name)
-    return [
-        ("", {"format": FORMAT, "title": truss.title}),
-        ("units", {"length": truss.length, "force": truss.force}),
-        ("joints", {joint.name: [joint.x, joint.y] for joint in truss.joints}),
-        ("members", groups),
-        ("supports", {support.joint: _stated(support) for support in truss.supports}),
-        ("symbols", dict(truss.symbols) | (dict(truss_file.cases[0].symbols) if truss_file.cases else {})),
-        *(
-            (f"cases.{_key(case.name)}", {load.joint: [load.fx, load.fy] for load in case.loads})
-            for case in truss_file.cases
-        ),
-        *((f"combinations.{_key(each.name)}", _factored(each)) for each in truss_file.combinations),
-        ("behaviour", {key: list(getattr(truss, key)) for key in KEYS["behaviour"]}),
-        ("project", {key: getattr(project, key) for key in LINES if getattr(project, key)}),
-        ("project.names", dict(project.names)),
-    ]
-
-
-def _is_written(name: str, entries: dict[str, Any]) -> bool:
-    return name.startswith("cases.") or any(entry != [] for entry in entries.values())
-
-
-def _factored(combination: Combination) -> dict[str, Any]:
-    factors: dict[str, Any] = {case: list(pair) if pair[1:] else pair[0] for case, pair in combination.factors}
-    return factors | ({OPTIONAL: list(combination.optional)} if combination.optional else {})
-
-
-def _stated(support: Support) -> Any:
-    if support.kind != "links":
-        return support.kind
-    links = [{"reaction": [link.dx, link.dy]} for link in support.links]
-    return links[0] if support.links[0].name == f"{support.joint}.r" else links
-
-
-def _section(name: str, entries: dict[str, Any]) -> str:
-    lines = [f"[{name}]"] if name else []
-    for key, value in entries.items():
-        line = f"{_key(key)} = {_value(value)}"
-        if len(line) > WIDEST_LINE and isinstance(value, list):
-            line = f"{_key(key)} = [\n{''.join(f'    {_value(item)},{chr(10)}' for item in value)}]"
-        lines.append(line)
-    return "\n".join(lines) + "\n"
-
-
-def _key(name: str) -> str:
-    return name if _BARE_KEY.fullmatch(name) else _value(name)
-
-
-def _value(value: Any) -> str:
-    if isinstance(value, Exact):
-        text = to_text(value) + (ROUNDED_MARK if value.rounded else "")
-        return text if re.fullmatch(r"-?[0-9]{1,15}", text) else f'"{text}"'
-    if isinstance(value, list):
-        return f"[{', '.join(map(_value, value))}]"
-    if isinstance(value, dict):
-        return f"{{ {', '.join(f'{_key(key)} = {_value(item)}' for key, item in value.items())} }}"
-    if isinstance(value, int):
-        return str(value)
-    return json.dumps(value, ensure_ascii=False).replace("\x7f", "\\u007f")
-
-
 def _prove(text: str, truss_file: TrussFile) -> None:
     """Read the text back: what cannot be read again must not be filed."""
     try:
@@ -384,4 +325,5 @@ def _compared(truss_file: TrussFile) -> tuple[object, ...]:
     names = [member.name for member in truss.members]
     behaviour = (truss.tension_only, truss.no_uplift)
     head = (truss.title, truss.length, truss.force, truss.joints, names, groups, truss.supports, behaviour)
-    return (*head, truss_file.cases, truss_file.combinations, truss_file.project)
+    loads = (truss_file.chains, truss_file.trains, truss_file.moving, truss_file.panel_loads, truss_file.published)
+    return (*head, truss_file.cases, truss_file.combinations, truss_file.project, *loads)

@@ -9,6 +9,7 @@ from __future__ import annotations
 import os
 import re
 import tomllib
+from collections import Counter
 from collections.abc import Iterable, Mapping
 from pathlib import Path
 from typing import Any, Final
@@ -27,6 +28,7 @@ _KEYS: Final = re.compile(_KEY)
 _STRINGS: Final = re.compile(_QUOTED)
 _STRING_OR_COMMENT: Final = re.compile(rf"{_QUOTED}|#.*")
 _HEADER: Final = re.compile(rf"\s*\[\s*((?:{_KEY})(?:\s*\.\s*(?:{_KEY}))*)\s*\]")
+_REPEATED: Final = re.compile(rf"\s*\[\[\s*((?:{_KEY})(?:\s*\.\s*(?:{_KEY}))*)\s*\]\]")
 _ENTRY: Final = re.compile(rf"\s*({_KEY})\s*=")
 _LONG_DOTTED_KEY: Final = re.compile(rf"(?<![\w\"'-])(?:(?:{_KEY})[ \t]*\.[ \t]*){{16}}")
 
@@ -139,19 +141,26 @@ def _lines(text: str) -> dict[str, int]:
     if '"""' in text or "'''" in text:
         return {}
     found: dict[str, int] = {}
-    table, start, depth = "", "", 0
+    head, start, depth = "", "", 0
+    repeated: Counter[str] = Counter()
     for count, line in enumerate(text.split("\n"), 1):
         if not depth and (header := _HEADER.match(line)):
             parts = [_unquoted(key) for key in _KEYS.findall(header[1])]
-            table, parent, last = ".".join(parts), ".".join(parts[:-1]), parts[-1]
-            found.setdefault(f"[{table}]", count)
+            head, parent, last = f"[{'.'.join(parts)}]", ".".join(parts[:-1]), parts[-1]
+            found.setdefault(head, count)
             found.setdefault(f"[{parent}] {last}" if parent else last, count)
+            continue
+        if not depth and (header := _REPEATED.match(line)):
+            table = ".".join(_unquoted(key) for key in _KEYS.findall(header[1]))
+            repeated[table] += 1
+            head = f"[[{table}]] no. {repeated[table]}"
+            found.setdefault(head, count)
             continue
         if not depth and (entry := _ENTRY.match(line)):
             key = _unquoted(entry[1])
-            start = f"[{table}] {key}" if table else key
+            start = f"{head} {key}" if head else key
             found.setdefault(start, count)
-            found.setdefault(f"[{table}] {key!r}", count)
+            found.setdefault(f"{head} {key!r}", count)
             line = line[entry.end() :]  # noqa: PLW2901 - the rest of it
         for quoted in _STRINGS.findall(line):
             found.setdefault(f"{start} {_unquoted(quoted)!r}", count)
