@@ -7,14 +7,13 @@ that the records themselves need to know nothing of sheets and renderers.
 from __future__ import annotations
 
 import os
-from collections.abc import Callable, Iterable
+from collections.abc import Callable
 from pathlib import Path
 from typing import Any, Final
 
 from trusscalc.errors import RenderError, UnstableTrussError
 from trusscalc.exact import Exact
 from trusscalc.exacttext import to_text
-from trusscalc.loads import LoadCase
 from trusscalc.membercheck import ForceCheck, MemberCheck
 from trusscalc.project import Project
 from trusscalc.render.html import html
@@ -24,18 +23,17 @@ from trusscalc.render.pdf import pdf
 from trusscalc.render.text import step_text, text
 from trusscalc.replacefile import replace_file
 from trusscalc.sheet import compose as composing
-from trusscalc.sheet.blocks import Column, Derivation, Inline, Items, Labelled, Lines, Picture, Run, Sheet, Table, Value
-from trusscalc.sheet.derivation import NOTHING
+from trusscalc.sheet.blocks import Derivation, Inline, Items, Picture, Run, Sheet, Value
 from trusscalc.sheet.detail import Detail
-from trusscalc.sheet.equations import times
 from trusscalc.sheet.figures import Figure, cut_figure, mechanism_figure, truss_figure
-from trusscalc.sheet.values import decimal_text, formula
-from trusscalc.sheet.words import Symbols, about_words, bar, listed, numbered, sum_label
+from trusscalc.sheet.values import decimal_text
+from trusscalc.sheet.words import about_words, bar, listed
 from trusscalc.statics.cutreport import CutReport, cut_equation, cut_report
 from trusscalc.statics.cuts import Cut
 from trusscalc.statics.owncuts import OwnCut, own_cut
 from trusscalc.statics.steps import Equation, Step
 from trusscalc.truss import Truss
+from trusscalc.widgets.cutblocks import equation_blocks, facts, kept_and_cut, possibility_table, why_nothing
 
 WRITERS: Final[dict[str, Callable[[Sheet], str | bytes]]] = {
     ".ipynb": notebook,
@@ -44,8 +42,6 @@ WRITERS: Final[dict[str, Callable[[Sheet], str | bytes]]] = {
     ".txt": text,
 }
 """What each suffix is written by."""
-MOST_POSSIBILITIES: Final = 6
-"""Equations of a cut that are shown, those with fewest unknowns first."""
 
 
 def save(sheet: Sheet, path: str | os.PathLike[str], *, paper: str = "A4") -> Path:
@@ -179,15 +175,7 @@ def _decimal(value: float) -> str:
 
 def _equation_bundle(equation: Equation, **_: Any) -> Bundle:
     """Return an equation as a line in symbols, with what drops out of it."""
-    loaded = [term.name for term in equation.terms if term.kind == "load"]
-    symbols = Symbols(numbered((*equation.cut.bars, *loaded)), frozenset(loaded))
-    unvalued = LoadCase("", {})
-    sought = [(term, symbols.of(term, sought=term.kind == "member")) for term in equation.terms]
-    products = tuple(times(equation, term.coefficient, symbol, unvalued) for term, symbol in sought)
-    items = [("Joints kept", listed(equation.cut.kept)), ("Drop out", listed(map(bar, equation.dropped)) or "none")]
-    items += [(f"({number})", bar(name)) for name, number in symbols.numbers.items()]
-    line = Labelled(sum_label(equation, "part kept"), formula(products, NOTHING))
-    return bundle([Lines((line,)), _items(items)])
+    return bundle(equation_blocks(equation))
 
 
 def _step_bundle(step: Step, **_: Any) -> Bundle:
@@ -198,48 +186,30 @@ def _step_bundle(step: Step, **_: Any) -> Bundle:
         for equation in step.equations
     ]
     items += [(bar(name), to_text(value)) for name, value in step.results.items()]
-    return bundle([_items(items)])
+    return bundle([facts(items)])
 
 
 def _cut_bundle(cut: Cut, **_: Any) -> Bundle:
     """Return a cut's facts: what is kept, and which bars hold it."""
-    return bundle([_items([("Kind", cut.kind), *_kept_and_cut(cut)])])
+    return bundle([facts([("Kind", cut.kind), *kept_and_cut(cut)])])
 
 
 def _own_cut_bundle(cut: OwnCut, **_: Any) -> Bundle:
     """Return an own cut drawn in its truss, and its facts."""
-    return bundle([Picture((cut_figure(cut.truss, cut.kept),)), _items(_kept_and_cut(cut))])
+    return bundle([Picture((cut_figure(cut.truss, cut.kept),)), facts(kept_and_cut(cut))])
 
 
 def _cut_report_bundle(report: CutReport, **_: Any) -> Bundle:
     """Return what a cut can do: what it decides or why not, and what each equation leaves unknown."""
     items = [
-        *_kept_and_cut(report.cut),
+        *kept_and_cut(report.cut),
         ("Unknown", listed(map(bar, report.unknown)) or "none"),
         ("Solves alone", listed(map(bar, report.solves)) or "nothing"),
     ]
     if report.together:
         items.append(("Solves together", listed(map(bar, report.together))))
-    if report.reason:
-        reason = report.reason
-        for name in report.unknown:
-            reason = reason.replace(name, bar(name))
-        items.append(("Why nothing", reason))
-    if report.nearest:
-        items.append(("Nearest cut that does", f"keep {listed(report.nearest)}"))
-    rows = tuple(
-        (Run(about_words(way.about)), Run(listed(map(bar, way.unknown)) or "nothing"))
-        for way in report.possibilities[:MOST_POSSIBILITIES]
-    )
-    return bundle([_items(items), Table((Column("equation"), Column("leaves unknown")), rows)])
-
-
-def _kept_and_cut(cut: Cut | OwnCut) -> list[tuple[str, str]]:
-    return [("Joints kept", listed(cut.kept)), ("Bars cut", listed(map(bar, cut.bars)) or "none")]
-
-
-def _items(items: Iterable[tuple[str, str]]) -> Items:
-    return Items(tuple((term, (Run(text),)) for term, text in items))
+    items += why_nothing(report.reason, report.unknown, report.nearest)
+    return bundle([facts(items), possibility_table(report.possibilities)])
 
 
 def _mechanism_bundle(error: UnstableTrussError, **_: Any) -> dict[str, Any]:
