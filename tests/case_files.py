@@ -1,5 +1,8 @@
 """The published cases in ``tests/cases``: one JSON file each, read into records.
 
+Influence lines are in ``tests/cases/influence``: ``printed`` and ``expected`` are then ordinates, for a unit load at
+the joints of ``chain``, and ``printed_lines`` the straight lines between them, as the source has them.
+
 A file holds the truss in the spelling of the truss file, ``printed`` values as their source prints them (only
 the sense is turned into a sign, tension positive), ``expected`` values in exact text, and where all this comes
 from. An expected value with a decimal point is no surd: its true value to 40 digits. ``erratum`` lists what the
@@ -70,4 +73,28 @@ def _read(path: Path) -> PublishedCase:
     return PublishedCase(data["id"], data)
 
 
+@dataclass(frozen=True)
+class PublishedLine:
+    """A truss with printed influence ordinates; ``data`` is its file, read."""
+
+    id: str
+    data: dict[str, Any]
+
+    @property
+    def truss(self) -> Truss:
+        """The truss."""
+        return PublishedCase(self.id, self.data).truss
+
+    @property
+    def expected(self) -> dict[str, tuple[Exact, ...]]:
+        """The ordinates of every target, along the chain."""
+        return {name: tuple(map(parse, texts)) for name, texts in self.data["expected"].items()}
+
+    def target_of(self, name: str) -> tuple[str, Exact]:
+        """Return the target a printed name stands for, and what its ordinates are multiplied by."""
+        return PublishedCase(self.id, self.data).member_of(name)
+
+
 CASES = {path.stem: _read(path) for path in sorted(FOLDER.glob("*.json"))}
+
+LINES = {path.stem: PublishedLine(path.stem, _read(path).data) for path in sorted(FOLDER.glob("influence/*.json"))}

@@ -63,7 +63,8 @@ class InfluenceLine(Convenient):
     shown_joint : str
         The joint of the largest ordinate, where the steps have the load; '' without steps.
     steps : tuple of Step
-        The derivation of that ordinate; for the others the same equations were written.
+        The derivation of that ordinate, all reactions first, each step with its check where there is one; for the
+        others the same equations were written, as far as the target rests on them.
     found : tuple of dict of str to Exact
         For each joint of the chain what those equations gave: every force the target rests on, in the order found.
     section : PanelSection or None
@@ -193,9 +194,9 @@ def influence_line(
     """
     runs = _UnitRuns(truss, chain)
     sought = runs.sought(target)
-    planned = _planned(runs, sought, prefer)
+    planned, needed = _planned(runs, sought, prefer)
     places = range(len(runs.cases))
-    written = [_written(runs.structure(place), planned) for place in places]
+    written = [_written(runs.structure(place), needed) for place in places]
     ordinates = [
         sought.by_hand(runs.structure(place), writer.steps, writer.tensions) for place, writer in enumerate(written)
     ]
@@ -205,7 +206,7 @@ def influence_line(
         for place in places
     ]
     shown = max(places, key=lambda place: abs(ordinates[place]))
-    writer = _written(runs.structure(shown), planned, own_checks=True)
+    writer = _written(runs.structure(shown), planned if needed else (), own_checks=True)
     return replace(
         runs.line(sought, ordinates, reasons),
         shown_joint=runs.chain.joints[shown],
@@ -311,10 +312,13 @@ class _UnitRuns:
 # --- by hand ----------------------------------------------------------------------------------------------
 
 
-def _planned(runs: _UnitRuns, sought: Target, prefer: Preference) -> tuple[PlannedStep, ...]:
-    """Return the steps to a target, planned with a unit load at every joint of the chain at once.
+def _planned(
+    runs: _UnitRuns, sought: Target, prefer: Preference
+) -> tuple[tuple[PlannedStep, ...], tuple[PlannedStep, ...]]:
+    """Return the steps to all reactions and a target, and those of them that the target rests on.
 
-    A bar counts as unloaded only if it is so in every position of the load.
+    They are planned with a unit load at every joint of the chain at once; a bar counts as unloaded only if it is so in
+    every position of the load.
     """
     loads = dict.fromkeys(runs.chain.joints, (ZERO, -ONE))
     structure = replace(runs.structure(0), loads=loads)
@@ -326,7 +330,7 @@ def _planned(runs: _UnitRuns, sought: Target, prefer: Preference) -> tuple[Plann
     wanted = [sought.name] if sought.kind == "member" else []
     as_floats = dict.fromkeys(loads, (0.0, -1.0))
     steps = plan(structure, replace(equilibrium, tensions=ever), wanted, as_floats, prefer=prefer)
-    return tuple(steps[place] for place in sorted(_needed(structure, steps, sought.rests_on)))
+    return steps, tuple(steps[place] for place in sorted(_needed(structure, steps, sought.rests_on)))
 
 
 def _needed(structure: Structure, steps: Sequence[PlannedStep], wanted: Iterable[str]) -> set[int]:
