@@ -12,7 +12,7 @@ from dataclasses import dataclass
 from functools import cache
 from typing import Final
 
-from trusscalc.exact import ONE, Exact
+from trusscalc.exact import ONE, ZERO, Exact
 from trusscalc.exacttext import number
 from trusscalc.loads import factor_text
 from trusscalc.publishedcombinations import PublishedRow, PublishedTable
@@ -64,11 +64,15 @@ def variants_of(expression: str) -> tuple[Variant, ...]:
     [[('D', '1'), ('W', '0.45')], [('D', '1'), ('R', '0.75')]]
     """
     tokens = _TOKEN.findall(expression)
-    found = _alternatives(tokens)
-    if tokens or "".join(_TOKEN.findall(expression)) != expression.replace(" ", ""):
+    try:
+        whole = "".join(tokens) == expression.replace(" ", "")
+        found = tuple(_alternatives(tokens))
+    except IndexError:  # it ends too early
+        whole, found = False, ()
+    if tokens or not whole:
         message = f"{expression!r} cannot be read"
         raise ValueError(message)
-    return tuple(found)
+    return found
 
 
 def _alternatives(tokens: list[str]) -> list[Variant]:
@@ -175,8 +179,7 @@ def _draft(row: PublishedRow, variant: Variant, cases: Cases, own: Mapping[str, 
         factor = own.get(name, printed)
         if name in own:
             remarks[letter] = _own_remark(f"factor of {letter}", factor, printed)
-        if factor:
-            factors[letter] = factor
+        factors[letter] = factor
     return _Draft(row, factors, remarks, all(letter in cases for letter, _ in variant))
 
 
@@ -204,10 +207,10 @@ def _covers(wide: Mapping[str, Exact], narrow: Mapping[str, Exact], permanent: S
     large a factor of the same sign, the effects of one lie among those of the other. Permanent loads alone say
     nothing more than the same with larger factors: nothing is there for them to resist.
     """
-    variable = [letter for letter in narrow if letter not in permanent]
+    variable = [letter for letter in narrow if letter not in permanent and narrow[letter]]
     if not variable:
-        return all(letter in wide and narrow[letter] <= wide[letter] for letter in narrow)
-    return all(wide.get(letter) == narrow.get(letter) for letter in permanent) and all(
+        return all(narrow[letter] <= wide.get(letter, ZERO) for letter in permanent if letter in narrow)
+    return all(wide.get(letter, ZERO) == narrow.get(letter, ZERO) for letter in permanent) and all(
         letter in wide and (wide[letter] * narrow[letter]).sign() > 0 and abs(narrow[letter]) <= abs(wide[letter])
         for letter in variable
     )
@@ -219,13 +222,13 @@ def _left_out(
     """Return each row without a kept draft, the letters it lacks and a kept row that covers it."""
     left_out = []
     said = {draft.row.number for draft in kept}
-    for number in dict.fromkeys(draft.row.number for draft in drafts if draft.row.number not in said):
+    for row in dict.fromkeys(draft.row for draft in drafts if draft.row.number not in said):
         # the fullest of its variants: what covers that covers the row
-        draft = max((each for each in drafts if each.row.number == number), key=lambda each: len(each.factors))
-        there = {letter for variant in variants_of(draft.row.expression) for letter, _ in variant}
+        draft = max((each for each in drafts if each.row is row), key=lambda each: len(each.factors))
+        there = {letter for variant in variants_of(row.expression) for letter, _ in variant}
         without = [letter.symbol for letter in table.letters if letter.symbol in there - set(cases)]
         covering = next(each.row.number for each in kept if _covers(each.factors, draft.factors, permanent))
-        left_out.append(LeftOut(number, f"without {', '.join(without)} it says no more than {covering}"))
+        left_out.append(LeftOut(row.number, f"without {', '.join(without)} it says no more than {covering}"))
     return left_out
 
 

@@ -167,7 +167,7 @@ class PublishedChoice:
         found: dict[frozenset[tuple[str, tuple[Exact, ...]]], Combination] = {}
         for each in self._sums()[0]:
             for chosen in itertools.product(*each.variable):
-                parts = [part for alternative in chosen for part in alternative if part.factors != (ZERO,)]
+                parts = [part for alternative in chosen for part in alternative]
                 combination = _combination(self.published, each, parts)
                 if combination.factors:
                     found.setdefault(frozenset(combination.factors), combination)
@@ -360,18 +360,19 @@ def _near(name: object, names: Sequence[str]) -> str:
 
 
 def _combination(table: PublishedTable, each: PublishedSum, variable: Sequence[Part]) -> Combination:
-    """Return a combination with its name and its source."""
-    row, parts = each.row, [*each.permanent, *variable]
+    """Return a combination with its name and its source; a factor of 0 is told of there, and its case left out."""
+    row, everything = each.row, [*each.permanent, *variable]
+    parts = [part for part in everything if any(part.factors)]
     written = ""
     for part in parts:
         minus = part.factors[0] < ZERO
         sign = (" - " if minus else " + ") if written else ("-" if minus else "")
         written += f"{sign}{'/'.join(_shown(abs(factor)) for factor in part.factors)} {part.case}"
-    remarks = dict.fromkeys(remark for part in parts for remark in part.remarks)
+    remarks = dict.fromkeys(remark for part in everything for remark in part.remarks)
     return Combination(
         f"{row.number}: {written}",
         [(part.case, part.factors) for part in parts],
-        optional=[part.case for part in variable],
+        optional=[part.case for part in variable if part in parts],
         source="; ".join([f"{table.name}, {row.clause}, {row.number}: {row.expression} ({row.mark})", *remarks]),
     )
 
