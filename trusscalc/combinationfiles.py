@@ -19,7 +19,6 @@ from trusscalc.exacttext import number
 from trusscalc.filetext import LARGEST_FILE, capped, data_of, faulty, one_line, text_of
 from trusscalc.loads import OPTIONAL, PAIR, Combination
 from trusscalc.project import title_fault
-from trusscalc.truss import did_you_mean
 
 Factor = Exact | tuple[Exact, ...]
 
@@ -91,7 +90,7 @@ def read_combinations(path: str | os.PathLike[str]) -> tuple[Combination, ...]:
 def _of_toml(text: str, source: str) -> tuple[Combination, ...]:
     data = data_of(text, source)
     problems = [
-        f"{key}: unknown key{did_you_mean(key, ('combinations',)) or '; only [combinations.NAME] is read here'}"
+        f"{key}: unknown key; only [combinations.NAME] is read here"
         for key in data
         if key not in ("format", "combinations")
     ]
@@ -191,7 +190,7 @@ def _of_row(
         if not cell:
             continue
         factors[case] = ZERO
-        in_brackets = cell.startswith("(") and cell.endswith(")")
+        in_brackets = _in_brackets(cell)
         if in_brackets:
             optional.append(case)
         try:
@@ -201,6 +200,16 @@ def _of_row(
     if not factors:
         problems.append(f"{where}: {name[:40]!r} has no factor; write one under a case")
     return name, factors, optional
+
+
+def _in_brackets(cell: str) -> bool:
+    """Return whether one pair of brackets holds a whole cell, which ``(1 + 1)*(2)`` has not."""
+    depth = 0
+    for place, character in enumerate(cell):
+        depth += (character == "(") - (character == ")")
+        if not depth:
+            return place == len(cell) - 1 > 0
+    return False
 
 
 def _factors(text: str, delimiter: str) -> Factor:
