@@ -10,9 +10,9 @@ import argparse
 import json
 import sys
 import warnings
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any, Literal
 
 from trusscalc.errors import InputError, TrusscalcError, TrusscalcWarning
 
@@ -79,6 +79,7 @@ def _parser() -> argparse.ArgumentParser:
     recheck.add_argument("file", metavar="SHEET", help="a filed notebook (.ipynb), page (.html) or PDF")
     recheck.add_argument("--against", metavar="FILE.toml", help="for a PDF: the truss file it was written from")
     recheck.set_defaults(run=_recheck)
+    _add_loads(commands)
     for command, needed in ((check, True), (sheet, True), (recheck, False)):
         command.add_argument("--case", required=needed, help="a load case or a combination")
         command.add_argument("--members", required=needed, help="A-B,C-D or all")
@@ -105,20 +106,39 @@ def _parser() -> argparse.ArgumentParser:
     return parser
 
 
+def _add_loads(commands: Any) -> None:
+    """Add the commands for loads that move and combinations that vary."""
+    influence = commands.add_parser("influence", help="influence line of a member or reaction, and a train on it")
+    influence.add_argument("--member", required=True, help="a member such as A-B, or a reaction such as L0.y")
+    influence.add_argument("--along", required=True, help="a chain of the file, or joints such as L0,L1,L2")
+    influence.add_argument("--train", default="", help="a train of the file, or a published one by its name")
+    influence.set_defaults(run=_influence)
+    envelope = commands.add_parser("envelope", help="largest and least forces over all combinations")
+    envelope.add_argument("--members", required=True, help="A-B,C-D or all")
+    envelope.add_argument("--combinations", metavar="TABLE", help="further combinations, a TOML or CSV table")
+    envelope.set_defaults(run=_envelope)
+    for command in (influence, envelope):
+        command.add_argument("file", metavar="FILE.toml", help="the truss file")
+        command.add_argument("--json", action="store_true", help="print the whole result as JSON")
+
+
+def _names(text: str) -> list[str] | Literal["all"]:
+    return "all" if text.strip() == "all" else [name.strip() for name in text.split(",") if name.strip()]
+
+
 def _checked(arguments: argparse.Namespace) -> tuple[TrussFile, MemberCheck]:
     from trusscalc.files import read  # noqa: PLC0415
     from trusscalc.membercheck import check_members  # noqa: PLC0415
     from trusscalc.statics.owncuts import own_cut  # noqa: PLC0415
 
     stated = read(arguments.file)
-    members = arguments.members.strip()
-    names = "all" if members == "all" else [name.strip() for name in members.split(",") if name.strip()]
     cuts = {}
     for text in arguments.keep:
         member, _, joints = text.partition("=")
         kept = [name.strip() for name in joints.split(",") if name.strip()]
         cuts[member.strip()] = own_cut(stated.truss, keep=kept)
     case = stated.case(arguments.case)
+    names = _names(arguments.members)
     own_checks = arguments.command != "check"  # only a sheet shows them
     return stated, check_members(stated.truss, case, names, cuts=cuts, prefer=arguments.prefer, own_checks=own_checks)
 
@@ -127,11 +147,18 @@ def _check(arguments: argparse.Namespace) -> int:
     from trusscalc.report import check_data, verdict_lines  # noqa: PLC0415
 
     _, check = _checked(arguments)
-    if arguments.json:
-        _print(json.dumps(check_data(check), ensure_ascii=not _prints("é√"), indent=1))
-    else:
-        _print("\n".join(verdict_lines(check)))
+    _result(arguments, lambda: check_data(check), lambda: verdict_lines(check))
     return AGREED if check.agreed else DISAGREED
+
+
+def _result(
+    arguments: argparse.Namespace, data: Callable[[], dict[str, Any]], lines: Callable[[], Sequence[str]]
+) -> None:
+    """Print a result as JSON or as lines."""
+    if arguments.json:
+        _print(json.dumps(data(), ensure_ascii=not _prints("é√"), indent=1))
+    else:
+        _print("\n".join(lines()))
 
 
 def _sheet(arguments: argparse.Namespace) -> int:
@@ -169,6 +196,49 @@ def _recheck(arguments: argparse.Namespace) -> int:
         report = recheck_pdf(filed, _composed(arguments, stated, check))
     _print("\n".join(report.lines()))
     return AGREED if report.matches else DISAGREED
+
+
+def _influence(arguments: argparse.Namespace) -> int:
+    from trusscalc.files import read  # noqa: PLC0415
+    from trusscalc.influence import UndecidedError, influence_line  # noqa: PLC0415
+    from trusscalc.loadreport import influence_data, influence_text, undecided_influence_data  # noqa: PLC0415
+    from trusscalc.travel import extremes  # noqa: PLC0415
+
+    stated = read(arguments.file)
+    chain = stated.chain(arguments.along)
+    trains = stated.train(arguments.train) if arguments.train else ()
+    try:
+        line = influence_line(stated.truss, arguments.member, chain)
+    except UndecidedError as problem:
+        reason = str(problem)
+        data = undecided_influence_data(problem.name, chain.joints, reason, arguments.train)
+        _result(arguments, lambda: data, lambda: [reason])
+        return DISAGREED
+    found = extremes(line, trains) if trains else None
+    units = (stated.truss.force, stated.truss.length)
+    _result(
+        arguments,
+        lambda: influence_data(line, arguments.train, found),
+        lambda: influence_text(line, units, arguments.train, found),
+    )
+    return AGREED if line.agreed else DISAGREED
+
+
+def _envelope(arguments: argparse.Namespace) -> int:
+    from dataclasses import replace  # noqa: PLC0415
+
+    from trusscalc.combinationfiles import read_combinations  # noqa: PLC0415
+    from trusscalc.envelope import envelope  # noqa: PLC0415
+    from trusscalc.files import read  # noqa: PLC0415
+    from trusscalc.loadreport import envelope_data, envelope_text  # noqa: PLC0415
+
+    stated = read(arguments.file)
+    if arguments.combinations:
+        further = read_combinations(arguments.combinations)
+        stated = replace(stated, combinations=(*stated.combinations, *further))
+    found = envelope(stated, _names(arguments.members))
+    _result(arguments, lambda: envelope_data(found), lambda: envelope_text(found))
+    return AGREED if found.agreed else DISAGREED
 
 
 if __name__ == "__main__":
