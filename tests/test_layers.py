@@ -52,7 +52,7 @@ LAYERS = (
         "influencetargets",
         "influence",
         "travel",
-        "envelope",
+        "envelopes",
         "governing",
         "report",
         "loadreport",

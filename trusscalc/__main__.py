@@ -228,7 +228,7 @@ def _envelope(arguments: argparse.Namespace) -> int:
     from dataclasses import replace  # noqa: PLC0415
 
     from trusscalc.combinationfiles import read_combinations  # noqa: PLC0415
-    from trusscalc.envelope import envelope  # noqa: PLC0415
+    from trusscalc.envelopes import envelope  # noqa: PLC0415
     from trusscalc.files import read  # noqa: PLC0415
     from trusscalc.loadreport import envelope_data, envelope_text  # noqa: PLC0415
 

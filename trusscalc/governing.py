@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from trusscalc.chains import positions
-from trusscalc.envelope import Choice, Envelope, Progress, Sense, at_values, teller
+from trusscalc.envelopes import Choice, Envelope, Progress, Sense, at_values, teller
 from trusscalc.loads import JointLoad, LoadCase
 from trusscalc.membercheck import MemberCheck, check_members
 from trusscalc.travel import placed

@@ -6,7 +6,7 @@ import math
 from typing import Any
 
 from trusscalc.decimals import rounded
-from trusscalc.envelope import Choice, Envelope, MemberEnvelope, Sense
+from trusscalc.envelopes import Choice, Envelope, MemberEnvelope, Sense
 from trusscalc.exact import Exact
 from trusscalc.exacttext import to_text
 from trusscalc.influence import InfluenceLine

@@ -15,7 +15,7 @@ from replay import forces_of
 
 from trusscalc import stiffness
 from trusscalc.chains import Chain
-from trusscalc.envelope import Envelope, MemberEnvelope, envelope, furthest
+from trusscalc.envelopes import Envelope, MemberEnvelope, envelope, furthest
 from trusscalc.errors import InputError, UnknownNameError
 from trusscalc.exact import ZERO, Exact, rational
 from trusscalc.exacttext import number
