@@ -12,7 +12,7 @@ from typing import Any
 import pytest
 import replay
 import trade_trusses as trade
-from case_files import FOLDER, LINES, PublishedLine
+from case_files import CASES, FOLDER, LINES, PublishedLine
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 from random_trusses import trusses
@@ -85,6 +85,22 @@ def test_ordinates_are_the_printed_ones(case: PublishedLine) -> None:
             start, end, slope, height = map(parse, (piece["from"], piece["to"], piece["slope"], piece["start"]))
             for position in (start, (start + 2 * end) / 3, end):
                 assert line.at(position) * times == slope * position + height
+
+
+@pytest.mark.parametrize("name", ["hicks_deck_warren_leftward", "hicks_deck_warren_rightward"])
+def test_loads_times_ordinates_are_printed_forces(name: str) -> None:
+    """Hicks (editor), pp. 1.73-1.75, read in the source: the chord force under two axles, and every other force."""
+    case = CASES[name]
+    chain = ["T0", "T1", "T2", "T3", "T4"]
+    lines = {line.target: line for line in influence_lines(case.truss, list(case.expected), chain)}
+    assert all(not load.fx for load in case.loads.loads)
+    for target, expected in case.expected.items():
+        assert sum((lines[target].ordinate(load.joint) * -load.fy for load in case.loads.loads), start=ZERO) == expected
+    chord = sum((lines["T1-T2"].ordinate(load.joint) * -load.fy for load in case.loads.loads), start=ZERO)
+    for printed_name, printed in case.data["printed"].items():
+        member, times = case.member_of(printed_name)
+        assert member == "T1-T2"
+        assert is_printed(printed, chord * times)
 
 
 @pytest.mark.parametrize("case", LINES.values(), ids=line_id)
@@ -341,6 +357,17 @@ def test_the_shear_in_a_cantilever() -> None:
     assert texts(mirrored.ordinates) == ["-1", "-1", "-1", "0", "0", "0"]
     assert mirrored.steps == ()
     assert mirrored.agreed
+
+
+def test_the_shear_beside_a_leaning_reaction() -> None:
+    """Of a reaction along (1, 2) only the upward part counts, and only on its own side."""
+    leaning = Truss(PRATT.joints, PRATT.members, {"L0": {"reaction": (1, 2)}, "L6": "pin"})
+    line = influence_line(leaning, "V(L2-L3)", DECK)
+    assert texts(line.ordinates) == ["0", "-1/6", "-1/3", "1/2", "1/3", "1/6", "0"]
+    assert line.agreed
+    assert texts([line.found[3]["L0.r"]]) == ["sqrt(5)/4"]
+    other_side = Truss(PRATT.joints, PRATT.members, {"L0": "pin", "L6": {"reaction": (1, 2)}})
+    assert influence_line(other_side, "V(L2-L3)", DECK).ordinates == line.ordinates
 
 
 def test_a_support_inside_the_panel_is_told() -> None:
