@@ -297,6 +297,7 @@ def weighed(rule: SelfWeight, truss: Truss, problems: list[str]) -> tuple[Member
         if member.group:
             groups.setdefault(member.group, []).append(member)
         by_ends[frozenset((member.start, member.end))] = member
+    known = [*groups, *(spelled for m in truss.members for spelled in (m.name, f"{m.end}-{m.start}"))]
     taken: dict[str, str] = {}
     for name in rule.members:
         alone = by_ends.get(frozenset(part.strip() for part in name.split("-")))
@@ -304,7 +305,6 @@ def weighed(rule: SelfWeight, truss: Truss, problems: list[str]) -> tuple[Member
         if alone and found != [alone]:
             problems.append(f"members {name!r}: is a group, and a member that is not in it; rename the group")
         if not found:
-            known = [*groups, *(spelled for m in truss.members for spelled in (m.name, f"{m.end}-{m.start}"))]
             near = did_you_mean(name, known, told=len(problems))
             problems.append(f"members {name[:90]!r}: there is no such group or member{near}")
         again = [member for member in found if member.name in taken]
