@@ -249,6 +249,19 @@ class TestCases:
         ]
         assert PublishedChoice(STRENGTH, {letter: letter for letter in LETTERS}).left_out() == ()
 
+    def test_of_equal_rows_the_first_is_written(self) -> None:
+        """And the later ones are told, whether the first is as printed or not."""
+        choice = PublishedChoice(STRENGTH, {"W": "wind"})
+        assert [each.name for each in choice.expanded()] == ["4a: 1.0 wind"]
+        assert ("5a", "without D, W_T it says no more than 4a") in [
+            (each.number, each.reason) for each in choice.left_out()
+        ]
+        choice = PublishedChoice(ALLOWABLE, {"D": "dead", "L": "live"}, own={"4a L": 1})
+        assert [each.name for each in choice.expanded()] == ["1a: 1.0 dead", "2a: 1.0 dead + 1.0 live"]
+        assert ("4a", "without Lr, S, R it says no more than 2a") in [
+            (each.number, each.reason) for each in choice.left_out()
+        ]
+
     def test_a_row_as_printed_is_never_dropped(self) -> None:
         """Even where another covers it: the reader looks for it."""
         assert names(ALLOWABLE, {"D": "dead", "L": "live"}) == ["1a: 1.0 dead", "2a: 1.0 dead + 1.0 live"]
@@ -341,6 +354,18 @@ class TestActions:
         assert "6.10: 1.35/1.0 g + 1.5 left + 0.75 snow + 0.9 right" in names(
             EUROCODE, cases, psi0={"left": "0.6", "right": "0.6", "snow": "0.5"}
         )
+
+    def test_a_stated_psi0_goes_before_that_of_the_category(self) -> None:
+        """Which still says what excludes what; and the source names it as the user's."""
+        found = combinations_of(
+            EUROCODE,
+            {"Q": ["left", "right", "snow"]},
+            psi0={"left": "0.2"},
+            categories={"left": "wind", "right": "wind", "snow": "snow"},
+        )
+        assert [each.name for each in found][2:] == ["6.10: 1.5 snow + 0.3 left", "6.10: 1.5 snow + 0.9 right"]
+        assert found[2].source.endswith("; psi0 of left 0.2, the user's own")
+        assert found[3].source.endswith("; psi0 of right 0.6, Table A1.1, wind (from memory)")
 
     def test_imposed_loads_are_one_action(self) -> None:
         """They lead together, or one of two floors would be reduced (EN 1991-1-1 3.3.1, from memory)."""

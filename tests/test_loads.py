@@ -156,6 +156,7 @@ class TestCombination:
         assert (stated.optional, stated.source) == (("live",), "")
         assert Combination("x", {"dead": 1}, source="somewhere").source == "somewhere"
         assert Combination("x", stated.factors, optional=stated.optional) == stated
+        assert Combination("x", {"dead": 1, "live": 1}, optional=["live", "live"]).optional == ("live",)
 
     @pytest.mark.parametrize(
         ("factors", "optional", "message"),
