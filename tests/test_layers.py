@@ -82,11 +82,14 @@ CONFINED = {
     "matplotlib": {"render.draw"},
     "nbformat": {"render.notebook"},
     "typst": {"render.pdf"},
-    "ipywidgets": {"widgets"},
-    "anywidget": {"widgets"},
+    "ipywidgets": {"widgets.form", "widgets.screen"},
+    "anywidget": {"widgets.views"},
+    "traitlets": {"widgets.views"},
     "importlib": {"__init__", "convenience"},  # what is loaded by name is not seen here
 }
-HEAVY = {"matplotlib", "nbformat", "typst", "ipywidgets", "anywidget", "IPython"}
+HEAVY = {"matplotlib", "nbformat", "typst", "ipywidgets", "anywidget", "traitlets", "IPython"}
+SHOWN_LATE = {"widgets.form", "widgets.screen", "widgets.views"}
+"""Modules that may import what is heavy at once, because others import them only when something is shown."""
 
 Imports = list[tuple[str, str, bool]]
 """Module, name taken from it ('' for the module itself), and whether it is imported when first used."""
@@ -173,8 +176,11 @@ def faults(texts: Mapping[str, str]) -> list[str]:
             outside = imported if imported.startswith("importlib.") else imported.split(".")[0]
             if module not in CONFINED.get(outside, {module}):
                 wrong.append(f"{module} imports {outside}, which belongs to {', '.join(sorted(CONFINED[outside]))}")
-            elif outside in HEAVY and not late:
+            elif outside in HEAVY and not late and module not in SHOWN_LATE:
                 wrong.append(f"{module} imports {outside} at once; import it inside the function that needs it")
+            inner = imported.removeprefix("trusscalc.")
+            if inner in SHOWN_LATE and not late and module not in SHOWN_LATE:
+                wrong.append(f"{module} imports {inner} at once; import it inside the function that shows something")
     return wrong + _circles(graph) + _strangers(graph)
 
 
@@ -251,6 +257,11 @@ def test_planted_imports_are_reported_with_both_names() -> None:
         ("render.draw", "from trusscalc.truss import Truss"): "render.draw imports truss",
         ("truss", "def late():\n    import numpy"): "truss imports numpy",
         ("render.draw", "import matplotlib.figure"): "render.draw imports matplotlib at once",
+        (
+            "widgets.answers",
+            "from trusscalc.widgets.screen import Screen",
+        ): "widgets.answers imports widgets.screen at once",
+        ("widgets.answers", "import ipywidgets"): "widgets.answers imports ipywidgets, which belongs to",
         ("statics.bridges", "from trusscalc.statics.plan import plan"): "statics.bridges imports statics.plan",
         ("statics.plan", "from importlib import import_module"): "statics.plan imports importlib",
         ("exact", "from trusscalc.exacttext import parse"): "exact imports exacttext",

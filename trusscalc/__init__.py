@@ -28,6 +28,7 @@ if TYPE_CHECKING:
     from trusscalc.statics.owncuts import OwnCut
     from trusscalc.truss import Truss
     from trusscalc.trussfile import TrussFile
+    from trusscalc.widgets import explore
 
 __version__ = "0.1.0"
 
@@ -44,6 +45,7 @@ _HOME = {
     "TrusscalcWarning": "errors",
     "check_members": "membercheck",
     "combine": "loads",
+    "explore": "widgets",
     "read": "files",
     "reads": "files",
     "shapes": "",
@@ -63,6 +65,7 @@ __all__ = [
     "TrusscalcWarning",
     "check_members",
     "combine",
+    "explore",
     "read",
     "reads",
     "shapes",

@@ -9,7 +9,7 @@ from __future__ import annotations
 from importlib import import_module
 from typing import Any
 
-OFFERED = frozenset({"cut", "derivation", "equation", "report", "save", "sheet", "_repr_mimebundle_"})
+OFFERED = frozenset({"cut", "derivation", "equation", "explore", "report", "save", "sheet", "_repr_mimebundle_"})
 """Names that ``trusscalc.display`` may hang on a record."""
 
 

@@ -33,6 +33,7 @@ from trusscalc.statics.cuts import Cut
 from trusscalc.statics.owncuts import OwnCut, own_cut
 from trusscalc.statics.steps import Equation, Step
 from trusscalc.truss import Truss
+from trusscalc.widgets import explore
 from trusscalc.widgets.cutblocks import equation_blocks, facts, kept_and_cut, possibility_table, why_nothing
 
 WRITERS: Final[dict[str, Callable[[Sheet], str | bytes]]] = {
@@ -229,7 +230,7 @@ CONVENIENCES: Final[dict[type, dict[str, Any]]] = {
     Exact: {"_repr_mimebundle_": _number_bundle},
     Figure: {"_repr_mimebundle_": _figure_bundle},
     Cut: {"_repr_mimebundle_": _cut_bundle},
-    Truss: {"cut": own_cut, "_repr_mimebundle_": _truss_bundle},
+    Truss: {"cut": own_cut, "explore": explore, "_repr_mimebundle_": _truss_bundle},
     OwnCut: {"report": cut_report, "equation": cut_equation, "_repr_mimebundle_": _own_cut_bundle},
     CutReport: {"_repr_mimebundle_": _cut_report_bundle},
     UnstableTrussError: {"_repr_mimebundle_": _mechanism_bundle},

@@ -86,7 +86,7 @@ def result_drawing(check: MemberCheck, *, width: float = FULL_WIDTH) -> Figure:
     Tension is a single line, compression a double one, no force a thin one; each value carries its letter and
     sign. A value that finds no room is named in the caption, never dropped in silence.
     """
-    places = _places(check)
+    places = value_places(check)
     listed = [
         f"{words.bar(name)} {value_text(check.case, item, places)}"
         for name, item in check.members.items()
@@ -335,7 +335,7 @@ def _names(names: Iterable[str], most: int = 12) -> str:
     return words.listed(listed)
 
 
-def _places(check: MemberCheck) -> int:
+def value_places(check: MemberCheck) -> int:
     """Return decimal places that leave about four figures of the largest force."""
     largest = max((abs(item.decimal) for item in check.members.values() if item.decimal), default=1.0)
     return max(0, min(3, 3 - math.floor(math.log10(largest)))) if largest < 1000 else 1 if largest < 10000 else 0  # noqa: PLR2004

@@ -1,0 +1,337 @@
+"""One truss being explored: what is chosen, what that gives, and the check that goes on file.
+
+An ``Exploration`` needs no page. Set and read in code it does what the drawing and the form do; shown in a cell it
+brings them along. Every move works out everything first and then changes everything at once, so that an error or an
+interruption leaves the state before it.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable, Mapping, Sequence
+from dataclasses import replace
+from typing import Any
+
+from trusscalc.errors import InputError, UnknownNameError
+from trusscalc.exacttext import number
+from trusscalc.loads import LoadCase
+from trusscalc.membercheck import MemberCheck, check_members
+from trusscalc.render.notebook import Bundle
+from trusscalc.statics.cuts import About
+from trusscalc.statics.owncuts import OwnCut, own_cut
+from trusscalc.truss import Truss, did_you_mean
+from trusscalc.trussfile import TrussFile
+from trusscalc.widgets.answers import Answer, answer
+from trusscalc.widgets.choices import Choices, typed_centre
+from trusscalc.widgets.crossings import Point
+from trusscalc.widgets.frozen import Present, frozen_bundle
+
+Kept = tuple[tuple[str, tuple[str, ...]], ...]
+
+
+class Exploration:
+    """A truss with its load cases, a cut being tried, and the check made of what was kept.
+
+    Parameters
+    ----------
+    stated : TrussFile
+        Truss, cases and combinations.
+    case : str
+        The case or combination to begin with.
+    members : iterable of str
+        Members to be checked.
+    cuts : mapping of str to OwnCut, optional
+        For some members the cut to derive them from.
+
+    Raises
+    ------
+    UnstableTrussError
+        When the truss cannot resist every load.
+    UnknownNameError
+        For a case or a member that is not there.
+
+    Examples
+    --------
+    >>> truss = Truss({"A": (0, 0), "B": (4, 0), "C": (2, 1)}, ["A-B", "A-C", "B-C"], {"A": "pin", "B": "roller"})
+    >>> trial = Exploration(TrussFile(truss, (LoadCase("dead", {"C": (0, -2)}),)), case="dead")
+    >>> trial.cut = ["A"]
+    >>> trial.keep("A-C")
+    >>> trial.members, trial.check.members["A-C"].exact
+    (('A-C',), Exact('-sqrt(5)'))
+    """
+
+    def __init__(
+        self,
+        stated: TrussFile,
+        *,
+        case: str,
+        members: Iterable[str] = (),
+        cuts: Mapping[str, OwnCut] | None = None,
+    ) -> None:
+        self.stated = stated
+        self.watchers: list[Callable[[], None]] = []
+        self._screen: Any = None
+        self._checks: dict[tuple[str, tuple[str, ...], Kept], MemberCheck] = {}
+        own = tuple((self.truss.member(name).name, cut.kept) for name, cut in (cuts or {}).items())
+        self._take(replace(Choices(case), cuts=own).checking(self.truss, members))
+
+    # --- what is there ------------------------------------------------------------------------------------
+
+    @property
+    def truss(self) -> Truss:
+        """The truss."""
+        return self.stated.truss
+
+    @property
+    def choices(self) -> Choices:
+        """Everything chosen, as one record; set, everything is worked out anew."""
+        return self._present.choices
+
+    @choices.setter
+    def choices(self, choices: Choices) -> None:
+        self._take(choices)
+        for watcher in self.watchers:
+            watcher()
+
+    @property
+    def present(self) -> Present:
+        """What was chosen and what it gives, as one record."""
+        return self._present
+
+    @property
+    def answer(self) -> Answer | None:
+        """What the present cut gives, None without one."""
+        return self._present.answer
+
+    @property
+    def check(self) -> MemberCheck | None:
+        """The check of the members chosen, those with a kept cut derived from it; None while there are none."""
+        return self._present.check
+
+    @property
+    def cuts(self) -> dict[str, OwnCut]:
+        """The cuts kept, by the member each derives: what ``check_members(..., cuts=...)`` takes."""
+        return self.choices.own_cuts(self.truss)
+
+    @property
+    def names(self) -> tuple[str, ...]:
+        """The load cases and combinations that can be chosen."""
+        return names_of(self.stated)
+
+    # --- what can be set ----------------------------------------------------------------------------------
+
+    @property
+    def case(self) -> str:
+        """The load case or combination, by its name."""
+        return self.choices.case
+
+    @case.setter
+    def case(self, name: str) -> None:
+        self.choices = self.choices.with_case(name)
+
+    @property
+    def members(self) -> tuple[str, ...]:
+        """The members to be checked."""
+        return self.choices.members
+
+    @members.setter
+    def members(self, names: Iterable[str]) -> None:
+        asked = self.choices.checking(self.truss, names)
+        gone = [name for name, _ in self.choices.cuts if name not in self._named(names)]
+        self.choices = asked.without(gone)
+
+    @property
+    def cut(self) -> OwnCut | None:
+        """The cut being tried; set as a cut, as the joints to keep, or None for none."""
+        return own_cut(self.truss, keep=self.choices.kept) if self.choices.kept else None
+
+    @cut.setter
+    def cut(self, cut: OwnCut | Iterable[str] | None) -> None:
+        joints = cut.kept if isinstance(cut, OwnCut) else (cut,) if isinstance(cut, str) else tuple(cut or ())
+        self.choices = self.choices.keeping(self.truss, joints)
+
+    @property
+    def section(self) -> tuple[Point, ...]:
+        """The section line as drawn; set as points, as (x, y) or as text such as ``("27/5", "-1")``."""
+        return self.choices.line
+
+    @section.setter
+    def section(self, points: Sequence[Sequence[object]]) -> None:
+        self.draw(points)
+
+    @property
+    def about(self) -> About | None:
+        """The equation chosen, None where it is left to the tool."""
+        return self.choices.about
+
+    @about.setter
+    def about(self, about: About | None) -> None:
+        self.choices = self.choices.with_about(about)
+
+    @property
+    def centre(self) -> str | Point | None:
+        """The moment centre chosen: a joint, or a point; None for none."""
+        about = self.choices.about
+        if about is None or about.sum == "force":
+            return None
+        return about.joint or (about.x, about.y)
+
+    @centre.setter
+    def centre(self, centre: str | Sequence[object] | None) -> None:
+        if centre is None or isinstance(centre, str):
+            self.about = typed_centre(self.truss, centre or "")
+        else:
+            self.about = About("moment", *_point(centre))
+
+    @property
+    def direction(self) -> Point | None:
+        """The direction forces are summed along, None for none."""
+        about = self.choices.about
+        return (about.x, about.y) if about is not None and about.sum == "force" else None
+
+    @direction.setter
+    def direction(self, direction: Sequence[object] | None) -> None:
+        about = None if direction is None else About("force", *_point(direction))
+        if about is not None and not about.x and not about.y:
+            message = "forces cannot be summed along (0, 0); give a direction such as (0, 1)"
+            raise InputError(message)
+        self.about = about
+
+    @property
+    def detail(self) -> str:
+        """How much of the check is shown: ``summary``, ``members`` or ``all``."""
+        return self.choices.detail
+
+    @detail.setter
+    def detail(self, detail: str) -> None:
+        self.choices = self.choices.with_detail(detail)
+
+    # --- moves --------------------------------------------------------------------------------------------
+
+    def draw(self, points: Sequence[Sequence[object]], *, closed: bool = False) -> None:
+        """Draw a section line; what it crosses is decided exactly.
+
+        Parameters
+        ----------
+        points : sequence of (x, y)
+            In the truss's unit of length; numbers as in ``Truss``.
+        closed : bool
+            Whether the last point is joined to the first.
+
+        Raises
+        ------
+        InputError, InexactNumberError
+            For points that are none, or too few or too many.
+        """
+        line = [_point(point) for point in points]
+        self.choices = self.choices.drawn(self.truss, line, closed=closed) if line else self.choices.cleared()
+
+    def other_side(self) -> None:
+        """Keep the other part (InputError when there is none)."""
+        self.choices = self.choices.other_side(self.truss)
+
+    def take_nearest(self) -> None:
+        """Take the nearest cut that gives something (InputError when none was named)."""
+        nearest = self.answer.nearest if self.answer else ()
+        if not nearest:
+            message = "no nearer cut was named: the present one gives something, or there is none"
+            raise InputError(message)
+        self.cut = nearest
+
+    def clear(self) -> None:
+        """Give up the cut being tried; cuts kept stay."""
+        self.choices = self.choices.cleared()
+
+    def keep(self, *members: str) -> None:
+        """Keep the present cut: derive members from it in the check.
+
+        Parameters
+        ----------
+        *members : str
+            Members cut; without any, those the present cut has just given.
+
+        Raises
+        ------
+        InputError
+            When there is no cut, or it gives nothing.
+        NoCutError
+            When it cannot give a member named.
+        """
+        if self.answer is None:
+            message = "there is no cut to keep; draw one, or set .cut"
+            raise InputError(message)
+        found = [name for name in self.answer.solved if name in self.answer.members]
+        names = [self.truss.member(name).name for name in members] or found
+        if not names:
+            message = f"this cut gives no member force to keep: {self.answer.reason or 'it gives reactions only'}"
+            raise InputError(message)
+        self.choices = self.choices.keeping_cut(names)
+
+    def forget(self, *members: str) -> None:
+        """Take members, and the cuts kept for them, out of the check; without names, all of them."""
+        names = [self.truss.member(name).name for name in members] or list(self.members)
+        self.choices = self.choices.without(names)
+
+    # --- on file ------------------------------------------------------------------------------------------
+
+    def frozen(self) -> Bundle:
+        """Return what stays on file: figure, equations and verdicts of now, as a notebook shows them."""
+        return frozen_bundle(self.present)
+
+    def _ipython_display_(self) -> None:
+        """Show the drawing and the form, and beside them the static form, which follows them."""
+        if self._screen is None:
+            from trusscalc.widgets.screen import Screen  # noqa: PLC0415 - what it brings along is slow to import
+
+            self._screen = Screen(self)
+        self._screen.display()
+
+    # --- worked out ---------------------------------------------------------------------------------------
+
+    def _take(self, choices: Choices) -> None:
+        """Work out what choices give, then change everything at once."""
+        case = self._loads(choices.case)
+        check = self._checked(case, choices.members, choices.cuts)
+        found = None
+        if choices.kept:
+            inside = set(choices.kept)
+            others = tuple(entry for entry in choices.cuts if set(entry[1]) not in (inside, self._rest(inside)))
+            earlier = self._checked(case, (), others)
+            found = answer(own_cut(self.truss, keep=choices.kept), case, choices.about, earlier=earlier)
+        elif check is None:
+            check_members(self.truss, case, [self.truss.members[0].name], own_checks=False)  # stable, loads fit
+        self._present = Present(self.truss, case, choices, found, check)
+
+    def _loads(self, name: str) -> LoadCase:
+        if name not in self.names:
+            message = f"there is no case or combination {name!r}{did_you_mean(name, self.names)}"
+            raise UnknownNameError(message, name=name)
+        return self.stated.case(name)
+
+    def _checked(self, case: LoadCase, members: tuple[str, ...], cuts: Kept) -> MemberCheck | None:
+        """Return the check of members and kept cuts, worked out once for each; None for nothing to check."""
+        if not members and not cuts:
+            return None
+        key = (case.name, members, cuts)
+        if key not in self._checks:
+            own = {name: own_cut(self.truss, keep=kept) for name, kept in cuts}
+            self._checks[key] = check_members(self.truss, case, members, cuts=own)
+        return self._checks[key]
+
+    def _rest(self, joints: set[str]) -> set[str]:
+        return {joint.name for joint in self.truss.joints} - joints
+
+    def _named(self, members: Iterable[str]) -> set[str]:
+        return {self.truss.member(name).name for name in members}
+
+
+def names_of(stated: TrussFile) -> tuple[str, ...]:
+    """Return the cases and combinations of a truss file that are one load case each."""
+    single = [each.name for each in stated.combinations if all(len(factors) == 1 for _, factors in each.factors)]
+    return (*(case.name for case in stated.cases), *single)
+
+
+def _point(values: Sequence[object]) -> Point:
+    if isinstance(values, str) or len(values) != 2:  # noqa: PLR2004 - the plane
+        message = f"{values!r}: two numbers are needed, such as (8, 0)"
+        raise InputError(message)
+    return number(values[0]), number(values[1])
