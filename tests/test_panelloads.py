@@ -779,3 +779,15 @@ def test_remarks() -> None:
     assert BENDING in HALVED
     both = spread(read({"line": 2, "along": "deck", "beside": {"offset": 1, "spacing": 4}}), BRIDGE, [DECK]).note
     assert both.startswith(f"{SHARED} Lever rule: ")
+
+
+def test_wind_on_a_leg_that_stands_upright() -> None:
+    """Measured along the slope, a chain may rise; measured on plan, or travelled by a train, it may not."""
+    tower = Truss({"A": (0, 0), "B": (3, 0), "C": (0, 4)}, ["A-B", "A-C", "B-C"], {"A": "pin", "B": "roller"})
+    wind = LineLoad("wind", "A,C", number(2), number(2), per="slope", direction="right")
+    assert [(load.joint, load.fx, load.fy) for load in spread(wind, tower).loads] == [("A", 4, 0), ("C", 4, 0)]
+    pressed = LineLoad("wind", "A,C", number(2), number(2), direction="normal")
+    assert [(load.fx, load.fy) for load in spread(pressed, tower).loads] == [(4, 0), (4, 0)]
+    faults = rule_faults(LineLoad("snow", "A,C", number(2), number(2)), tower)
+    assert len(faults) == 1
+    assert "A and C stand one above the other" in faults[0]

@@ -35,7 +35,13 @@ class Chain:
     joints: tuple[str, ...]
 
 
-def chain_of(truss: Truss, name_or_joints: str | Sequence[str] | Chain, chains: Sequence[Chain] = ()) -> Chain:
+def chain_of(
+    truss: Truss,
+    name_or_joints: str | Sequence[str] | Chain,
+    chains: Sequence[Chain] = (),
+    *,
+    may_rise: bool = False,
+) -> Chain:
     """Return a chain that is proven to fit the truss.
 
     Parameters
@@ -46,6 +52,8 @@ def chain_of(truss: Truss, name_or_joints: str | Sequence[str] | Chain, chains: 
         A name among ``chains``, a list such as ``"L0,L1,L2"`` or ``["L0", "L1", "L2"]``, or a chain itself.
     chains : sequence of Chain
         The chains that have names.
+    may_rise : bool
+        As in ``chain_faults``.
 
     Raises
     ------
@@ -59,7 +67,7 @@ def chain_of(truss: Truss, name_or_joints: str | Sequence[str] | Chain, chains: 
     Chain(name='A to B', joints=('A', 'C', 'B'))
     """
     chain = _found(name_or_joints, chains)
-    problems = chain_faults(truss, chain)
+    problems = chain_faults(truss, chain, may_rise=may_rise)
     if problems:
         raise InputError(problems)
     return chain
@@ -84,11 +92,12 @@ def _listed_name(joints: Sequence[str]) -> str:
     return f"{str(joints[0])[:LONGEST_NAME]} to {str(joints[-1])[:LONGEST_NAME]}" if joints else ""
 
 
-def chain_faults(truss: Truss, chain: Chain) -> list[str]:
+def chain_faults(truss: Truss, chain: Chain, *, may_rise: bool = False) -> list[str]:
     """Return what is wrong with a chain, each fault with what, where and what to do; [] when it fits.
 
     It needs two joints of the truss or more, none of them twice, each joined to the next by a member, and going
-    on to the left or going on to the right from joint to joint, at the stated values of any symbols.
+    on to the left or going on to the right from joint to joint, at the stated values of any symbols. A chain that
+    ``may_rise`` need not go on horizontally: wind on the leg of a tower is measured along its slope.
     """
     where = f"chain {chain.name}" if chain.name == _listed_name(chain.joints) else f"[chains.{chain.name}] joints"
     if any(not isinstance(name, str) for name in chain.joints):
@@ -103,7 +112,8 @@ def chain_faults(truss: Truss, chain: Chain) -> list[str]:
             problems.append(f"{where}: there is no joint {name[: 2 * LONGEST_NAME]!r}{near}")
     problems += [f"{where}: {name} stands in it twice; a chain meets a joint once" for name in _twice(chain.joints)]
     known = [(a, b) for a, b in pairwise(chain.joints) if a in places and b in places and a != b]
-    return problems + _gaps(truss, known, where) + _turns(places, known, where)
+    problems += _gaps(truss, known, where)
+    return problems if may_rise else problems + _turns(places, known, where)
 
 
 def _twice(names: Iterable[str]) -> list[str]:

@@ -165,7 +165,8 @@ def _shares(
     if isinstance(rule, SelfWeight):
         members = weighed(rule, truss, problems)
         return None if problems else of_weight(rule, truss, members, carried)
-    path = path_of(truss, chain_of(truss, rule.along, chains), rule.per)
+    chain = chain_of(truss, rule.along, chains, may_rise=rule.per == "slope")
+    path = path_of(truss, chain, rule.per)
     problems += place_faults(rule, path)
     if problems:
         return None

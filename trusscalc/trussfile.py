@@ -81,6 +81,7 @@ class TrussFile:
         problems += moving_faults(still, self.chains, self.trains, self.moving)
         problems += [f"[trains] {name}: stated twice; rename one" for name in twice(each.name for each in self.trains)]
         problems += path_faults(self.truss, self.chains, self.panel_loads)
+        problems += [fault for load in self.moving for fault in chain_faults(self.truss, load.along)]
         combinations = self.combinations
         if self.published is not None:
             try:
@@ -182,7 +183,7 @@ def case_names(cases: Iterable[LoadCase], panel_loads: Iterable[Rule], moving: I
 
 def path_faults(truss: Truss, chains: Sequence[Chain], panel_loads: Sequence[Rule]) -> list[str]:
     """Return chains that do not fit the truss, chains named twice, panel loads that do not fit truss or chain."""
-    problems = [fault for chain in chains for fault in chain_faults(truss, chain)]
+    problems = [fault for chain in chains for fault in chain_faults(truss, chain, may_rise=True)]
     problems += [f"[chains] {name}: stated twice; rename one" for name in twice(chain.name for chain in chains)]
     if problems or not panel_loads:
         return problems
