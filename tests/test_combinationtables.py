@@ -476,7 +476,7 @@ class TestFaults:
             (
                 STRENGTH,
                 {"cases": {letter: [f"{letter}{n}" for n in range(14)] for letter in ("S", "W", "Ev", "Eh")}},
-                "cases: these give 3,332 combinations, and at most 2,000 are written; assign fewer",
+                "cases: these give 3,332 combinations, and at most 1,000 are written; assign fewer",
             ),
             (STRENGTH, {"psi0": {"dead": 1}}, f"psi0: has no place in {STRENGTH}; remove it"),
             (STRENGTH, {"categories": {"dead": "A"}}, f"categories: has no place in {STRENGTH}; remove it"),
@@ -503,7 +503,7 @@ class TestFaults:
             (EUROCODE, {"own": {"gamma_Q": None}}, "own gamma_Q: None is not a number"),
             (STRENGTH, {"own": {"4a Lx": 1}}, f"own 4a Lx: is no factor of {STRENGTH}; did you mean 4a L"),
             (STRENGTH, {"own": {"wind": 1}}, f"own wind: is no factor of {STRENGTH}; there are 1a D, 2a D, 2a L"),
-            (EUROCODE, {"cases": {"Q": "q"}, "own": {"gamma_Q": 0}}, "own: leaves no combination with a factor"),
+            (EUROCODE, {"cases": {"Q": "q"}, "own": {"gamma_Q": 0}}, "own: leaves no factor other than 0"),
         ],
     )
     def test_each_is_named(self, table: Any, besides: dict[str, Any], message: str) -> None:

@@ -28,7 +28,7 @@ from trusscalc.truss import did_you_mean
 __all__ = ["TABLES", "PublishedChoice", "PublishedTable", "choice_of", "combinations_of", "stated"]
 
 MOST_CASES: Final = 100
-MOST_SUMS: Final = 2_000
+MOST_SUMS: Final = 1_000
 """Of one table; an engineer can use neither more cases nor more combinations."""
 WHERE: Final = "[published_combinations]"
 _EXAMPLES: Final = {
@@ -207,10 +207,14 @@ class PublishedChoice:
                 names = ", ".join(category.name for category in self.published.categories)
                 remedy = f"state it, or under 'categories' one of {names}"
                 return [f"psi0 {case}: is needed; {remedy}" for case in missing]
-        count = sum(math.prod(map(len, each.variable)) for each in self._sums()[0])
+        sums = self._sums()[0]
+        count = sum(math.prod(map(len, each.variable)) for each in sums)
         if count > MOST_SUMS:
             return [f"cases: these give {count:,} combinations, and at most {MOST_SUMS:,} are written; assign fewer"]
-        return [] if self.expanded() else ["own: leaves no combination with a factor other than 0"]
+        acting = (
+            part for each in sums for group in ((each.permanent,), *each.variable) for parts in group for part in parts
+        )
+        return [] if any(any(part.factors) for part in acting) else ["own: leaves no factor other than 0"]
 
 
 def combinations_of(

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections import Counter
 from collections.abc import Collection, Iterable, Mapping, Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 from typing import Any, Final
 
 from trusscalc.decimals import rounded
@@ -212,6 +213,7 @@ def twice(names: Iterable[str]) -> list[str]:
     return [name for name, times in Counter(names).items() if times > 1]
 
 
+@lru_cache(maxsize=1000)
 def factor_text(factor: Exact) -> str:
     """Return a factor as engineers write it: a decimal where one of few places is exact, else exact text.
 
