@@ -249,9 +249,7 @@ def columns_of(columns: Mapping[str, str | int] | str | None) -> dict[str, str |
     problems = []
     if isinstance(columns, str):
         pairs = [part.partition("=") for part in columns.split(",") if part.strip()]
-        problems = [
-            f"columns: {name.strip()[:40]!r} is not of the form role=column" for name, sign, _ in pairs if not sign
-        ]
+        problems = [f"columns: {name.strip()[:40]!r} is not role=column" for name, sign, _ in pairs if not sign]
         columns = {name.strip(): column.strip() for name, _, column in pairs}
     found: dict[str, str | int] = {}
     for role, column in (columns or {}).items():

@@ -15,6 +15,7 @@ from trusscalc.submitted.heads import (
     Head,
     Unit,
     convention_in,
+    has_number,
     head_by_cases,
     head_of,
     is_units,
@@ -27,6 +28,8 @@ from trusscalc.truss import did_you_mean
 
 ROWS_BEFORE_HEAD: Final = 100
 """A head is looked for in so many rows."""
+ROWS_TO_A_NUMBER: Final = 4
+"""Between a head and its first number may stand units or a line."""
 MOST_TITLES: Final = 8
 _SEPARATOR_LINE: Final = re.compile(r"sep=(.)")
 
@@ -108,16 +111,16 @@ def _cut(source: Source, named: Named, notes: list[str]) -> list[Row]:
     if stated and stated[1] in DELIMITERS:
         notes.append(f"row 1 states the delimiter and is no row: {stated[0]!r}")
         return [row for row in split(source, stated[1]) if row.number > 1]
-    best, most = ",", 0
+    best, most = ",", (False, 0)
     for delimiter in DELIMITERS:
         try:
             rows = split(source, delimiter, ROWS_BEFORE_HEAD)
         except FileFormatError:
             continue  # quotation marks that do not fit: another delimiter, or told when the whole text is cut
-        understood = max((_understood(row, following, named) for row, following in _with_next(rows)), default=0)
+        understood = max((_understood(rows, place, named) for place in range(len(rows))), default=most)
         if understood > most:
             best, most = delimiter, understood
-    if most:
+    if most[1]:
         notes.append(f"cells are parted by {DELIMITERS[best]}")
     return split(source, best)
 
@@ -126,13 +129,16 @@ def _with_next(rows: Sequence[Row]) -> list[tuple[Row, Row]]:
     return list(zip(rows, [*rows[1:], *rows[-1:]], strict=True))
 
 
-def _understood(row: Row, following: Row, named: Named) -> int:
-    """Return how many columns of a row are understood as a head, 0 when it is none."""
-    found = head_of(row, named)
+def _understood(rows: Sequence[Row], place: int, named: Named) -> tuple[bool, int]:
+    """Return whether a row is a head with numbers below, and how many of its columns are understood."""
+    found = head_of(rows[place], named)
     if isinstance(found, list):
-        return 1
-    head = found or head_by_cases(row, following, named)
-    return len(head.columns) + len(head.cases) if head else 0
+        return False, 1
+    following = rows[place + 1 : place + 1 + ROWS_TO_A_NUMBER]
+    head = found or (head_by_cases(rows[place], following[0], named) if following else None)
+    if head is None:
+        return False, 0
+    return any(has_number(row, head) for row in following), len(head.columns) + len(head.cases)
 
 
 # --- heads and rows ---------------------------------------------------------------------------------------
@@ -169,20 +175,16 @@ class _Parting:
     def _read(self, rows: Sequence[Row]) -> None:
         head: Head | None = None
         below: list[Row] = []
+        by_place = any(isinstance(name, int) for name in self.named.values())
         for place, row in enumerate(rows):
-            by_place = any(isinstance(name, int) for name in self.named.values()) and head is None
-            found = head_of(row, self.named) if by_place or self._may_be_head(row) else None
+            may_be = self._may_be_head(row) or (by_place and head is None)
+            found = head_of(row, self.named) if may_be else None
             if isinstance(found, list):
                 self.problems += found
             elif found and head and found.texts == head.texts:
                 self.repeated.append(row.number)
             elif found:
-                if head:
-                    while below and _is_line(below[-1]):
-                        self._titles([below.pop()])
-                    self._begin(head, below)
-                else:
-                    self._titles(rows[:place])
+                self._end(head, below, rows[:place])
                 head, below = found, []
             elif head:
                 below.append(row)
@@ -190,6 +192,19 @@ class _Parting:
                 return
         if head:
             self._begin(head, below)
+
+    def _end(self, head: Head | None, below: list[Row], above: Sequence[Row]) -> None:
+        """Close a block where another head begins: lines of text between them are titles of what follows."""
+        if head and below:
+            while below and _is_line(below[-1]):
+                self._titles([below.pop()])
+            self._begin(head, below)
+        elif not self.blocks:  # what has looked like a head so far was a title
+            self.title_rows.clear()
+            self.titles.clear()
+            self._titles(above)
+        elif head:
+            self._titles([Row(head.row, head.texts)])
 
     def _may_be_head(self, row: Row) -> bool:
         return looks_like_head(row.cells) or any(name in row.cells for name in self.named.values())

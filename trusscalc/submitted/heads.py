@@ -55,7 +55,7 @@ _SIGNS: Final = (
     re.compile(r"\b([tc]) ?(\+)|(\+) ?([tc])\b"),
 )
 _TITLE_UNIT: Final = re.compile(
-    r"\bforces?\b[^.;]*?\bin\s+([A-Za-z]+)|\bunits?\b\s*(?:of force)?\s*[:=]?\s*([A-Za-z, ]+)"
+    r"\bforces?\b[^.;]*?\bin\s+([A-Za-z]+)|\bunits?\b\s*(?:of force)?\s*[:=]?\s*([A-Za-z, ]+)", re.IGNORECASE
 )
 
 
@@ -218,6 +218,12 @@ def _stray_unit(text: str) -> str:
     found = re.search(r"\[([^\[\]]*)\]", text)
     inside = found[1].strip() if found else ""
     return "" if not inside or inside == "-" or convention_in([inside]) else inside
+
+
+def has_number(row: Row, head: Head) -> bool:
+    """Return whether a row holds a number in a column that is to hold one."""
+    places = [head.columns[role] for role in (*FORCES, *DISPLACEMENTS) if role in head.columns] + [*head.cases]
+    return any(_is_number(row.cells[place]) for place in places if place < len(row.cells))
 
 
 def _is_number(cell: Cell) -> bool:

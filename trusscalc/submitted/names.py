@@ -16,11 +16,12 @@ from typing import Final
 from trusscalc.errors import FileFormatError, InputError
 from trusscalc.submitted.numbers import TYPOGRAPHY, Amount
 from trusscalc.submitted.tables import DELIMITERS, Cell, opened, split
-from trusscalc.truss import Truss, did_you_mean
+from trusscalc.truss import LONGEST_NAME, Truss, did_you_mean
 
 Names = Mapping[str, str] | str | os.PathLike[str]
 
 ENDS: Final = 2
+LONGEST_MEMBER: Final = 2 * LONGEST_NAME + 10
 SEPARATORS: Final = (re.compile(r"\s*-\s*"), re.compile(r"\s+to\s+", re.IGNORECASE), re.compile(r"\s*[/|>:]\s*"))
 _BLANKS: Final = re.compile(r"\s+")
 _DATE: Final = re.compile(
@@ -113,12 +114,15 @@ class NameMatch:
         if found:
             return found
         plain = _plain(text)
+        if len(plain) > LONGEST_MEMBER:
+            return None
         candidates = {
             name
             for start, end in _ends(plain)
             if (name := self._members.get(frozenset((self._joints.find(start) or "", self._joints.find(end) or ""))))
         }
-        if not candidates and not self._joint_of_theirs:
+        # 12 is a member's number, not the member 1-2
+        if not candidates and not self._joint_of_theirs and not plain.isdigit():
             candidates = self._run_together.get(plain.casefold(), set())
         return candidates.pop() if len(candidates) == 1 else None
 
@@ -142,16 +146,15 @@ class _Finder:
     """Finds a name by its plain spelling, and regardless of capitals where that leaves one."""
 
     def __init__(self, own: Iterable[tuple[str, str]], theirs: Mapping[str, str]) -> None:
-        self._exact = {_plain(spelling): name for spelling, name in own} | dict(theirs)
+        self._exact: dict[str, set[str]] = {}
         self._folded: dict[str, set[str]] = {}
-        for spelling, name in self._exact.items():
-            self._folded.setdefault(spelling.casefold(), set()).add(name)
+        for spelling, name in [*own, *theirs.items()]:
+            self._exact.setdefault(_plain(spelling), set()).add(name)
+            self._folded.setdefault(_plain(spelling).casefold(), set()).add(name)
 
     def find(self, text: str) -> str | None:
         plain = _plain(text)
-        if plain in self._exact:
-            return self._exact[plain]
-        names = self._folded.get(plain.casefold(), set())
+        names = self._exact.get(plain) or self._folded.get(plain.casefold(), set())
         return next(iter(names)) if len(names) == 1 else None
 
 
@@ -163,7 +166,7 @@ def text_of(cell: Cell) -> str:
 
 
 def _plain(text: str) -> str:
-    return _BLANKS.sub(" ", text.translate(TYPOGRAPHY)).strip()
+    return _BLANKS.sub(" ", text.translate(TYPOGRAPHY)).strip().replace("->", "-")
 
 
 def _both_orders(name: str) -> tuple[str, str]:

@@ -207,9 +207,8 @@ def once_each(values: Sequence[Value]) -> tuple[list[Value], list[str], list[str
             again.append(raw.row)
         else:
             of_case = f" in case {raw.case[:40]!r}" if raw.case else ""
-            problems.append(
-                f"{raw.where}: {raw.what}{of_case} is stated again, with another value than in row {before.raw.row}"
-            )
+            told = f"{raw.what}{of_case} is stated again, with another value than in row {before.raw.row}; keep one"
+            problems.append(f"{raw.where}: {told}")
     notes = [f"{numbered(again)} states a value again, the same; taken once"] if again else []
     return list(first.values()), notes, problems
 
