@@ -6,14 +6,14 @@ is measured by the chain's positions: horizontal distances from its first joint.
 
 from __future__ import annotations
 
-from collections import Counter
-from collections.abc import Collection, Iterable, Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import pairwise
 from typing import Final
 
 from trusscalc.errors import InputError
 from trusscalc.exact import Exact
+from trusscalc.loads import twice
 from trusscalc.truss import LONGEST_NAME, Truss, did_you_mean
 
 FEWEST_JOINTS: Final = 2
@@ -110,14 +110,10 @@ def chain_faults(truss: Truss, chain: Chain, *, may_rise: bool = False) -> list[
         if name not in places:
             near = did_you_mean(name, places, told=len(problems))
             problems.append(f"{where}: there is no joint {name[: 2 * LONGEST_NAME]!r}{near}")
-    problems += [f"{where}: {name} stands in it twice; a chain meets a joint once" for name in _twice(chain.joints)]
+    problems += [f"{where}: {name} stands in it twice; a chain meets a joint once" for name in twice(chain.joints)]
     known = [(a, b) for a, b in pairwise(chain.joints) if a in places and b in places and a != b]
     problems += _gaps(truss, known, where)
     return problems if may_rise else problems + _turns(places, known, where)
-
-
-def _twice(names: Iterable[str]) -> list[str]:
-    return [name for name, times in Counter(names).items() if times > 1]
 
 
 def _gaps(truss: Truss, pieces: Collection[tuple[str, str]], where: str) -> list[str]:

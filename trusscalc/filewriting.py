@@ -6,6 +6,7 @@ import json
 import re
 from typing import Any, Final
 
+from trusscalc.errors import InputError
 from trusscalc.exact import Exact
 from trusscalc.exacttext import to_text
 from trusscalc.loads import OPTIONAL, Combination
@@ -25,7 +26,17 @@ _BARE_KEY: Final = re.compile(r"[A-Za-z0-9_-]+")
 
 
 def text_of_stated(truss_file: TrussFile) -> str:
-    """Return the text; members without a group are written as one group, ``members``."""
+    """Return the text; members without a group are written as one group, ``members``.
+
+    Raises
+    ------
+    InputError
+        For combinations that come from a published table one by one: the file states the table itself.
+    """
+    sourced = [each for each in truss_file.combinations if each.source]
+    if sourced:
+        message = f"combination {sourced[0].name!r} is from {sourced[0].source}: give the table as `published`"
+        raise InputError(message)
     text = "\n".join(_section(name, entries) for name, entries in sections(truss_file) if _is_written(name, entries))
     return ROUNDED_NOTE + text if ROUNDED_MARK in text else text
 
