@@ -134,7 +134,7 @@ class TestChoices:
         """Zero is no sense."""
         both = (Combination("down", {"dead": 1}), Combination("up", {"wind": 1}))
         assert of(stated(*both), "A-B").reversal
-        assert of(stated(*both), "A-B").senses == ("max", "min")
+        assert of(stated(*both), "A-B").senses == ("min", "max")
         assert not of(stated(both[0]), "A-B").reversal
         assert of(stated(both[0]), "A-C").senses == ("min",)
 

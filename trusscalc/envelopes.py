@@ -9,69 +9,61 @@ like any other, and the ordinary hand check is written for it.
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field, replace
 from typing import Literal
 
 from trusscalc import stiffness
 from trusscalc.convenience import Convenient
 from trusscalc.errors import InputError
-from trusscalc.exact import ZERO, Exact
+from trusscalc.exact import ONE, ZERO, Exact
 from trusscalc.influence import InfluenceLine, influence_lines
 from trusscalc.loads import Combination, JointLoad, LoadCase
 from trusscalc.membercheck import members_named
+from trusscalc.roots import sqrt
 from trusscalc.statics import matrix
+from trusscalc.superposition import Choice, Effect, MemberEnvelope, Sense, extremes_over, furthest
 from trusscalc.trains import MovingLoad
 from trusscalc.travel import Extreme, extremes
-from trusscalc.truss import Truss
+from trusscalc.truss import Link, Truss
 from trusscalc.trussfile import TrussFile
 from trusscalc.verdicts import largest_confirmed, tolerance_at, undecided_reason
 
-Sense = Literal["max", "min"]
+__all__ = [
+    "CaseForces",
+    "Choice",
+    "Envelope",
+    "MemberEnvelope",
+    "MovingForces",
+    "Progress",
+    "Sense",
+    "at_values",
+    "envelope",
+    "furthest",
+    "teller",
+]
+
 Progress = Callable[[int, int, str], None]
 """Told what has been done, of how much, and what comes next; may raise to stop, nothing is left half done."""
-
-NEARLY = 1e-9
-"""Share of the larger value within which two values are compared exactly instead of as floats."""
-
-
-@dataclass(frozen=True, slots=True)
-class Choice:
-    """One state of one combination: what it adds up to for one member.
-
-    Attributes
-    ----------
-    combination : str
-        Its name.
-    factors : tuple of (str, Exact)
-        The cases as taken: the adverse factor of each pair; cases that stay away are missing.
-    stands : tuple of (str, Exact, Extreme)
-        For each moving load that acts: its factor, and where its train stands.
-    value : Exact
-        The member's force, tension positive.
-    """
-
-    combination: str
-    factors: tuple[tuple[str, Exact], ...]
-    stands: tuple[tuple[str, Exact, Extreme], ...]
-    value: Exact
 
 
 @dataclass(frozen=True, slots=True)
 class CaseForces:
-    """The members' forces under a load case that stands still, by both routes.
+    """Forces under a load case that stands still, by both routes.
 
     Attributes
     ----------
     name : str
         The case.
     exact : dict of str to Exact
-        Members asked for, from the exact solution of all joint equations.
+        Members asked for and reactions, from the exact solution of all joint equations.
     numeric : dict of str to float
         The same by the stiffness route.
     differing : tuple of str
-        Members for which the routes differ by more than the tolerance.
+        Those for which the routes differ by more than the tolerance.
     condition : float
         Of the numeric route.
+    bound : float
+        How far apart the routes may be: tolerance times the largest force.
     """
 
     name: str
@@ -79,22 +71,23 @@ class CaseForces:
     numeric: Mapping[str, float]
     differing: tuple[str, ...]
     condition: float
+    bound: float
 
 
 @dataclass(frozen=True, slots=True)
 class MovingForces:
-    """The members' extremes under a moving load.
+    """Extremes under a moving load.
 
     Attributes
     ----------
     name : str
         The moving load.
     lines : dict of str to InfluenceLine
-        By member.
+        By member asked for, reaction and bearing.
     extremes : dict of str to (Extreme, Extreme)
         Largest and least.
     differing : tuple of str
-        Members whose influence line differs between the routes.
+        Those whose influence line differs between the routes.
     condition : float
         Of the numeric route.
     """
@@ -104,57 +97,6 @@ class MovingForces:
     extremes: Mapping[str, tuple[Extreme, Extreme]]
     differing: tuple[str, ...]
     condition: float
-
-
-@dataclass(frozen=True, slots=True)
-class MemberEnvelope:
-    """A member's extremes.
-
-    Attributes
-    ----------
-    member : str
-        Its name.
-    max, min : Choice
-        Largest and least force, tension positive.
-    largest_of, least_of : tuple of Choice
-        For every combination its largest and its least, in the order stated.
-    """
-
-    member: str
-    max: Choice
-    min: Choice
-    largest_of: tuple[Choice, ...]
-    least_of: tuple[Choice, ...]
-
-    @property
-    def reversal(self) -> bool:
-        """Whether the member is pulled in one state and pressed in another."""
-        return self.max.value.sign() > 0 > self.min.value.sign()
-
-    @property
-    def governing(self) -> Sense:
-        """Which of the two is larger in size; the tension where they are equal."""
-        sizes = abs(self.max.value), abs(self.min.value)
-        if sizes[0] == sizes[1]:
-            return "max" if self.max.value.sign() >= 0 else "min"
-        return "max" if sizes[1] < sizes[0] else "min"
-
-    @property
-    def senses(self) -> tuple[Sense, ...]:
-        """The states to check by hand: the governing one, and the other one too where the force reverses."""
-        if not self.reversal:
-            return (self.governing,)
-        return ("max", "min") if self.governing == "max" else ("min", "max")
-
-    def state(self, sense: Sense) -> Choice:
-        """Return one of the two extremes."""
-        return self.max if sense == "max" else self.min
-
-    def runners_up(self, sense: Sense) -> tuple[Choice, ...]:
-        """Return the other combinations, the nearest to governing first."""
-        governing = self.state(sense)
-        others = [each for each in (self.largest_of if sense == "max" else self.least_of) if each is not governing]
-        return tuple(sorted(others, key=lambda each: float(each.value), reverse=sense == "max"))
 
 
 @dataclass(frozen=True, slots=True)
@@ -179,6 +121,10 @@ class Envelope(Convenient):
         Loads that move.
     tolerance : float
         Share of the largest force up to which the two routes agree, at the worst condition met.
+    reactions : dict of str to MemberEnvelope
+        Every reaction that statics decides.
+    bearings : dict of str to MemberEnvelope
+        For the bearings that must not lift the vertical reaction, upwards positive, as far as statics decides it.
     """
 
     stated: TrussFile
@@ -189,11 +135,13 @@ class Envelope(Convenient):
     cases: Mapping[str, CaseForces]
     moving: Mapping[str, MovingForces]
     tolerance: float
+    reactions: Mapping[str, MemberEnvelope] = field(default_factory=dict)
+    bearings: Mapping[str, MemberEnvelope] = field(default_factory=dict)
 
     @property
     def differing(self) -> tuple[tuple[str, str], ...]:
-        """Load cases and members for which the two routes differ."""
-        every = (*self.cases.values(), *self.moving.values())
+        """Load cases, and members or reactions for which the two routes differ."""
+        every: list[CaseForces | MovingForces] = [*self.cases.values(), *self.moving.values()]
         return tuple((each.name, member) for each in every for member in each.differing)
 
     @property
@@ -246,22 +194,23 @@ def envelope(
     solved = matrix.solve_all(truss, still or [LoadCase("", {})])
     decided = [name for name in wanted if name in solved[0].tensions]
     undecided = {name: undecided_reason(solved[0], name) for name in wanted if name not in solved[0].tensions}
-    cases = [
-        _of_case(truss, case, equilibrium, decided, tell) for case, equilibrium in zip(still, solved, strict=False)
-    ]
-    moves = [_of_moving(truss, load, decided, tell) for load in moving]
+    links = [link for link in truss.links if link.name in solved[0].tensions]
+    bearings = _bearings(truss, links)
+    names = [*decided, *(link.name for link in links)]
+    cases = [_of_case(truss, case, equilibrium, names, tell) for case, equilibrium in zip(still, solved, strict=False)]
+    moves = [_of_moving(truss, load, names, bearings, tell) for load in moving]
+
+    def over_all(name: str) -> MemberEnvelope:
+        effects = {each.name: _effects_of_case(each, bearings.get(name, {name: ONE})) for each in cases}
+        effects |= {each.name: _effects_of_moving(each, name) for each in moves}
+        return extremes_over(name, combinations, effects)
+
     found = {}
     for name in decided:
         tell(f"member {name}")
-        effects: dict[str, tuple[Effect, Effect]] = {}
-        for of_case in cases:
-            effect = Effect(of_case.exact[name], None)
-            effects[of_case.name] = (effect, effect)
-        for of_moving in moves:
-            largest, least = of_moving.extremes[name]
-            effects[of_moving.name] = (Effect(largest.value, largest), Effect(least.value, least))
-        found[name] = _extremes_of(name, combinations, effects)
-    condition = max((each.condition for each in (*cases, *moves)), default=0.0)
+        found[name] = over_all(name)
+    every: list[CaseForces | MovingForces] = [*cases, *moves]
+    condition = max((each.condition for each in every), default=0.0)
     return Envelope(
         stated=stated,
         combinations=tuple(combinations),
@@ -271,6 +220,8 @@ def envelope(
         cases={each.name: each for each in cases},
         moving={each.name: each for each in moves},
         tolerance=tolerance_at(condition),
+        reactions={link.name: over_all(link.name) for link in links},
+        bearings={joint: over_all(joint) for joint in bearings},
     )
 
 
@@ -303,11 +254,11 @@ def teller(progress: Progress | None, total: int) -> Callable[[str], None]:
 
 
 def _of_case(
-    truss: Truss, case: LoadCase, equilibrium: matrix.Equilibrium, members: Sequence[str], tell: Callable[[str], None]
+    truss: Truss, case: LoadCase, equilibrium: matrix.Equilibrium, names: Sequence[str], tell: Callable[[str], None]
 ) -> CaseForces:
     tell(f"load case {case.name}")
     bars = {bar.name: bar for bar in equilibrium.bars}
-    exact = {name: equilibrium.tensions[name] * bars[name].length for name in members}
+    exact = {name: equilibrium.tensions[name] * bars[name].length for name in names}
     run = stiffness.solve(truss, case)
     numeric = {**run.reactions, **stiffness.member_forces(truss, case)}
     loads = [abs(part) for pair in case.as_floats().values() for part in pair]
@@ -315,104 +266,54 @@ def _of_case(
     bound = tolerance_at(run.condition) * largest
     # written so that a value that is no number differs
     differing = tuple(name for name, force in exact.items() if not abs(float(force) - numeric[name]) <= bound)
-    return CaseForces(case.name, exact, {name: numeric[name] for name in members}, differing, run.condition)
+    return CaseForces(case.name, exact, {name: numeric[name] for name in names}, differing, run.condition, bound)
 
 
-def _of_moving(truss: Truss, load: MovingLoad, members: Sequence[str], tell: Callable[[str], None]) -> MovingForces:
+def _of_moving(
+    truss: Truss, load: MovingLoad, names: Sequence[str], bearings: Mapping[str, Parts], tell: Callable[[str], None]
+) -> MovingForces:
     tell(f"moving load {load.name}")
-    lines = {line.target: line for line in influence_lines(truss, members, load.along)}
-    found = {name: extremes(line, load.trains) for name, line in lines.items()}
+    lines = {line.target: line for line in influence_lines(truss, names, load.along)}
     differing = tuple(name for name, line in lines.items() if not line.agreed)
-    return MovingForces(load.name, lines, found, differing, max((line.condition for line in lines.values()), default=0))
+    condition = max((line.condition for line in lines.values()), default=0)
+    lines |= {joint: _of_bearing(joint, parts, lines) for joint, parts in bearings.items()}
+    found = {name: extremes(line, load.trains) for name, line in lines.items()}
+    return MovingForces(load.name, lines, found, differing, condition)
 
 
-# --- combining --------------------------------------------------------------------------------------------
+def _effects_of_case(forces: CaseForces, parts: Parts) -> tuple[Effect, Effect]:
+    effect = Effect(sum((part * forces.exact[name] for name, part in parts.items()), ZERO), None)
+    return effect, effect
 
 
-@dataclass(frozen=True, slots=True)
-class Effect:
-    """A force under one load case, with the stand of its train where it moves."""
-
-    value: Exact
-    extreme: Extreme | None
+def _effects_of_moving(forces: MovingForces, name: str) -> tuple[Effect, Effect]:
+    largest, least = forces.extremes[name]
+    return Effect(largest.value, largest), Effect(least.value, least)
 
 
-@dataclass(frozen=True, slots=True)
-class Share:
-    """What a case brings into a combination: its factor as taken, its effect, their product; no factor: it is away."""
+# --- bearings ---------------------------------------------------------------------------------------------
 
-    case: str
-    factor: Exact | None
-    effect: Effect
-    value: Exact
+Parts = Mapping[str, Exact]
+"""Reactions, and the vertical part of each where it is 1."""
 
 
-def _extremes_of(
-    member: str, combinations: Sequence[Combination], effects: Mapping[str, tuple[Effect, Effect]]
-) -> MemberEnvelope:
-    shares: dict[tuple[str, tuple[Exact, ...], bool, Sense], Share] = {}
-
-    def share(case: str, factors: tuple[Exact, ...], optional: bool, sense: Sense) -> Share:
-        key = (case, factors, optional, sense)
-        if key not in shares:
-            shares[key] = _adverse(case, factors, effects[case], optional=optional, sense=sense)
-        return shares[key]
-
-    both: dict[Sense, list[Choice]] = {"max": [], "min": []}
-    for each in combinations:
-        for sense, choices in both.items():
-            taken = [share(case, factors, case in each.optional, sense) for case, factors in each.factors]
-            choices.append(_choice(each.name, taken))
-    largest, least = both["max"], both["min"]
-    return MemberEnvelope(member, _furthest(largest, "max"), _furthest(least, "min"), tuple(largest), tuple(least))
+def _bearings(truss: Truss, decided: Sequence[Link]) -> dict[str, Parts]:
+    """Return what the vertical reaction at each bearing that must not lift is made of, where statics decides it."""
+    found: dict[str, Parts] = {}
+    for joint in truss.no_uplift:
+        links = [link for link in truss.links if link.joint == joint and link.dy]
+        if all(link in decided for link in links):
+            found[joint] = {link.name: link.dy / sqrt(link.dx * link.dx + link.dy * link.dy) for link in links}
+    return found
 
 
-def _adverse(
-    case: str, factors: tuple[Exact, ...], effects: tuple[Effect, Effect], *, optional: bool, sense: Sense
-) -> Share:
-    """Return the adverse share of a case; of equal ones the first written, and there rather than away."""
-    offered = [
-        Share(case, factor, effect, factor * effect.value) for factor in factors for effect in _different(effects)
+def _of_bearing(joint: str, parts: Parts, lines: Mapping[str, InfluenceLine]) -> InfluenceLine:
+    """Return the influence line of a bearing's vertical reaction."""
+    if not parts:
+        some = next(iter(lines.values()))
+        return replace(some, target=joint, kind="reaction", ordinates=(ZERO,) * len(some.ordinates))
+    ordinates = [
+        sum((part * height for part, height in zip(parts.values(), heights, strict=True)), ZERO)
+        for heights in zip(*(lines[name].ordinates for name in parts), strict=True)
     ]
-    if optional:
-        offered.append(Share(case, None, effects[0], ZERO))
-    values = [each.value for each in offered]
-    return offered[furthest(values, sense)]
-
-
-def _different(effects: tuple[Effect, Effect]) -> tuple[Effect, ...]:
-    return effects[:1] if effects[0] is effects[1] else effects
-
-
-def _choice(combination: str, taken: Sequence[Share]) -> Choice:
-    factors = tuple(
-        (each.case, each.factor) for each in taken if each.factor is not None and each.effect.extreme is None
-    )
-    stands = tuple(
-        (each.case, each.factor, each.effect.extreme)
-        for each in taken
-        if each.factor is not None and each.effect.extreme is not None
-    )
-    return Choice(combination, factors, stands, sum((each.value for each in taken), start=ZERO))
-
-
-def _furthest(choices: Sequence[Choice], sense: Sense) -> Choice:
-    return choices[furthest([choice.value for choice in choices], sense)]
-
-
-def furthest(values: Sequence[Exact], sense: Sense) -> int:
-    """Return the place of the largest or least value, the first of equal ones.
-
-    Floats sort out what is far behind; what is near is compared exactly.
-    """
-    sign = 1.0 if sense == "max" else -1.0
-    near = [sign * float(value) for value in values]
-    best = max(near)
-    slack = NEARLY * max(map(abs, near))
-    place = -1
-    for candidate, value in enumerate(near):
-        if best - value > slack:
-            continue
-        if place < 0 or (values[candidate] - values[place]).sign() * sign > 0:
-            place = candidate
-    return place
+    return replace(lines[next(iter(parts))], target=joint, kind="reaction", ordinates=tuple(ordinates))

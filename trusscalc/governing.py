@@ -6,9 +6,11 @@ from dataclasses import dataclass
 
 from trusscalc.chains import positions
 from trusscalc.envelopes import Choice, Envelope, Progress, Sense, at_values, teller
+from trusscalc.exact import Exact
 from trusscalc.loads import JointLoad, LoadCase
 from trusscalc.membercheck import MemberCheck, check_members
-from trusscalc.travel import placed
+from trusscalc.standing import train_of
+from trusscalc.travel import Extreme, placed
 from trusscalc.trussfile import TrussFile
 
 
@@ -39,32 +41,46 @@ class GoverningCheck:
         return self.check.agreed and not self.differing
 
 
-def governing_case(stated: TrussFile, choice: Choice, name: str = "") -> LoadCase:
-    """Return the load case of one state: all cases as taken and the trains where they stand, joint by joint.
+def factored_cases(stated: TrussFile, choice: Choice) -> tuple[tuple[str, Exact, LoadCase], ...]:
+    """Return the cases of one state as they are taken: name, factor, and the factored joint loads.
 
     Parameters
     ----------
     stated : TrussFile
         Whose cases they are.
     choice : Choice
-        The state.
+        The state; a moving load stands where its train does.
+    """
+    cases = {case.name: at_values(case) for case in stated.acting}
+    found = [(case, factor, cases[case].loads) for case, factor in choice.factors]
+    found += [(case, factor, standing_case(stated, case, extreme).loads) for case, factor, extreme in choice.stands]
+    return tuple(
+        (name, factor, LoadCase(name, [JointLoad(load.joint, factor * load.fx, factor * load.fy) for load in loads]))
+        for name, factor, loads in found
+    )
+
+
+def standing_case(stated: TrussFile, case: str, extreme: Extreme) -> LoadCase:
+    """Return the joint loads of a moving load where it stands."""
+    load = next(load for load in stated.moving if load.name == case)
+    train = train_of(extreme, load.trains)
+    if train is None:
+        return LoadCase(case, {})  # no train of the load is adverse anywhere
+    along = positions(stated.truss.at_values(), load.along)
+    return LoadCase(case, placed(extreme, along, load.along, train))
+
+
+def governing_case(stated: TrussFile, choice: Choice, name: str = "") -> LoadCase:
+    """Return the load case of one state: all cases as taken and the trains where they stand, joint by joint.
+
+    Parameters
+    ----------
+    stated, choice
+        As in ``factored_cases``.
     name : str
         What to call it; the combination's name without one.
     """
-    cases = {case.name: at_values(case) for case in stated.acting}
-    moving = {load.name: load for load in stated.moving}
-    loads = [
-        JointLoad(load.joint, factor * load.fx, factor * load.fy)
-        for case, factor in choice.factors
-        for load in cases[case].loads
-    ]
-    for case, factor, extreme in choice.stands:
-        along = moving[case].along
-        train = next((train for train in moving[case].trains if train.name == extreme.train), None)
-        if train is None:
-            continue  # no train of the load is adverse anywhere
-        joint_loads = placed(extreme, positions(stated.truss.at_values(), along), along, train)
-        loads += [JointLoad(load.joint, factor * load.fx, factor * load.fy) for load in joint_loads]
+    loads = [load for _, _, case in factored_cases(stated, choice) for load in case.loads]
     return LoadCase(name or choice.combination, loads)
 
 

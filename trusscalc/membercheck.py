@@ -5,15 +5,15 @@ A disagreement is a verdict, never an exception: the caller, the sheet and the e
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
-from dataclasses import dataclass, field
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass, field, replace
 from typing import Literal
 
-from trusscalc import stiffness
 from trusscalc.convenience import Convenient
-from trusscalc.errors import InexactNumberError, InputError, UnknownNameError, UnstableTrussError
+from trusscalc.errors import InputError, UnknownNameError
 from trusscalc.exact import Exact, symbol
 from trusscalc.loads import LoadCase
+from trusscalc.numericruns import runs_of
 from trusscalc.samples import at_sample, samples, vanishing
 from trusscalc.statics import matrix
 from trusscalc.statics.cuts import Structure, structure_of
@@ -22,11 +22,19 @@ from trusscalc.statics.plan import PlannedStep, plan
 from trusscalc.statics.prices import Preference
 from trusscalc.statics.steps import Step, carried_letter, section_letter, write_close, write_step
 from trusscalc.statics.zeroforce import zero_force_members
-from trusscalc.symbolparts import Monomial, numeric_parts
 from trusscalc.truss import Truss
-from trusscalc.verdicts import TOLERANCE, ForceCheck, Judge, Runs
+from trusscalc.verdicts import TOLERANCE, ForceCheck, Judge
 
-__all__ = ["TOLERANCE", "ForceCheck", "MemberCheck", "Redundancy", "Statics", "check_members"]
+__all__ = [
+    "TOLERANCE",
+    "ForceCheck",
+    "MemberCheck",
+    "Redundancy",
+    "Statics",
+    "check_members",
+    "check_reactions",
+    "check_steps",
+]
 
 
 @dataclass(frozen=True, slots=True)
@@ -173,11 +181,61 @@ def check_members(
     >>> check.members["A-C"].exact, check.members["A-C"].sense, check.agreed
     (Exact('-sqrt(5)'), 'C', True)
     """
+    _refuse_loads_off(truss, case)
+    own = {truss.member(name).name: cut.kept for name, cut in (cuts or {}).items()}
+    wanted = tuple(dict.fromkeys((*members_named(truss, members, also=bool(own)), *own)))
+    return _planned(truss, case, wanted, own, prefer, own_checks=own_checks)
+
+
+def check_reactions(truss: Truss, case: LoadCase, *, prefer: Preference = "", own_checks: bool = True) -> MemberCheck:
+    """Return all reactions by hand methods, each beside an independent stiffness value; no member is asked for.
+
+    Parameters and errors are those of ``check_members``.
+    """
+    _refuse_loads_off(truss, case)
+    return _planned(truss, case, (), {}, prefer, own_checks=own_checks)
+
+
+def check_steps(truss: Truss, case: LoadCase, steps: Sequence[Step], members: Sequence[str]) -> MemberCheck:
+    """Return the check of a derivation that is already written, such as that of an influence line's largest ordinate.
+
+    Parameters
+    ----------
+    truss, case
+        What the steps are about; without symbols in the dimensions.
+    steps : sequence of Step
+        Each after what it uses, with its check.
+    members : sequence of str
+        Members to be judged, as the truss spells them.
+
+    Raises
+    ------
+    UnstableTrussError
+        When the truss cannot resist every load.
+    """
+    equilibrium = matrix.solve(truss, case)
+    structure = structure_of(truss, case, equilibrium.bars)
+    found = {name: force for step in steps for name, force in step.results.items()}
+    tensions = {name: force / structure.bars[name].length for name, force in found.items()}
+    return _judged(case, members, _Derived(truss, structure, equilibrium, tuple(steps), tensions))
+
+
+def _refuse_loads_off(truss: Truss, case: LoadCase) -> None:
     faults = case.faults(truss)
     if faults:
         raise InputError(faults)
-    own = {truss.member(name).name: cut.kept for name, cut in (cuts or {}).items()}
-    wanted = tuple(dict.fromkeys((*members_named(truss, members, also=bool(own)), *own)))
+
+
+def _planned(
+    truss: Truss,
+    case: LoadCase,
+    wanted: tuple[str, ...],
+    own: Mapping[str, tuple[str, ...]],
+    prefer: Preference,
+    *,
+    own_checks: bool,
+) -> MemberCheck:
+    """Plan, write and judge."""
     if truss.symbols:
         faults = _different_values(truss, case)
         if faults:
@@ -188,13 +246,29 @@ def check_members(
     structure = structure_of(truss, case, equilibrium.bars)
     decided = [name for name in wanted if name in equilibrium.tensions]
     steps, tensions = _derivation(structure, equilibrium, decided, case, own, prefer, own_checks=own_checks)
-    numeric = stiffness.solve(truss, case)
-    values = {**numeric.reactions, **stiffness.member_forces(truss, case)}
-    runs = Runs(values, numeric.condition, _unit_runs(truss, case), _sample_runs(truss, case))
-    judge = Judge(case, structure, equilibrium, steps, tensions, runs)
+    check = _judged(case, wanted, _Derived(truss, structure, equilibrium, steps, tensions))
+    return replace(check, cuts=own, prefer=prefer, own_checks=own_checks)
+
+
+@dataclass(frozen=True, slots=True)
+class _Derived:
+    """What the hand route gave: steps, and t = N / L of every force found in them."""
+
+    truss: Truss
+    structure: Structure
+    equilibrium: matrix.Equilibrium
+    steps: tuple[Step, ...]
+    tensions: Mapping[str, Exact]
+
+
+def _judged(case: LoadCase, wanted: Sequence[str], derived: _Derived) -> MemberCheck:
+    """Set the numeric route beside what was derived."""
+    truss, structure, equilibrium = derived.truss, derived.structure, derived.equilibrium
+    runs, residual = runs_of(truss, case)
+    judge = Judge(case, structure, equilibrium, derived.steps, derived.tensions, runs)
     checked = {name: judge.verdict(name) for name in wanted}
     reactions = {link.name: judge.verdict(link.name) for link in truss.links}
-    residuals = _residuals(equilibrium, case, tensions)
+    residuals = _residuals(equilibrium, case, derived.tensions)
     agreed = not residuals and all(item.verdict == "agrees" for item in (*checked.values(), *reactions.values()))
     determinate = equilibrium.degree == 0
     counts = (len(truss.joints), len(truss.members), len(truss.links), equilibrium.rank)
@@ -204,19 +278,16 @@ def check_members(
         statics=Statics(*counts, stable=True, determinate=determinate),
         members=checked,
         reactions=reactions,
-        steps=steps,
+        steps=derived.steps,
         residuals=residuals,
         largest_force=judge.largest,
         tolerance=judge.tolerance,
-        condition=numeric.condition,
-        stiffness_residual=numeric.residual,
+        condition=runs.condition,
+        stiffness_residual=residual,
         agreed=agreed,
         zero_members=zero_force_members(structure, equilibrium),
         redundancy=None if determinate else _redundancy(equilibrium),
         unstable_where=vanishing(equilibrium.tensions.values()) if truss.symbols else (),
-        cuts=own,
-        prefer=prefer,
-        own_checks=own_checks,
     )
 
 
@@ -227,37 +298,6 @@ def _different_values(truss: Truss, case: LoadCase) -> list[str]:
         for name, value in truss.symbols
         if name in stated and stated[name] != value
     ]
-
-
-def _sample_runs(truss: Truss, case: LoadCase) -> tuple[tuple[Mapping[str, Exact], Mapping[str, float], float], ...]:
-    """Return (values, forces, condition) for every sample of symbolic dimensions at which the truss is stable."""
-    if not truss.symbols:
-        return ()
-    runs = []
-    for values in samples(truss, case):
-        try:
-            numbers, loads = at_sample(truss, case, values)
-            matrix.solve(numbers, loads)
-        except (InputError, UnstableTrussError):
-            continue  # a sample that happens to be critical; the stated values have been refused before this
-        found = stiffness.solve(numbers, loads)
-        forces = {**found.reactions, **stiffness.member_forces(numbers, loads)}
-        runs.append((values, forces, found.condition))
-    return tuple(runs)
-
-
-def _unit_runs(truss: Truss, case: LoadCase) -> dict[Monomial, dict[str, float]]:
-    """Return the numeric route's forces for each product of symbols in the loads, {} without symbols."""
-    if truss.symbols or not any(load.fx.symbols or load.fy.symbols for load in case.loads):
-        return {}
-    try:
-        parts = numeric_parts(case)
-    except InexactNumberError:
-        return {}  # not a polynomial in its symbols: compared at their values only
-    return {
-        monomial: {**stiffness.solve(truss, part).reactions, **stiffness.member_forces(truss, part)}
-        for monomial, part in parts.items()
-    }
 
 
 def _redundancy(equilibrium: matrix.Equilibrium) -> Redundancy:
