@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
+from typing import Any
 
-from trusscalc.errors import InputError
+from trusscalc.errors import InputError, RenderError
 from trusscalc.loads import LoadCase
 from trusscalc.statics.owncuts import OwnCut
 from trusscalc.truss import Truss
@@ -67,4 +68,16 @@ def explore(
     if not names:
         message = "there are no loads to explore: state a load case"
         raise InputError(message)
-    return Exploration(stated, case=name or names[0], members=members, cuts=cuts)
+    return Exploration(stated, case=name or names[0], members=members, cuts=cuts, screen_of=_screen_of)
+
+
+def _screen_of(exploration: Exploration) -> Any:
+    """Return drawing and form of an exploration."""
+    try:
+        from trusscalc.widgets.screen import Screen  # noqa: PLC0415 - what it brings along is slow to import
+    except ImportError as problem:
+        message = (
+            f"the drawing needs a package that is not installed ({problem.name}): pip install 'trusscalc[widgets]'"
+        )
+        raise RenderError(message) from None
+    return Screen(exploration)

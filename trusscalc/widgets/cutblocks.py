@@ -74,13 +74,13 @@ def answer_blocks(answer: Answer, *, drawings: bool = False, places: int = PLACE
         ("Unknown", listed(map(bar, answer.unknown)) or "none"),
         *why_nothing(answer.reason, answer.unknown, answer.nearest),
     ]
-    blocks: list[Block] = [facts(items), possibility_table(answer.possibilities)]
+    blocks: list[Block] = [facts(items)]
     if answer.equation is not None:
         blocks += equation_blocks(answer.equation)
     blocks += [
         composing.derivation(answer.check, step.number, places=places, drawings=drawings) for step in answer.steps
     ]
-    return blocks
+    return [*blocks, possibility_table(answer.possibilities)]
 
 
 def body_words(answer: Answer) -> str:

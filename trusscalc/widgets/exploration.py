@@ -41,6 +41,8 @@ class Exploration:
         Members to be checked.
     cuts : mapping of str to OwnCut, optional
         For some members the cut to derive them from.
+    screen_of : callable, optional
+        Makes what is shown in a cell, when it is first shown there; without it only the static form is.
 
     Raises
     ------
@@ -66,8 +68,10 @@ class Exploration:
         case: str,
         members: Iterable[str] = (),
         cuts: Mapping[str, OwnCut] | None = None,
+        screen_of: Callable[[Exploration], Any] | None = None,
     ) -> None:
         self.stated = stated
+        self._screen_of = screen_of or Unseen
         self.watchers: list[Callable[[], None]] = []
         self._screen: Any = None
         self._checks: dict[tuple[str, tuple[str, ...], Kept], MemberCheck] = {}
@@ -280,9 +284,7 @@ class Exploration:
     def _ipython_display_(self) -> None:
         """Show the drawing and the form, and beside them the static form, which follows them."""
         if self._screen is None:
-            from trusscalc.widgets.screen import Screen  # noqa: PLC0415 - what it brings along is slow to import
-
-            self._screen = Screen(self)
+            self._screen = self._screen_of(self)
         self._screen.display()
 
     # --- worked out ---------------------------------------------------------------------------------------
@@ -322,6 +324,19 @@ class Exploration:
 
     def _named(self, members: Iterable[str]) -> set[str]:
         return {self.truss.member(name).name for name in members}
+
+
+class Unseen:
+    """The screen of an exploration without drawing and form: its static form."""
+
+    def __init__(self, exploration: Exploration) -> None:
+        self.exploration = exploration
+
+    def display(self) -> None:
+        """Show the static form in the running cell."""
+        from IPython.display import display  # noqa: PLC0415 - only where there are cells
+
+        display(self.exploration.frozen(), raw=True)
 
 
 def names_of(stated: TrussFile) -> tuple[str, ...]:

@@ -10,7 +10,7 @@ from typing import Any
 
 import ipywidgets
 
-from trusscalc.exacttext import to_text
+from trusscalc.loads import factor_text
 from trusscalc.render.notebook import Bundle, bundle
 from trusscalc.sheet.detail import DETAILS
 from trusscalc.sheet.words import about_words, capital
@@ -50,8 +50,8 @@ class Form:
         self.members = self.control(
             ipywidgets.SelectMultiple, "Check members", self.set_members, options=members, rows=7
         )
-        self.kept = self.control(ipywidgets.SelectMultiple, "Keep joints", self.set_kept, options=joints, rows=7)
-        self.through = self.control(ipywidgets.SelectMultiple, "Cut through", self.set_through, options=members, rows=7)
+        self.kept = self.control(ipywidgets.SelectMultiple, "Keep joints", self.set_kept, options=joints, rows=4)
+        self.through = self.control(ipywidgets.SelectMultiple, "Cut through", self.set_through, options=members, rows=4)
         self.line = self.typed("Section points", self.set_line, "2.7, -1; 2.7, 8")
         self.equation = self.control(ipywidgets.Dropdown, "Equation", self.set_equation, options=[LEFT_TO_THE_TOOL])
         self.centre = self.typed("Moment centre", self.set_centre, "a joint, or a point such as 8, 0")
@@ -76,8 +76,8 @@ class Form:
         """Return a control whose changes make a move."""
         control = kind(
             description=description,
-            style={"description_width": "8.5em"},
-            layout={"width": "min(28em, 100%)"},
+            style={"description_width": "8em"},
+            layout={"width": "21em"},
             **options,
         )
         control.observe(lambda event: self.changed(change, event["new"]), names="value")
@@ -99,15 +99,18 @@ class Form:
             self.act(lambda: change(value))
 
     def laid_out(self) -> Any:
-        """Return everything in its place: choices left, equation and check right, answers below."""
+        """Return everything in its place: what to do with a cut, then the choices, then the answers."""
         buttons = ipywidgets.HBox(
             [self.side, self.nearest, self.keep, self.clear, self.forget], layout={"flex_flow": "row wrap"}
         )
-        left = ipywidgets.VBox([self.case, self.members, self.detail])
-        middle = ipywidgets.VBox([self.kept, self.through])
-        right = ipywidgets.VBox([self.line, self.equation, self.centre, self.direction])
-        controls = ipywidgets.HBox([left, middle, right], layout={"flex_flow": "row wrap"})
-        return ipywidgets.VBox([buttons, self.answer, controls, self.check])
+        columns = (
+            [self.case, self.members, self.detail],
+            [self.kept, self.through],
+            [self.line, self.equation, self.centre, self.direction],
+        )
+        boxes = [ipywidgets.VBox(column, layout={"min_width": "21.5em"}) for column in columns]
+        controls = ipywidgets.HBox(boxes, layout={"flex_flow": "row wrap"})
+        return ipywidgets.VBox([buttons, controls, self.answer, self.check])
 
     # --- moves --------------------------------------------------------------------------------------------
 
@@ -167,7 +170,7 @@ class Form:
         self.case.value, self.detail.value = choices.case, choices.detail
         self.members.value, self.kept.value = choices.members, choices.kept
         self.through.value = choices.cut_members(exploration.truss)
-        self.line.value = "; ".join(f"{to_text(x)}, {to_text(y)}" for x, y in choices.line)
+        self.line.value = "; ".join(f"{factor_text(x)}, {factor_text(y)}" for x, y in choices.line)
         self.options = answer.possibilities if answer else ()
         abouts = [way.about for way in self.options]
         words = [(LEFT_TO_THE_TOOL, 0), *((possibility_words(way), n) for n, way in enumerate(self.options, 1))]
@@ -194,7 +197,7 @@ def _typed(about: About | None) -> tuple[str, str]:
     """Return moment centre and direction as they would be typed."""
     if about is None:
         return "", ""
-    pair = f"{to_text(about.x)}, {to_text(about.y)}"
+    pair = f"{factor_text(about.x)}, {factor_text(about.y)}"
     if about.sum == "moment":
         return about.joint or pair, ""
     positive = not (about.x + about.y).reads_negative()

@@ -35,7 +35,11 @@ class Drawing {
     root.classList.add("tc-drawing");
     html("p", { class: "tc-lost" }, root, LOST);
     this.problem = html("p", { class: "tc-problem", role: "alert" }, root);
-    this.svg = make("svg", { role: "group", "aria-describedby": `${this.id}-keys`, class: "tc-sheet" }, root);
+    this.svg = make(
+      "svg",
+      { role: "group", tabindex: -1, "aria-describedby": `${this.id}-keys`, class: "tc-sheet" },
+      root,
+    );
     this.elevation = new Elevation(this.svg);
     this.status = html("p", { class: "tc-status", role: "status" }, root);
     this.choice = this.picking();
@@ -219,9 +223,11 @@ class Drawing {
   /** Does what a key means where the focus is; returns whether it means anything. */
   does(event) {
     const target = event.target.closest("[data-member], [data-joint], [data-point], [data-side]");
-    if (!target) return false;
-    const { member, joint, point } = target.dataset;
     const name = event.key.length === 1 ? event.key.toLowerCase() : event.key;
+    const anywhere = { Escape: "clear", o: "side", n: "nearest" }[name];
+    if (anywhere) this.tell(anywhere);
+    if (anywhere || !target) return Boolean(anywhere);
+    const { member, joint, point } = target.dataset;
     if (point !== undefined) {
       const line = this.section.key(Number(point), event);
       if (line) {
@@ -233,9 +239,6 @@ class Drawing {
     const kind = member !== undefined ? "member" : joint !== undefined ? "joint" : "point";
     if (point === undefined && this.walks[kind].key(event.key)) return true;
     if (name === " " || name === "Enter") this.pick(target);
-    else if (name === "Escape") this.tell("clear");
-    else if (name === "o") this.tell("side");
-    else if (name === "n") this.tell("nearest");
     else if (name === "s" && member !== undefined) this.tell("section", this.section.through(this.member(member)));
     else if (name === "c" && member !== undefined) this.tell("through", { member });
     else if (name === "k" && joint !== undefined) this.tell("keep", { joint });

@@ -2,11 +2,13 @@
 
 import { along, arrowhead, assign, listed, make, printed, unit } from "./svg.js";
 
-const LAYERS = ["supports", "bars", "cores", "rays", "joints", "marks", "words", "targets"];
+const LAYERS = ["supports", "far", "bars", "cores", "rays", "joints", "marks", "words", "targets"];
 const HALF_TARGET = 12;
 const LOAD = 34;
 const HEAD = 11;
 const CROWDED = 26;
+const LETTER = 6;
+const CLEAR = 10;
 
 /** The part of a truss drawing that is made anew only when the width changes; `show` then tells what the state is. */
 export class Elevation {
@@ -73,7 +75,8 @@ export class Elevation {
   show(state) {
     const { truss } = this.layout;
     this.layout.begin();
-    for (const layer of ["marks", "words", "rays"]) this.layers[layer].replaceChildren();
+    this.taken = [];
+    for (const layer of ["marks", "words", "rays", "far"]) this.layers[layer].replaceChildren();
     const kept = new Set(state.kept);
     const cut = new Set(state.cut);
     const gone = (joint) => kept.size > 0 && !kept.has(truss.joints[joint][0]);
@@ -84,6 +87,7 @@ export class Elevation {
         "tc-gone": gone(member[1]) && gone(member[2]),
         "tc-solved": state.solved.includes(member[0]),
       };
+      this.cutOff(member, this.bars[index], state.pulls[member[0]]);
       const sense = state.values[member[0]]?.[1];
       for (const line of this.bars[index]) mark(line, { ...classes, "tc-T": sense === "T", "tc-C": sense === "C" });
       assign(this.members[index], {
@@ -101,8 +105,21 @@ export class Elevation {
     for (const reaction of state.reactions) this.reaction(reaction);
     for (const [name, pull] of Object.entries(state.pulls)) this.pull(name, pull, state);
     if (state.about) this.about(state);
-    this.values(state);
     this.names(gone);
+    this.values(state);
+  }
+
+  /** Draws a member up to the section only, when it is cut; what is taken away of it, thin. */
+  cutOff(member, lines, pull) {
+    let [near, far] = this.layout.ends(member);
+    if (pull) {
+      const met = this.layout.toPage(pull);
+      const ahead = (far[0] - near[0]) * pull[2] - (far[1] - near[1]) * pull[3];
+      if (ahead < 0) [near, far] = [far, near];
+      make("line", { x1: met[0], y1: met[1], x2: far[0], y2: far[1], class: "tc-gone" }, this.layers.far);
+      far = met;
+    }
+    for (const line of lines) assign(line, { x1: near[0], y1: near[1], x2: far[0], y2: far[1] });
   }
 
   memberWords(member, classes, value) {
@@ -119,7 +136,12 @@ export class Elevation {
     const way = [dx, -dy];
     const angle = Math.atan2(way[1], way[0]);
     const leaves = this.layout.isFree(joint, angle);
-    const spot = this.layout.spots[joint];
+    const comes = this.layout.isFree(joint, angle + Math.PI);
+    // along a chord there is room neither way: beside it
+    const spot =
+      leaves || comes
+        ? this.layout.spots[joint]
+        : along(this.layout.spots[joint], [-Math.abs(way[1]), Math.abs(way[0])], 9);
     const [tail, tip] = leaves
       ? [along(spot, way, 7), along(spot, way, 7 + LOAD)]
       : [along(spot, way, -7 - LOAD), along(spot, way, -7)];
@@ -157,6 +179,7 @@ export class Elevation {
   }
 
   word([x, y], text, kind, angle = 0) {
+    this.taken.push(...samples([x, y], text, angle));
     const turned = angle ? { transform: `rotate(${angle.toFixed(1)} ${x.toFixed(1)} ${y.toFixed(1)})` } : {};
     make("text", { x, y, class: kind, ...turned }, this.layers.words).textContent = text;
   }
@@ -182,7 +205,7 @@ export class Elevation {
     }
   }
 
-  /** Values along their members, on the side away from the middle of the truss. */
+  /** Values along their members: above in the middle, else where there is room. */
   values({ values }) {
     for (const member of this.layout.truss.members) {
       if (!(member[0] in values)) continue;
@@ -191,10 +214,19 @@ export class Elevation {
       const upright = Math.abs(way[0]) < 0.02;
       const side = upright ? [-1, 0] : [way[1], -way[0]];
       const middle = [(a[0] + b[0]) / 2, (a[1] + b[1]) / 2];
-      const below = !upright && middle[1] > this.layout.middle[1] + 1 && Math.abs(way[1]) < 0.02;
       const angle = upright ? -90 : (Math.atan2(way[1], way[0]) * 180) / Math.PI;
-      this.word(along(middle, side, below ? -11 : 10), values[member[0]][0], "tc-value", angle);
+      const text = values[member[0]][0];
+      const reach = 0.15 * Math.hypot(...span([a, b]));
+      const trials = [0, reach, -reach].flatMap((shift) =>
+        [10, -11].map((apart) => along(along(middle, way, shift), side, apart)),
+      );
+      const free = trials.find((spot) => this.hasRoom(samples(spot, text, angle)));
+      this.word(free ?? trials[0], text, "tc-value", angle);
     }
+  }
+
+  hasRoom(spots) {
+    return spots.every(([x, y]) => this.taken.every(([u, v]) => Math.hypot(x - u, y - v) > CLEAR));
   }
 
   names(gone) {
@@ -206,6 +238,14 @@ export class Elevation {
       this.word(spot, name, `tc-name${gone(index) ? " tc-gone" : ""}`);
     });
   }
+}
+
+/** Points along a word, close enough to stand for it when another one looks for room. */
+function samples(spot, text, angle) {
+  const half = (text.length * LETTER) / 2;
+  const way = [Math.cos((angle * Math.PI) / 180), Math.sin((angle * Math.PI) / 180)];
+  const count = Math.max(1, Math.ceil((2 * half) / LETTER));
+  return Array.from({ length: count + 1 }, (_, index) => along(spot, way, -half + (2 * half * index) / count));
 }
 
 function span([a, b]) {

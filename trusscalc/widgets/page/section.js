@@ -8,7 +8,7 @@ const VIEW = 22;
 const CLOSES = 12;
 const STRAIGHT = 4;
 const FOLLOWS = 7;
-const KEYS = { ArrowRight: [1, 0], ArrowLeft: [-1, 0], ArrowUp: [0, -1], ArrowDown: [0, 1] };
+const MOVES = { ArrowRight: [1, 0], ArrowLeft: [-1, 0], ArrowUp: [0, -1], ArrowDown: [0, 1] };
 
 export class SectionLine {
   constructor(svg, layout) {
@@ -55,7 +55,7 @@ export class SectionLine {
       const { end, view } = views[index] ?? {};
       letter.textContent = view ? (this.line?.letter ?? "") : "";
       if (view) {
-        const [x, y] = along(end, view, -10);
+        const [x, y] = along(end, view, this.drawn ? -17 : -10);
         assign(letter, { x, y });
       }
     });
@@ -214,9 +214,9 @@ export class SectionLine {
 
   /** Moves, adds or takes away a point by a key; returns the line when it has changed. */
   key(index, event) {
-    if (event.key in KEYS) {
+    if (event.key in MOVES) {
       const step = event.shiftKey ? 25 : 5;
-      this.points[index] = along(this.points[index], KEYS[event.key], step);
+      this.points[index] = along(this.points[index], MOVES[event.key], step);
     } else if (event.key === "Insert" || event.key === "+") {
       const next = this.points[index + 1] ?? this.points[index - 1];
       const corner = [(this.points[index][0] + next[0]) / 2, (this.points[index][1] + next[1]) / 2];
