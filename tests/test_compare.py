@@ -163,8 +163,8 @@ def test_the_criterion_is_printed_with_its_reason() -> None:
     assert own.startswith("a value agrees within 0.1 % of ours, plus 0.01 % of the largest force (which is 12 kN)")
     assert "no published figure was found (common practice)" in own
     assert roof({"A-B": 8}, relative="0.05").criterion.text(12, "kN").endswith("Reason: as stated by the user")
-    assert RELATIVE == exact(0.001)
-    assert ABSOLUTE == exact(0.0001)
+    assert exact(0.001) == RELATIVE
+    assert exact(0.0001) == ABSOLUTE
 
 
 @pytest.mark.parametrize("options", [{"relative": -1}, {"absolute": "-0.1"}])

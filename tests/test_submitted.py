@@ -81,6 +81,8 @@ PLAIN = {"L0-L1": "8", "L0-U1": "-241/2"}
         "member,force\n# by hand\nL0-L1,8\nL0-U1,-120.5\nTotal,-112.5\nMax,8\n",
         'member,remark,force\nL0-L1,\'=1+1,8\nL0-U1,"two\nlines, and a comma",-120.5\n',
         "member,force\n,[kN]\nL0-L1,8\nL0-U1,-120.5\n",
+        "member,force\n,[kN]\nL0-L1,8\nmember,force\n,[kN]\nL0-U1,-120.5\n",
+        "\ufeffmember,\ufeffforce\nL0\u200b-L1,8\nL0-U1,-120.5\n",
     ],
     ids=lambda table: repr(table)[:50],
 )
@@ -315,6 +317,13 @@ def test_columns_of() -> None:
     """Text and mapping give the same."""
     assert columns_of("member=Bar,force=Axial") == columns_of({"member": "Bar", "force": "Axial"})
     assert columns_of(None) == columns_of("") == {}
+
+
+def test_columns_that_are_not_read_are_noted() -> None:
+    """Nothing is skipped silently."""
+    found = read("member,area,force,,remark\nL0-L1,0.01,8,,new\n")
+    assert "columns not read: 'area', 'remark'" in found.notes
+    assert not any("columns not read" in note for note in read("member,case,force,T/C\nL0-L1,a,8,T\n").notes)
 
 
 def test_two_columns_of_one_kind_are_not_guessed() -> None:
@@ -648,6 +657,14 @@ def test_their_numbers_go_before_ours() -> None:
 def test_wrong_name_maps(names: Any, told: str) -> None:
     """All faults at once."""
     assert told in "\n".join(faults("member,force\n17-18,1\n", names=names))
+
+
+def test_a_name_map_that_the_table_does_not_use() -> None:
+    """Names on drawings, but the table has ours: only where nothing of it is theirs, and noted."""
+    found = read("member,force\nL0-L1,8\nL0-U1,-120.5\n", names=NAMES)
+    assert {row.member: text(row.force) for row in found.rows} == PLAIN
+    assert "the table uses our own names: the name map was not needed" in found.notes
+    assert "there is no member 'L0-L1'" in faults("member,force\n17-18,8\nL0-L1,3\n", names=NAMES)[0]
 
 
 def test_unknown_names_are_told_with_the_nearest() -> None:

@@ -12,7 +12,7 @@ from dataclasses import dataclass, replace
 from trusscalc.errors import FileFormatError, InputError
 from trusscalc.exact import Exact, rational
 from trusscalc.filetext import capped
-from trusscalc.submitted.blocks import blocks_of, stated_in
+from trusscalc.submitted.blocks import Blocks, blocks_of, stated_in
 from trusscalc.submitted.heads import ROLES, Unit
 from trusscalc.submitted.names import NameMatch, Names
 from trusscalc.submitted.numbers import FORCE_UNITS
@@ -188,9 +188,7 @@ def read_submitted(
     source = opened(path_or_table)
     blocks = blocks_of(source, columns_of(columns))
     stated, titled = stated_in(blocks)
-    reader = RowReader(NameMatch(truss, names), {name.strip().casefold() for name in others})
-    for block in blocks.blocks:
-        reader.read(block)
+    reader, remarks = _rows_read(blocks, truss, names, {name.strip().casefold() for name in others})
     values, unit_name, notes, problems = values_of(reader.found, truss, decimal=decimal, unit=theirs, titled=titled)
     problems = [*reader.problems, *problems]
     values, means, *told = signed(values, convention, stated)
@@ -204,7 +202,23 @@ def read_submitted(
     if problems:
         raise FileFormatError(capped(problems), source=source.name)
     records = _records(kept)
-    return Submitted(source.name, source.digest, *records, means, unit_name, (*blocks.notes, *reader.notes(), *notes))
+    notes = [*blocks.notes, *remarks, *reader.notes(), *notes]
+    return Submitted(source.name, source.digest, *records, means, unit_name, tuple(notes))
+
+
+def _rows_read(
+    blocks: Blocks, truss: Truss, names: Names | None, others: Collection[str]
+) -> tuple[RowReader, list[str]]:
+    """Return the rows read under the name map, or under our own names where the map fits none of theirs."""
+    match = NameMatch(truss, names)
+    reader = RowReader(match, others)
+    reader.read(blocks.blocks)
+    if names and reader.problems and match.ours_are_plain:
+        plain = RowReader(NameMatch(truss), others)
+        plain.read(blocks.blocks)
+        if not plain.problems:
+            return plain, ["the table uses our own names: the name map was not needed"]
+    return reader, []
 
 
 def _records(

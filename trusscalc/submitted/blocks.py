@@ -214,7 +214,9 @@ class _Parting:
         if units is not None:
             self.units_rows.append(rows[0].number)
             head = replace(head, units={**head.units, **units})
-            rows = rows[1:]
+            again = [row.number for row in rows[1:] if row.cells == rows[0].cells]  # below a repeated head
+            self.units_rows += again
+            rows = [row for row in rows[1:] if row.number not in again]
         self.blocks.append(Block(head, tuple(rows)))
 
     def _titles(self, rows: Sequence[Row]) -> None:

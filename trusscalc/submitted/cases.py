@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from typing import Final
 
 from trusscalc.errors import InputError
+from trusscalc.filetext import one_line
 from trusscalc.submitted import Submitted, SubmittedDisplacement, SubmittedForce, SubmittedReaction
 from trusscalc.truss import did_you_mean
 
@@ -58,4 +59,4 @@ def _their_case(cases: Sequence[str], name: str, stated: str) -> tuple[str, list
     more = f" and {len(cases) - MOST_NAMED} more" if len(cases) > MOST_NAMED else ""
     near = did_you_mean(wanted, cases)
     message = f"the table has no case {wanted[:60]!r}; it has {shown}{more}{near}; say what it calls {name[:60]!r}"
-    raise InputError(message)
+    raise InputError(one_line(message))

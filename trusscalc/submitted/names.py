@@ -67,6 +67,8 @@ class NameMatch:
         self._links = {link.name: link.joint for link in truss.links}
         self.known = [m.name for m in truss.members]
         self._found: dict[str, str | None] = {}
+        self.map_used = False
+        """Whether some name has been found by the name map."""
 
     def _read(self, given: Mapping[str, str], joints: set[str]) -> None:
         by_ends = {frozenset(name.split("-")): name for name in self._members.values()}
@@ -84,9 +86,16 @@ class NameMatch:
         if problems:
             raise InputError(problems)
 
+    @property
+    def ours_are_plain(self) -> bool:
+        """Whether names of ours in the table can only be ours: the map has found nothing, and they are no numbers."""
+        return not self.map_used and not any(name.isdigit() for name in self._joint_of_theirs.values())
+
     def joint(self, cell: Cell) -> str | None:
         """Return the joint that a cell names, or None."""
-        return self._joints.find(text_of(cell))
+        found = self._joints.find(text_of(cell))
+        self.map_used |= found in self._joint_of_theirs.values()
+        return found
 
     def member(self, cell: Cell) -> str | None:
         """Return the member that a cell names, or None."""
@@ -112,15 +121,12 @@ class NameMatch:
     def _look_up(self, text: str) -> str | None:
         found = self._spelled.find(text)
         if found:
+            self.map_used |= found in self._member_of_theirs.values()
             return found
         plain = _plain(text)
         if len(plain) > LONGEST_MEMBER:
             return None
-        candidates = {
-            name
-            for start, end in _ends(plain)
-            if (name := self._members.get(frozenset((self._joints.find(start) or "", self._joints.find(end) or ""))))
-        }
+        candidates = {name for start, end in _ends(plain) if (name := self.between(start, end))}
         # 12 is a member's number, not the member 1-2
         if not candidates and not self._joint_of_theirs and not plain.isdigit():
             candidates = self._run_together.get(plain.casefold(), set())

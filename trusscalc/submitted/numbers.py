@@ -30,9 +30,10 @@ TYPOGRAPHY: Final = str.maketrans(
         **dict.fromkeys("\u2212\u2010\u2011\u2012\u2013\u2014\u2015\ufe63\uff0d", "-"),
         **dict.fromkeys("\u00a0\u2007\u2008\u2009\u200a\u202f\t", " "),
         **dict.fromkeys("\u2018\u2019\u2032\u02bc\u00b4", "'"),
+        **dict.fromkeys("\u200b\u200c\u200d\u2060\ufeff\u00ad"),
     }
 )
-"""Dashes, blanks and apostrophes as typists and spreadsheets set them."""
+"""Dashes, blanks and apostrophes as typists and spreadsheets set them; what has no width is dropped."""
 
 SENSES: Final[dict[str, Letter]] = {
     **dict.fromkeys(("t", "tension", "tensile", "tens"), "T"),

@@ -7,7 +7,7 @@ else that is not understood is a problem.
 from __future__ import annotations
 
 import re
-from collections.abc import Collection, Sequence
+from collections.abc import Collection, Iterable, Sequence
 from dataclasses import dataclass
 from typing import Final, Literal
 
@@ -19,6 +19,9 @@ from trusscalc.submitted.tables import Cell, Row
 
 Kind = Literal["force", "reaction", "displacement"]
 
+OF_BARS: Final = ("member", "start", "end", "force", "sense", "case")
+OF_JOINTS: Final = ("joint", *REACTIONS, *DISPLACEMENTS, "case")
+MOST_COLUMNS: Final = 8
 TOTALS: Final = re.compile(
     r"(grand )?(totals?|sums?|max(imum)?|min(imum)?|average|mean|extremes?)\b.{0,20}", re.IGNORECASE
 )
@@ -92,12 +95,20 @@ class RowReader:
         self.found: list[Raw] = []
         self.problems: list[str] = []
         self._skipped: dict[str, list[int]] = {}
+        self._columns: list[str] = []
         self._passed_over: dict[str, str] = {}
 
-    def read(self, block: Block) -> None:
-        """Read all rows of a block."""
+    def read(self, blocks: Iterable[Block]) -> None:
+        """Read all rows of some blocks."""
+        for block in blocks:
+            self._read(block)
+
+    def _read(self, block: Block) -> None:
         bars = "member" in block.head.columns or "start" in block.head.columns
         joints = "joint" in block.head.columns
+        used = {block.head.columns[role] for role in (OF_BARS if bars else OF_JOINTS) if role in block.head.columns}
+        used |= set(block.head.cases)
+        self._columns += [text for place, text in enumerate(block.head.texts) if text and place not in used]
         places = [block.head.columns[role] for role in ("member", "joint", "start") if role in block.head.columns]
         for row in block.rows:
             if reason := self._reason_to_skip(row, places):
@@ -111,7 +122,12 @@ class RowReader:
 
     def notes(self) -> list[str]:
         """Return which rows and cells were passed over, and why."""
-        return [f"{numbered(numbers)} {reason}" for reason, numbers in self._skipped.items()]
+        found = [f"{numbered(numbers)} {reason}" for reason, numbers in self._skipped.items()]
+        if self._columns:
+            shown = ", ".join(repr(text[:40]) for text in self._columns[:MOST_COLUMNS])
+            more = f" and {len(self._columns) - MOST_COLUMNS} more" if len(self._columns) > MOST_COLUMNS else ""
+            found.append(f"columns not read: {shown}{more}")
+        return found
 
     def _reason_to_skip(self, row: Row, places: Sequence[int]) -> str:
         first = next(cell for cell in row.cells if cell != "")
