@@ -6,7 +6,7 @@ import itertools
 import math
 from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
-from typing import TYPE_CHECKING, Final
+from typing import TYPE_CHECKING, Final, Literal
 
 from trusscalc.decimals import rounded
 from trusscalc.exact import Exact
@@ -16,7 +16,7 @@ from trusscalc.sheet.board import FULL_WIDTH, LIGHT, SMALL_SIZE, THIN, VALUE_SIZ
 from trusscalc.sheet.forcescale import Extent, force_scale
 from trusscalc.sheet.hatching import HatchedBoard
 from trusscalc.sheet.inscriptions import MINUS, Scale
-from trusscalc.sheet.lettering import Point, text_width
+from trusscalc.sheet.lettering import Point, box_of, text_width
 from trusscalc.sheet.marks import Figure, Label, Stroke
 from trusscalc.sheet.ordinates import BETWEEN
 
@@ -37,11 +37,13 @@ COMPRESSION_BAR: Final = 1.5
 BAR_EDGE: Final = 0.27
 AT_END: Final = 0.9
 ROW_GAP: Final = 1.6
+SHORTEST_GUIDE: Final = 2.5
 LEGEND_LINE: Final = 13.0
 LEGEND_GAP: Final = 6.0
 FIGURES: Final = 4
 MOST_PLACES: Final = 3
 MOST_TOLD: Final = 12
+Anchor = Literal["left", "right", "lower", "upper"]
 SENSES: Final = (
     ("T", "T, tension: single line"),
     ("C", "C, compression: double line"),
@@ -140,26 +142,23 @@ def _row(
     board = HatchedBoard()
     pitch = min(WIDEST_PITCH, min(ROOM, width - 2 * ROW_GAP) / len(members))
     centres = [(place + 0.5) * pitch for place in range(len(members))]
-    bars = [bar for each, x in zip(members, centres, strict=True) for bar in _bars(each, x, numbers, places)]
     board.line((0.0, 0.0), (pitch * len(members), 0.0), width=LIGHT, layer="symbol")
-    for bar in bars:
-        if bar.value:
-            draw_bar(board, (bar.x, 0.0), (bar.x, float(bar.value) * scale.paper), sense_of(bar.value))
-    angle = 0.0 if _is_level(bars) else 90.0
-    for bar in bars:
-        _letter_bar(board, bar, scale, angle)
+    pairs = [_bars(each, x, numbers, places) for each, x in zip(members, centres, strict=True)]
+    angle = 0.0 if _is_level([bar for pair in pairs for bar in pair]) else 90.0
+    lowest = []
+    for pair in pairs:
+        for bar in pair:
+            if bar.value:
+                draw_bar(board, (bar.x, 0.0), (bar.x, float(bar.value) * scale.paper), sense_of(bar.value))
+        lowest.append(min(0.0, *(_letter_bar(board, bar, scale, angle) for bar in pair)))
     names = [words.bar(each.member) for each in members]
     level = board.bounds[1] - ROW_GAP
     upright = max(text_width(name, SMALL_SIZE) for name in names) + BETWEEN > pitch
-    for each, x, name in zip(members, centres, names, strict=True):
-        if each.max.value.sign() >= 0 or each.max.value == each.min.value:  # else two bars stand beside this line
-            board.thin([((x, 0.0), (x, level))])
-        board.put(
-            "lettering",
-            Label((x, level), name, SMALL_SIZE, anchor="right", angle=90.0)
-            if upright
-            else Label((x, level), name, SMALL_SIZE, anchor="upper"),
-        )
+    for x, name, low in zip(centres, names, lowest, strict=True):
+        if low - level > SHORTEST_GUIDE:
+            board.thin([((x, low), (x, level))])
+        label = Label((x, level), name, SMALL_SIZE, anchor="upper")
+        board.put("lettering", replace(label, anchor="right", angle=90.0) if upright else label)
     board.draw_thin()
     return board
 
@@ -188,15 +187,14 @@ def _is_level(bars: Sequence[_Bar]) -> bool:
     return True
 
 
-def _letter_bar(board: Board, bar: _Bar, scale: Scale, angle: float) -> None:
-    """Write a bar's value at its end: tension above, compression below."""
+def _letter_bar(board: Board, bar: _Bar, scale: Scale, angle: float) -> float:
+    """Write a bar's value at its end, tension above and compression below, and return how low it reaches."""
     up = 1.0 if bar.up else -1.0
-    end = float(bar.value) * scale.paper + up * AT_END
-    label = Label((bar.x, end), bar.text, SMALL_SIZE, angle=angle)
-    if angle:
-        board.put("lettering", replace(label, anchor="left" if up > 0 else "right"))
-    else:
-        board.put("lettering", replace(label, anchor="lower" if up > 0 else "upper"))
+    label = Label((bar.x, float(bar.value) * scale.paper + up * AT_END), bar.text, SMALL_SIZE, angle=angle)
+    anchors: tuple[Anchor, Anchor] = ("left", "right") if angle else ("lower", "upper")
+    label = replace(label, anchor=anchors[0] if bar.up else anchors[1])
+    board.put("lettering", label)
+    return box_of(label).bounds[1]
 
 
 def draw_bar(board: Board, start: Point, end: Point, sense: str) -> None:

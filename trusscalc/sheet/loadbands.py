@@ -17,8 +17,6 @@ LEVEL_ARROW: Final = 4.0
 HEAD: Final = (1.5, 0.9)
 LOWEST_ARROW: Final = 1.2
 """Height of a band, mm, below which it holds no arrow."""
-ACROSS: Final = 0.3
-"""Part of a load across its line (sine of the angle) from which its arrows stand between the band's edges."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -35,12 +33,15 @@ class Band:
         Unit vector from the base to the other edge.
     way : Point
         Unit vector in which the load acts.
+    lengthwise : bool
+        Whether its arrows lie in the band, for a load along its line, instead of standing between the edges.
     """
 
     base: tuple[Point, Point]
     heights: tuple[float, float]
     side: Point
     way: Point
+    lengthwise: bool = False
 
     def at(self, share: float) -> tuple[Point, Point]:
         """Return the points of base and other edge at a share of the length."""
@@ -67,8 +68,7 @@ def draw_band(board: Board, band: Band) -> None:
 
 def _arrows(band: Band) -> Iterator[tuple[Point, Point]]:
     length = math.dist(*band.base)
-    across = band.way[0] * band.side[0] + band.way[1] * band.side[1]
-    if abs(across) < ACROSS:
+    if band.lengthwise:
         count = max(1, math.floor(length / LEVEL_SPACING))
         half = min(LEVEL_ARROW, length) / 2
         for number in range(count):
@@ -77,11 +77,12 @@ def _arrows(band: Band) -> Iterator[tuple[Point, Point]]:
                 middle = ((foot[0] + edge[0]) / 2, (foot[1] + edge[1]) / 2)
                 yield along(middle, band.way, -half), along(middle, band.way, half)
         return
+    presses = band.way[0] * band.side[0] + band.way[1] * band.side[1] < 0
     count = max(1, round(length / ARROW_SPACING))
     for number in range(count + 1):
         foot, edge = band.at(number / count)
         if math.dist(foot, edge) >= LOWEST_ARROW:
-            yield (edge, foot) if across < 0 else (foot, edge)
+            yield (edge, foot) if presses else (foot, edge)
 
 
 def level_band(start: float, end: float, level: float, height: float) -> Band:
