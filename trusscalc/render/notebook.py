@@ -17,8 +17,8 @@ from trusscalc.render.markdown import Svg, image, markdown
 from trusscalc.render.text import blocks_text, step_text
 from trusscalc.sheet.blocks import Block, Derivation, Heading, Listing, Origin, Sheet
 from trusscalc.sheet.digest import record_of
+from trusscalc.sheet.inputecho import INPUT
 from trusscalc.sheet.marks import Figure
-from trusscalc.sheet.record import INPUT
 
 PLACES: Final = 3
 """Decimal places of a check shown in a notebook without further words."""

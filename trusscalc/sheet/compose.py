@@ -19,6 +19,7 @@ from trusscalc.sheet.blocks import Block, Derivation, Heading, Origin, Picture, 
 from trusscalc.sheet.derivation import Writer, writer_of
 from trusscalc.sheet.detail import DETAILS, Detail, bodies_drawn_once, shown
 from trusscalc.sheet.figures import Figure
+from trusscalc.sheet.inputecho import input_echo
 from trusscalc.sheet.words import found_in
 from trusscalc.truss import Truss
 from trusscalc.trussfile import TrussFile
@@ -90,13 +91,21 @@ def compose(
     steps = shown(check, detail)
     summary = tuple(front.summary(writer, steps=told))
     blocks: list[Block] = [
-        front.title_block(check, project),
+        front.title_block(check.truss, project),
         *front.opening(check, project),
         *summary,
         *([Picture((figures.elevation(drawn if told else replace(drawn, steps=())),))] if drawings else []),
         *front.scope(check, detail),
-        *record.basis(check, text, places),
-        *record.input_echo(writer, project, text, verbatim=detail == "all"),
+        *record.basis(check.truss, check.tolerance, text, places),
+        *input_echo(
+            check.truss,
+            check.case,
+            project,
+            text,
+            places,
+            verbatim=detail == "all",
+            amounts=[part for load in check.case.loads for part in (load.fx, load.fy)],
+        ),
         *record.loads(writer),
         *record.reactions(writer, steps=told),
         *derivations(writer, steps.main, drawings=drawings, each_drawn=detail == "all"),
@@ -132,7 +141,7 @@ def derivations(
         beside, drawn_as = once.get(step.number, (step.number, step.number))
         own: Sequence[Figure] = ()
         if drawings and beside == step.number:
-            own = figures.free_body(drawn, drawn.steps[drawn_as - 1])
+            own = figures.free_body(drawn, next(other for other in drawn.steps if other.number == drawn_as))
         if own and drawn_as != beside:
             own = tuple(replace(figure, caption=f"{figure.caption} As step {drawn_as} uses it.") for figure in own)
         blocks.append(writer.derivation(step, own, drawn_with=beside if beside != step.number else 0))

@@ -280,7 +280,7 @@ def _sources(check: MemberCheck) -> tuple[Mapping[str, int], Mapping[str, int], 
     """Return the step from which each force is known, the step it was told in, and the letters carried."""
     carried = {name: letter for step in check.steps for name, letter in step.carries.items()}
     told_in = {name: step.number for step in check.steps for name in step.solves_in}
-    solved_in = dict.fromkeys(told_in, len(check.steps) + 1)
+    solved_in = dict.fromkeys(told_in, check.steps[-1].number + 1 if check.steps else 1)
     waiting: dict[str, set[str]] = {}
     for step in check.steps:
         solved_in |= dict.fromkeys(step.solves, step.number)

@@ -24,6 +24,7 @@ from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, sense, tension_of
 from trusscalc.sheet.detail import Detail, shown
 from trusscalc.sheet.values import DIGITS, bound, decimal_text, difference, is_readable, printed, scientific
 from trusscalc.sheet.words import bar, capital, counted, listed
+from trusscalc.truss import Truss
 
 TITLE = "Independent check of truss member forces"
 MOST_NAMED = 24
@@ -52,10 +53,10 @@ FIELDS = (
 )
 
 
-def title_block(check: MemberCheck, project: Project) -> TitleBlock:
+def title_block(truss: Truss, project: Project) -> TitleBlock:
     """Return the title block; the structure's name comes from the truss when the project has none."""
     entries = {field: getattr(project, field) for field in FIELDS}
-    entries["structure"] = entries["structure"] or check.truss.title
+    entries["structure"] = entries["structure"] or truss.title
     return TitleBlock(tuple((capital(field), entries[field]) for field in FIELDS))
 
 

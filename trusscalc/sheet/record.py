@@ -5,6 +5,7 @@ from __future__ import annotations
 import hashlib
 from collections.abc import Sequence
 from importlib.metadata import version
+from typing import Final
 
 from trusscalc.exact import ZERO, Exact
 from trusscalc.membercheck import TOLERANCE, MemberCheck
@@ -16,17 +17,17 @@ from trusscalc.sheet.blocks import (
     Heading,
     Inline,
     Items,
-    Listing,
     Paragraph,
     Power,
     Run,
     Table,
 )
-from trusscalc.sheet.compact import ends_within, is_blank, together, without_columns
+from trusscalc.sheet.compact import together
 from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, tension_of, without_sense
 from trusscalc.sheet.front import MOST_NAMED, unchecked
-from trusscalc.sheet.values import decimal_text, is_readable, printed, scientific
-from trusscalc.sheet.words import bar, capital, counted, listed
+from trusscalc.sheet.values import decimal_text, printed, scientific
+from trusscalc.sheet.words import bar, counted, listed
+from trusscalc.truss import Truss
 
 ASSUMPTIONS = (
     ("Members meet in frictionless hinges at their ends.", "Stiff joints add bending; axial forces change a little."),
@@ -54,16 +55,9 @@ METHOD = (
     "by hand: joints and sections, one equation for one unknown where there is one, in exact arithmetic; "
     "independently: displacement method in floating point. The two share the stated truss and loads only"
 )
+NO_CODES: Final = (("Codes", (Run("none applied: loads and combinations are taken as stated"),)),)
 WELL_CONDITIONED = "what double precision keeps of a well-conditioned truss; more is a mistake, not a tolerance"
 ILL_CONDITIONED = "ten times the rounding error to be expected of the numeric route at the condition told below"
-
-INPUT = "Input"
-NOT_VERBATIM = (
-    "The truss file is not printed word by word: these tables, with the loads and the title block, say all that it "
-    "states of this load case. Its digest stands under Basis."
-)
-UNGROUPED = "members"
-"""What members are called that were stated without groups."""
 
 AXIAL_ONLY = (
     "This sheet checks axial forces of an ideal truss only. It says nothing about the strength, stability, "
@@ -91,17 +85,25 @@ def digest(truss_text: str) -> str:
     return hashlib.sha256(truss_text.encode()).hexdigest()
 
 
-def basis(check: MemberCheck, truss_text: str, places: int) -> list[Block]:
+def basis(
+    truss: Truss,
+    tolerance: float,
+    truss_text: str,
+    places: int,
+    *,
+    method: str = METHOD,
+    codes: Sequence[tuple[str, tuple[Inline, ...]]] = NO_CODES,
+) -> list[Block]:
     """Return assumptions, conventions, rounding, tolerance, program and digest."""
     rows = tuple((Run(str(place)), Run(a), Run(b)) for place, (a, b) in enumerate(ASSUMPTIONS, 1))
     table = Table((Column("no.", "right"), Column("assumption"), Column("consequence where it fails")), rows)
-    length, force = check.truss.length, check.truss.force
+    length, force = truss.length, truss.force
     units = f"lengths in {length}, forces in {force}, moments in {force} {length}"
     rounding = f"round half to even, once, from the exact value, to {places} decimal places; {NEVER_FED_ON}"
-    reason = WELL_CONDITIONED if check.tolerance <= TOLERANCE else ILL_CONDITIONED
-    tolerance = (
+    reason = WELL_CONDITIONED if tolerance <= TOLERANCE else ILL_CONDITIONED
+    apart = (
         Run("the two routes agree within "),
-        scientific(check.tolerance, 2),
+        scientific(tolerance, 2),
         Run(f" of the largest force: {reason}"),
     )
     items: list[tuple[str, tuple[Inline, ...]]] = [
@@ -109,119 +111,13 @@ def basis(check: MemberCheck, truss_text: str, places: int) -> list[Block]:
         ("Signs", (Run(SIGNS),)),
         ("Symbols", (Run(SYMBOLS),)),
         ("Rounding", (Run(rounding),)),
-        ("Tolerance", tolerance),
-        ("Method", (Run(METHOD),)),
-        ("Codes", (Run("none applied: loads and combinations are taken as stated"),)),
+        ("Tolerance", apart),
+        ("Method", (Run(method),)),
+        *codes,
         ("Program", (Run(program()),)),
         ("Input digest", (Run(f"SHA-256 of the truss file: {digest(truss_text)}"),)),
     ]
     return [Heading(2, "Basis"), table, Items(tuple(items))]
-
-
-# --- input ------------------------------------------------------------------------------------------------
-
-
-def input_echo(writer: Writer, project: Project, truss_text: str, *, verbatim: bool = True) -> list[Block]:
-    """Return joints, members with their lengths, supports, other names, and, ``verbatim``, the truss file itself."""
-    check = writer.check
-    truss = check.truss
-    other = project.names
-    joints = tuple(
-        (Run(joint.name), *_both(writer, joint.x), *_both(writer, joint.y), Run(other.get(joint.name, "")))
-        for joint in truss.joints
-    )
-    bars = writer.teller.structure.bars
-    members = []
-    for member in truss.members:
-        length = bars[member.name].length
-        others = next((other[n] for n in (member.name, f"{member.end}-{member.start}") if n in other), "")
-        cells = (Run(bar(member.name)), Run(member.group), *_both(writer, length), Run(others))
-        members.append((*cells, Run(_behaviour(check, member.name))))
-    unit = truss.length
-    joint_table = Table(
-        (
-            Column("joint"),
-            Column(f"x exact, {unit}", "right"),
-            Column("decimal", "right"),
-            Column(f"y exact, {unit}", "right"),
-            Column("decimal", "right"),
-            Column("name elsewhere"),
-        ),
-        joints,
-        f"{capital(counted(len(joints), 'joint'))}.",
-    )
-    member_table = Table(
-        (
-            Column("member"),
-            Column("group"),
-            Column(f"length exact, {unit}", "right"),
-            Column("decimal", "right"),
-            Column("name elsewhere"),
-            Column("stated behaviour"),
-        ),
-        together(members),
-        f"{capital(counted(len(members), 'member'))}; lengths calculated from the joints.",
-    )
-    stated = [part for joint in truss.joints for part in (joint.x, joint.y)]
-    directions = [part for link in truss.links for part in (link.dx, link.dy)]
-    forces = [part for load in check.case.loads for part in (load.fx, load.fy)]
-    whole = all(map(is_readable, (*stated, *directions, *forces)))
-    blocks: list[Block] = [
-        Heading(2, INPUT),
-        _close(joint_table, stated, writer.places),
-        _close(member_table, [bars[member.name].length for member in truss.members], writer.places),
-        _supports(check),
-    ]
-    if verbatim or not whole:
-        blocks.append(Listing(truss_text, "The truss file, as read"))
-    else:
-        blocks.append(Paragraph((Run(NOT_VERBATIM),), "note"))
-    return blocks
-
-
-def _close(table: Table, values: Sequence[Exact], places: int) -> Table:
-    """Return a table without what tells nothing: empty columns, one group for all, decimals of short decimals."""
-    exact = all(ends_within(value, places) for value in values)
-
-    def idle(place: int, cells: Sequence[Inline | None]) -> bool:
-        head = table.columns[place].head
-        ungrouped = head == "group" and set(cells) == {Run(UNGROUPED)}
-        return is_blank(cells) or ungrouped or (head == "decimal" and exact)
-
-    return without_columns(table, idle)
-
-
-def _both(writer: Writer, value: Exact) -> tuple[Inline, Inline]:
-    return printed(value, writer.check.case), _near(writer.check.value(value), writer.places)
-
-
-def _near(value: Exact, places: int) -> Decimals:
-    return Decimals(decimal_text(value, places))
-
-
-def _behaviour(check: MemberCheck, name: str) -> str:
-    listed_names = {check.truss.member(other).name for other in check.truss.tension_only}
-    return "tension only" if name in listed_names else ""
-
-
-def _supports(check: MemberCheck) -> Table:
-    rows = []
-    for support in check.truss.supports:
-        kind = {"pin": "pin", "roller": "roller"}.get(support.kind, counted(len(support.links), "link"))
-        for place, link in enumerate(support.links):
-            head = (Run(support.joint), Run(kind)) if place == 0 else (None, None)
-            uplift = "no uplift" if place == 0 and support.joint in check.truss.no_uplift else ""
-            direction = (printed(link.dx, check.case), printed(link.dy, check.case))
-            rows.append((*head, Run(bar(link.name)), *direction, Run(uplift)))
-    columns = (
-        Column("support"),
-        Column("kind"),
-        Column("reaction"),
-        Column("direction x", "right"),
-        Column("direction y", "right"),
-        Column("stated behaviour"),
-    )
-    return Table(columns, tuple(rows), "A reaction is positive when it acts on the truss along its direction.")
 
 
 # --- loads and reactions ----------------------------------------------------------------------------------
@@ -248,6 +144,10 @@ def loads(writer: Writer) -> list[Block]:
     return [Heading(2, "Loads"), Table(tuple(columns), tuple(rows), caption, totals=1)]
 
 
+def _near(value: Exact, places: int) -> Decimals:
+    return Decimals(decimal_text(value, places))
+
+
 def _force_cells(writer: Writer, fx: Exact, fy: Exact, symbolic: bool) -> tuple[Inline, ...]:
     case = writer.check.case
     exact = (printed(fx, case), printed(fy, case))
@@ -258,19 +158,25 @@ def _force_cells(writer: Writer, fx: Exact, fy: Exact, symbolic: bool) -> tuple[
 
 def reactions(writer: Writer, *, steps: bool = True) -> list[Block]:
     """Return the reactions and the proof that they balance the loads; ``steps`` says whether it may point at them."""
+    return [Heading(2, "Reactions"), *reaction_tables(writer, steps=steps)]
+
+
+def reaction_tables(writer: Writer, *, steps: bool = True) -> list[Block]:
+    """Return the same without a heading."""
     check = writer.check
+    by_number = {step.number: step for step in check.steps}
     rows, strong = [], []
     for place, (name, found) in enumerate(check.reactions.items()):
         cells = writer.result_cells(name, found.exact, found)
         source = f"step {found.steps[-1]}" if found.steps else "not decided by statics"
         if found.steps and not steps:
-            source = writer.teller.found_by(check.steps[found.steps[-1] - 1])
+            source = writer.teller.found_by(by_number[found.steps[-1]])
         rows.append((Run(bar(name)), Run(source), *cells))
         if found.verdict == "differs":
             strong.append(place)
     columns, rows = without_sense((Column("reaction"), Column("derived by"), *RESULT_COLUMNS), rows)
     table = Table(columns, tuple(rows), f"Forces on the truss in {check.truss.force}.", tuple(strong))
-    return [Heading(2, "Reactions"), table, *_balance(writer)]
+    return [table, *_balance(writer)]
 
 
 def _balance(writer: Writer) -> list[Block]:
@@ -318,16 +224,8 @@ def _resultant(forces: list[tuple[str, Exact, Exact]], check: MemberCheck) -> tu
 
 def cross_check(check: MemberCheck) -> list[Block]:
     """Return what the independent route says of itself."""
+    count = count_and_rank(check)
     statics = check.statics
-    count = f"{statics.members} members + {statics.reactions} reactions against 2 × {statics.joints} joints"
-    count += f", rank {statics.rank}"
-    if statics.determinate:
-        count += ": stable and statically determinate"
-    else:
-        degree = statics.members + statics.reactions - statics.rank
-        count += f": stable, statically indeterminate to degree {degree}"
-        if check.redundancy:
-            count += f" ({check.redundancy.external} by the supports, {check.redundancy.internal} by the members)"
     if not statics.determinate:
         joints = "not closed exactly: the truss is statically indeterminate"
     elif check.residuals:
@@ -338,17 +236,32 @@ def cross_check(check: MemberCheck) -> list[Block]:
     items: list[tuple[str, tuple[Inline, ...]]] = [
         ("Count and rank", (Run(count),)),
         ("Joints", (Run(joints),)),
-        *_shared(check),
+        *shared_redundancy(check),
         ("No force in this case", (Run(_idle(check)),)),
         (
             "Stiffness route",
-            (Run("imbalance at the worst joint "), _small(check.stiffness_residual), Run(" of the largest force")),
+            (Run("imbalance at the worst joint "), noise(check.stiffness_residual), Run(" of the largest force")),
         ),
-        ("Condition", (Run("estimated condition number "), _size(check.condition))),
+        ("Condition", (Run("estimated condition number "), condition_size(check.condition))),
         *_not_checked(check),
         ("Independence", (Run("the two routes share no arithmetic; they share geometry, supports and loads"),)),
     ]
     return [Heading(2, "Cross-check"), Items(tuple(items))]
+
+
+def count_and_rank(check: MemberCheck) -> str:
+    """Return the count of members, reactions and joints, the rank, and what follows."""
+    statics = check.statics
+    count = f"{statics.members} members + {statics.reactions} reactions against 2 × {statics.joints} joints"
+    count += f", rank {statics.rank}"
+    if statics.determinate:
+        count += ": stable and statically determinate"
+    else:
+        degree = statics.members + statics.reactions - statics.rank
+        count += f": stable, statically indeterminate to degree {degree}"
+        if check.redundancy:
+            count += f" ({check.redundancy.external} by the supports, {check.redundancy.internal} by the members)"
+    return count
 
 
 def _not_checked(check: MemberCheck) -> list[tuple[str, tuple[Inline, ...]]]:
@@ -357,7 +270,7 @@ def _not_checked(check: MemberCheck) -> list[tuple[str, tuple[Inline, ...]]]:
     return [("Members not checked", (Run(listed(map(bar, names))),))] if len(names) > MOST_NAMED else []
 
 
-def _shared(check: MemberCheck) -> list[tuple[str, tuple[Inline, ...]]]:
+def shared_redundancy(check: MemberCheck) -> list[tuple[str, tuple[Inline, ...]]]:
     """Return who shares the redundancy of an indeterminate truss."""
     if not check.redundancy:
         return []
@@ -373,22 +286,23 @@ def _idle(check: MemberCheck) -> str:
     return "; ".join(f"{listed(names)} ({reason})" for reason, names in by_reason.items()) or "none"
 
 
-def _small(size: float) -> Inline:
+def noise(size: float) -> Inline:
     """Return a float's noise as a bound that is the same on every machine."""
     if size < 1e-12:  # noqa: PLR2004 - what double precision leaves
         return Power("", -12, below=True)
     return scientific(size, 1) if size < float("inf") else Run("not a number")
 
 
-def _size(condition: float) -> Inline:
+def condition_size(condition: float) -> Inline:
+    """Return a condition estimate as it is printed."""
     if not condition < float("inf"):
         return Run("infinite")
     return scientific(condition, 1) if condition >= 1000 else Decimals(f"{condition:.0f}")  # noqa: PLR2004
 
 
-def cautions() -> list[Block]:
+def cautions(texts: Sequence[str] = CAUTIONS) -> list[Block]:
     """Return what every user of the sheet has to be told."""
-    return [Heading(2, "Cautions"), *(Paragraph((Run(text),), "caution") for text in CAUTIONS)]
+    return [Heading(2, "Cautions"), *(Paragraph((Run(text),), "caution") for text in texts)]
 
 
 def revisions(project: Project) -> list[Block]:
@@ -403,7 +317,6 @@ __all__ = [
     "cautions",
     "cross_check",
     "digest",
-    "input_echo",
     "loads",
     "program",
     "reactions",
