@@ -52,6 +52,9 @@ LAYERS = (
         "membercheck",
         "influencetargets",
         "influence",
+        "criticalpositions",
+        "loadedline",
+        "passage",
         "travel",
         "standing",
         "superposition",
@@ -86,13 +89,13 @@ CONFINED = {
     "matplotlib": {"render.draw"},
     "nbformat": {"render.notebook"},
     "typst": {"render.pdf"},
-    "ipywidgets": {"widgets.form", "widgets.screen"},
+    "ipywidgets": {"widgets.form", "widgets.onscreen", "widgets.trainscreen"},
     "anywidget": {"widgets.views"},
     "traitlets": {"widgets.views"},
     "importlib": {"__init__", "convenience"},  # what is loaded by name is not seen here
 }
 HEAVY = {"matplotlib", "nbformat", "typst", "ipywidgets", "anywidget", "traitlets", "IPython"}
-SHOWN_LATE = {"widgets.form", "widgets.screen", "widgets.views"}
+SHOWN_LATE = {f"widgets.{name}" for name in ("form", "onscreen", "screen", "trainscreen", "views")}
 """Modules that may import what is heavy at once, because others import them only when something is shown."""
 
 Imports = list[tuple[str, str, bool]]
