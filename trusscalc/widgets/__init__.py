@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
-from typing import Any
+from collections.abc import Iterable, Iterator, Mapping
+from contextlib import contextmanager
+from typing import TYPE_CHECKING, Any
 
 from trusscalc.errors import InputError, RenderError
 from trusscalc.loads import LoadCase
@@ -11,6 +12,9 @@ from trusscalc.statics.owncuts import OwnCut
 from trusscalc.truss import Truss
 from trusscalc.trussfile import TrussFile
 from trusscalc.widgets.exploration import Exploration, names_of
+
+if TYPE_CHECKING:
+    from trusscalc.widgets.travelling import Travel
 
 __all__ = ["Exploration", "explore"]
 
@@ -68,16 +72,30 @@ def explore(
     if not names:
         message = "there are no loads to explore: state a load case"
         raise InputError(message)
-    return Exploration(stated, case=name or names[0], members=members, cuts=cuts, screen_of=_screen_of)
+    screens: dict[str, Any] = {"screen_of": _screen_of, "train_screen_of": _train_screen_of}
+    return Exploration(stated, case=name or names[0], members=members, cuts=cuts, **screens)
 
 
 def _screen_of(exploration: Exploration) -> Any:
     """Return drawing and form of an exploration."""
-    try:
+    with _told_what_is_missing():
         from trusscalc.widgets.screen import Screen  # noqa: PLC0415 - what it brings along is slow to import
-    except ImportError as problem:
-        message = (
-            f"the drawing needs a package that is not installed ({problem.name}): pip install 'trusscalc[widgets]'"
-        )
-        raise RenderError(message) from None
     return Screen(exploration)
+
+
+def _train_screen_of(travel: Travel) -> Any:
+    """Return drawing and form of a train on its chain."""
+    with _told_what_is_missing():
+        from trusscalc.widgets.trainscreen import TrainScreen  # noqa: PLC0415
+    return TrainScreen(travel)
+
+
+@contextmanager
+def _told_what_is_missing() -> Iterator[None]:
+    """Turn a failed import into a RenderError that says what to install."""
+    try:
+        yield
+    except ImportError as problem:
+        need = f"the drawing needs {problem.name}, which is not installed"
+        message = f"{need}: python -m pip install 'trusscalc[widgets]'"
+        raise RenderError(message) from None

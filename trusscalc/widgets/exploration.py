@@ -9,7 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import replace
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from trusscalc.errors import InputError, UnknownNameError
 from trusscalc.exacttext import number
@@ -18,12 +18,16 @@ from trusscalc.membercheck import MemberCheck, check_members
 from trusscalc.render.notebook import Bundle
 from trusscalc.statics.cuts import About
 from trusscalc.statics.owncuts import OwnCut, own_cut
+from trusscalc.trains import Train
 from trusscalc.truss import Truss, did_you_mean
 from trusscalc.trussfile import TrussFile
 from trusscalc.widgets.answers import Answer, answer
 from trusscalc.widgets.choices import Choices, typed_centre
 from trusscalc.widgets.crossings import Point
 from trusscalc.widgets.frozen import Present, frozen_bundle
+
+if TYPE_CHECKING:
+    from trusscalc.widgets.travelling import Travel
 
 Kept = tuple[tuple[str, tuple[str, ...]], ...]
 
@@ -41,8 +45,8 @@ class Exploration:
         Members to be checked.
     cuts : mapping of str to OwnCut, optional
         For some members the cut to derive them from.
-    screen_of : callable, optional
-        Makes what is shown in a cell, when it is first shown there; without it only the static form is.
+    screen_of, train_screen_of : callable, optional
+        Make what is shown in a cell, when it is first shown there; without them only the static forms are.
 
     Raises
     ------
@@ -69,9 +73,11 @@ class Exploration:
         members: Iterable[str] = (),
         cuts: Mapping[str, OwnCut] | None = None,
         screen_of: Callable[[Exploration], Any] | None = None,
+        train_screen_of: Callable[[Travel], Any] | None = None,
     ) -> None:
         self.stated = stated
         self._screen_of = screen_of or Unseen
+        self._train_screen_of = train_screen_of
         self.watchers: list[Callable[[], None]] = []
         self._screen: Any = None
         self._checks: dict[tuple[str, tuple[str, ...], Kept], MemberCheck] = {}
@@ -275,6 +281,34 @@ class Exploration:
         names = [self.truss.member(name).name for name in members] or list(self.members)
         self.choices = self.choices.without(names)
 
+    # --- moving loads -------------------------------------------------------------------------------------
+
+    def travel(self, target: str, train: str | Train, along: str | Sequence[str]) -> Travel:
+        """Return a train on a chain over the influence line of one force; shown in a cell, it can be dragged.
+
+        Parameters
+        ----------
+        target : str
+            A member, a reaction such as ``L0.y``, or the shear in a panel, ``V(L2-L3)``.
+        train : str or Train
+            A train of the truss file, or a shipped one, by name; or a train.
+        along : str or sequence of str
+            A chain of the truss file by name, or joints such as ``"L0,L1,L2"``.
+
+        Raises
+        ------
+        UnknownNameError, InputError
+            For names that are not there, or a chain that does not fit the truss.
+        UndecidedError
+            When statics does not decide the force.
+        """
+        from trusscalc.influence import influence_line  # noqa: PLC0415 - most explorations have no train
+        from trusscalc.widgets.travelling import Travel  # noqa: PLC0415
+
+        line = influence_line(self.truss, target, self.stated.chain(along))
+        trains = (train,) if isinstance(train, Train) else self.stated.train(train)
+        return Travel(line, trains, screen_of=self._train_screen_of)
+
     # --- on file ------------------------------------------------------------------------------------------
 
     def frozen(self) -> Bundle:
@@ -341,8 +375,13 @@ class Unseen:
 
 def names_of(stated: TrussFile) -> tuple[str, ...]:
     """Return the cases and combinations of a truss file that are one load case each."""
-    single = [each.name for each in stated.combinations if all(len(factors) == 1 for _, factors in each.factors)]
-    return (*(case.name for case in stated.cases), *single)
+    moving = {load.name for load in stated.moving}
+    single = [
+        each.name
+        for each in stated.all_combinations
+        if all(len(factors) == 1 and case not in moving for case, factors in each.factors)
+    ]
+    return (*(case.name for case in stated.acting), *single)
 
 
 def _point(values: Sequence[object]) -> Point:

@@ -11,7 +11,7 @@ from typing import Any
 import ipywidgets
 
 from trusscalc.loads import factor_text
-from trusscalc.render.notebook import Bundle, bundle
+from trusscalc.render.notebook import bundle
 from trusscalc.sheet.detail import DETAILS
 from trusscalc.sheet.words import about_words, capital
 from trusscalc.statics.cutreport import Possibility
@@ -20,6 +20,7 @@ from trusscalc.widgets.choices import typed_centre, typed_direction, typed_line
 from trusscalc.widgets.cutblocks import answer_blocks, possibility_words
 from trusscalc.widgets.exploration import Exploration
 from trusscalc.widgets.frozen import check_blocks
+from trusscalc.widgets.onscreen import button, control, show_in
 
 Act = Callable[[Callable[[], None]], None]
 """Makes a move, and tells what went wrong with it."""
@@ -35,14 +36,14 @@ class Form:
     ----------
     exploration : Exploration
         What they show and change.
-    act : callable
-        Makes a move and shows its errors.
+    act, changed : callable
+        Make a move and show its errors; ``changed`` only when a person has changed a control.
     """
 
-    def __init__(self, exploration: Exploration, act: Act) -> None:
+    def __init__(self, exploration: Exploration, act: Act, changed: Act) -> None:
         self.exploration = exploration
         self.act = act
-        self.showing = False
+        self.changed = changed
         truss = exploration.truss
         members = [(member.name.replace("-", "–"), member.name) for member in truss.members]
         joints = [joint.name for joint in truss.joints]
@@ -74,14 +75,7 @@ class Form:
 
     def control(self, kind: Any, description: str, change: Callable[[Any], None], **options: Any) -> Any:
         """Return a control whose changes make a move."""
-        control = kind(
-            description=description,
-            style={"description_width": "8em"},
-            layout={"width": "21em"},
-            **options,
-        )
-        control.observe(lambda event: self.changed(change, event["new"]), names="value")
-        return control
+        return control(kind, description, lambda value: self.changed(lambda: change(value)), **options)
 
     def typed(self, description: str, change: Callable[[str], None], example: str) -> Any:
         """Return a line to type in, read when Enter is pressed or it is left."""
@@ -89,14 +83,7 @@ class Form:
 
     def button(self, text: str, move: Callable[[], None]) -> Any:
         """Return a button that makes a move."""
-        button = ipywidgets.Button(description=text, layout={"width": "auto", "min_height": "28px"})
-        button.on_click(lambda _: self.act(move))
-        return button
-
-    def changed(self, change: Callable[[Any], None], value: Any) -> None:
-        """Make the move of a control that a person has changed; what the program sets itself is no move."""
-        if not self.showing:
-            self.act(lambda: change(value))
+        return button(text, lambda: self.act(move))
 
     def laid_out(self) -> Any:
         """Return everything in its place: what to do with a cut, then the choices, then the answers."""
@@ -155,14 +142,10 @@ class Form:
     def show(self) -> None:
         """Show the present state in every control, and the typeset answer first."""
         present = self.exploration.present
-        self.showing = True
-        try:
-            show_in(self.answer, bundle(answer_blocks(present.answer)) if present.answer else {})
-            self.show_choices()
-            blocks = check_blocks(present)
-            show_in(self.check, bundle(blocks) if blocks else {})
-        finally:
-            self.showing = False
+        show_in(self.answer, bundle(answer_blocks(present.answer)) if present.answer else {})
+        self.show_choices()
+        blocks = check_blocks(present)
+        show_in(self.check, bundle(blocks) if blocks else {})
 
     def show_choices(self) -> None:
         """Set every control to what was chosen."""
@@ -186,11 +169,6 @@ class Form:
         self.side.disabled = not choices.kept
         self.nearest.disabled = not (answer and answer.nearest)
         self.forget.disabled = not choices.members
-
-
-def show_in(output: Any, data: Bundle) -> None:
-    """Show a bundle in an output area, or nothing."""
-    output.outputs = ({"output_type": "display_data", "data": data, "metadata": {}},) if data else ()
 
 
 def _typed(about: About | None) -> tuple[str, str]:

@@ -1,26 +1,22 @@
-"""An exploration on the screen: drawing and form, what they report, what went wrong, and the form on file."""
+"""An exploration on the screen: the drawing and its form, bound to what is chosen."""
 
 from __future__ import annotations
 
-import secrets
-from collections.abc import Callable
 from typing import Any
 
-import ipywidgets
-from IPython.display import display, update_display
-
-from trusscalc.errors import InputError, TrusscalcError
+from trusscalc.errors import InputError
 from trusscalc.exacttext import number
 from trusscalc.widgets.cutblocks import in_one_sentence
 from trusscalc.widgets.exploration import Exploration
 from trusscalc.widgets.form import Form
+from trusscalc.widgets.onscreen import OnScreen
 from trusscalc.widgets.pagedata import state_data, truss_data
 from trusscalc.widgets.views import TrussDrawing
 
 INVITATION = "Drag across members to draw a section, or choose joints to keep."
 
 
-class Screen:
+class Screen(OnScreen):
     """Drawing and form of one exploration.
 
     Parameters
@@ -31,75 +27,25 @@ class Screen:
 
     def __init__(self, exploration: Exploration) -> None:
         self.exploration = exploration
-        self.problem = ""
-        self.turn = 0
-        self.displays = 0
-        self.views = 0
-        self.name = f"trusscalc-{secrets.token_hex(8)}"
-        self.drawing = TrussDrawing(truss=truss_data(exploration.truss))
-        self.form = Form(exploration, self.act)
-        self.box = ipywidgets.VBox([self.drawing, self.form.box])
-        self.drawing.on_msg(lambda _, content, __: self.received(content))
+        super().__init__(TrussDrawing(truss=truss_data(exploration.truss)), exploration.frozen)
+        self.form = Form(exploration, self.act, self.changed)
+        self.box.children = (self.drawing, self.form.box)
         exploration.watchers.append(self.show)
         self.show()
 
-    def display(self) -> None:
-        """Show drawing and form in the running cell, and beside them the form that stays on file."""
-        self.displays += 1
-        display(self.box)
-        display(self.exploration.frozen(), raw=True, display_id=self.name)
-
-    def show(self) -> None:
-        """Show the present state: the answer at once, then the form on file."""
-        self.problem = ""
-        self.show_now()
-        if self.displays:
-            update_display(self.exploration.frozen(), raw=True, display_id=self.name)
-
-    def show_now(self) -> None:
-        """Show the present state in drawing and form."""
+    def state(self) -> dict[str, Any]:
+        """Return everything that is drawn, and what the last move has given in a sentence."""
         present = self.exploration.present
-        self.turn += 1  # the page draws anew even where nothing has changed: a line it drew itself may have to go
-        state = state_data(present.truss, present.case, present.choices, present.answer, present.check)
-        self.drawing.state = {**state, "status": self.status(), "problem": self.problem, "turn": self.turn}
-        self.form.show()
-
-    def status(self) -> str:
-        """Return what a move has given, in a sentence."""
-        present = self.exploration.present
+        drawn = state_data(present.truss, present.case, present.choices, present.answer, present.check)
         if present.answer is not None:
             told = in_one_sentence(present.answer)
-        elif present.choices.fault:
-            told = f"No cut: {present.choices.fault}."
         else:
-            told = INVITATION
-        if self.views > self.displays:
-            told += " This page was loaded again: run the cell again to renew the form on file below."
-        return told
+            told = f"No cut: {present.choices.fault}." if present.choices.fault else INVITATION
+        return {**drawn, "status": told}
 
-    # --- moves --------------------------------------------------------------------------------------------
-
-    def act(self, move: Callable[[], None]) -> None:
-        """Make a move; what goes wrong is told in the drawing, and the state stays what it was."""
-        try:
-            move()
-        except TrusscalcError as problem:
-            self.tell(str(problem))
-        except Exception as problem:  # noqa: BLE001 - shown nowhere else in a notebook
-            self.tell(f"An error in this program ({type(problem).__name__}: {problem}). Nothing was changed.")
-
-    def tell(self, problem: str) -> None:
-        """Show what went wrong beside the state as it is."""
-        self.problem = problem
-        self.show_now()
-
-    def received(self, content: Any) -> None:
-        """Make the move that the page reports."""
-        if content == {"event": "shown"}:
-            self.views += 1
-            self.act(self.show if self.views > self.displays else self.show_now)
-        else:
-            self.act(lambda: self.move(content))
+    def show_form(self) -> None:
+        """Show the present state in every control, and the typeset answers."""
+        self.form.show()
 
     def move(self, content: Any) -> None:
         """Make the move that the page reports, or raise InputError for a message that is none."""

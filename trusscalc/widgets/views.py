@@ -9,7 +9,7 @@ import traitlets
 
 from trusscalc.widgets.pagefiles import javascript, stylesheet
 
-__all__ = ["TrussDrawing"]
+__all__ = ["TrainDrawing", "TrussDrawing"]
 
 
 class TrussDrawing(anywidget.AnyWidget):
@@ -31,3 +31,25 @@ class TrussDrawing(anywidget.AnyWidget):
     def __repr__(self) -> str:
         """Return what a front end shows that has no live view."""
         return f"Drawing of {self.truss.get('title') or 'a truss'}; its static form stands beside it."
+
+
+class TrainDrawing(anywidget.AnyWidget):
+    """A train over an influence line: shows where it stands, and sends where pointer and keys have moved it.
+
+    Attributes
+    ----------
+    truss, line : dict
+        What is drawn, sent once; see ``pagedata.truss_data`` and ``traindata.line_data``.
+    state : dict
+        Where the train stands and what that gives; see ``traindata.train_data``.
+    """
+
+    _esm = javascript("train.js")
+    _css = stylesheet("drawing.css")
+    truss: Any = traitlets.Dict().tag(sync=True)
+    line: Any = traitlets.Dict().tag(sync=True)
+    state: Any = traitlets.Dict().tag(sync=True)
+
+    def __repr__(self) -> str:
+        """Return what a front end shows that has no live view."""
+        return f"Influence line of {self.line.get('words')} with a train; its static form stands beside it."

@@ -1,0 +1,134 @@
+"""What every live view has: moves with their errors shown, a view that may be lost and found, and the form on file."""
+
+from __future__ import annotations
+
+import secrets
+from collections.abc import Callable
+from typing import Any, Final
+
+import ipywidgets
+from IPython.display import display, update_display
+
+from trusscalc.errors import TrusscalcError
+from trusscalc.render.notebook import Bundle
+
+LOADED_AGAIN: Final = " This page was loaded again: run the cell again to renew the form on file below."
+
+
+class OnScreen:
+    """A drawing with its controls, bound to something that moves.
+
+    A subclass gives ``state`` (what the drawing shows), ``show_form`` (controls and answers) and ``move`` (what the
+    page reports).
+
+    Parameters
+    ----------
+    drawing : widget
+        The view; it sends messages, and has a trait ``state``.
+    frozen : callable
+        Returns the static form of now.
+    """
+
+    def __init__(self, drawing: Any, frozen: Callable[[], Bundle]) -> None:
+        self.drawing = drawing
+        self.frozen = frozen
+        self.problem = ""
+        self.turn = 0
+        self.showing = False
+        self.displays = 0
+        self.views = 0
+        self.name = f"trusscalc-{secrets.token_hex(8)}"
+        self.box = ipywidgets.VBox([drawing])
+        self.box.add_class("tc-exploration")
+        drawing.on_msg(lambda _, content, __: self.received(content))
+
+    def state(self) -> dict[str, Any]:
+        """Return what the drawing shows."""
+        raise NotImplementedError
+
+    def show_form(self) -> None:
+        """Show the present state in controls and answers."""
+        raise NotImplementedError
+
+    def move(self, content: Any) -> None:
+        """Make the move that the page reports, or raise InputError for a message that is none."""
+        raise NotImplementedError
+
+    # --- showing ------------------------------------------------------------------------------------------
+
+    def display(self) -> None:
+        """Show drawing and controls in the running cell, and beside them the form that stays on file."""
+        self.displays += 1
+        display(self.box)
+        display(self.frozen(), raw=True, display_id=self.name)
+
+    def show(self) -> None:
+        """Show the present state: the answer at once, then the form on file."""
+        self.problem = ""
+        self.show_now()
+        if self.displays:
+            update_display(self.frozen(), raw=True, display_id=self.name)
+
+    def show_now(self) -> None:
+        """Show the present state in drawing and controls."""
+        self.turn += 1  # the page draws anew even where nothing has changed: what it drew itself may have to go
+        state = self.state()
+        if self.views > self.displays:
+            state["status"] += LOADED_AGAIN
+        self.drawing.state = {**state, "problem": self.problem, "turn": self.turn}
+        self.showing = True
+        try:
+            self.show_form()
+        finally:
+            self.showing = False
+
+    # --- moves --------------------------------------------------------------------------------------------
+
+    def act(self, move: Callable[[], None]) -> None:
+        """Make a move; what goes wrong is told in the drawing, and the state stays what it was."""
+        try:
+            move()
+        except TrusscalcError as problem:
+            self.tell(str(problem))
+        except Exception as problem:  # noqa: BLE001 - shown nowhere else in a notebook
+            self.tell(f"An error in this program ({type(problem).__name__}: {problem}). Nothing was changed.")
+
+    def tell(self, problem: str) -> None:
+        """Show what went wrong beside the state as it is."""
+        self.problem = problem
+        self.show_now()
+
+    def changed(self, move: Callable[[], None]) -> None:
+        """Make the move of a control that a person has changed; what the program sets itself is no move."""
+        if not self.showing:
+            self.act(move)
+
+    def received(self, content: Any) -> None:
+        """Make the move that the page reports; the first word of a view is that it is there."""
+        if content == {"event": "shown"}:
+            self.views += 1
+            self.act(self.show if self.views > self.displays else self.show_now)
+        else:
+            self.act(lambda: self.move(content))
+
+
+# --- controls ---------------------------------------------------------------------------------------------
+
+
+def control(kind: Any, description: str, changed: Callable[[Any], None], **options: Any) -> Any:
+    """Return a control, and have its changes told."""
+    made = kind(description=description, style={"description_width": "8em"}, layout={"width": "21em"}, **options)
+    made.observe(lambda event: changed(event["new"]), names="value")
+    return made
+
+
+def button(text: str, pressed: Callable[[], None]) -> Any:
+    """Return a button, and have it told when it is pressed."""
+    made = ipywidgets.Button(description=text, layout={"width": "auto", "min_height": "28px"})
+    made.on_click(lambda _: pressed())
+    return made
+
+
+def show_in(output: Any, data: Bundle) -> None:
+    """Show a bundle in an output area, or nothing."""
+    output.outputs = ({"output_type": "display_data", "data": data, "metadata": {}},) if data else ()
