@@ -209,6 +209,38 @@ def test_nothing_is_not_flipped() -> None:
     assert [found.members["A-C"].our_sense, found.members["A-C"].their_sense] == ["C", "0"]
 
 
+@pytest.mark.parametrize("noise", ["1E-13", "-1E-13"])
+def test_a_rounded_angle_leaves_no_sense(noise: str) -> None:
+    """40 degrees, and twice 20: the load runs along A-C but for the rounding of angles to 30 digits."""
+    truss = Truss(
+        {"A": (0, 0), "B": (4, 0), "C": ("4*cos(20)^2 - 4*sin(20)^2", "8*sin(20)*cos(20)")},
+        ["A-B", "A-C", "B-C"],
+        {"A": "pin", "B": "roller"},
+    )
+    case = LoadCase("wind", {"C": ("-10*cos(40)", "-10*sin(40)")})
+    found = roof({"A-B": noise, "A-C": "-10.0", "B-C": noise}, case, truss)
+    assert found.members["B-C"].exact
+    assert found.members["B-C"].our_sense == "0"
+    assert found.agreed
+
+
+@pytest.mark.parametrize("noise", [1e-14, -1e-14])
+def test_stiffness_noise_has_no_sense(monkeypatch: pytest.MonkeyPatch, noise: float) -> None:
+    """What is not exact is only as good as the numeric route, in size too."""
+    right = stiffness.solve_all
+
+    def noisy(truss: Truss, cases: Any) -> Any:
+        return tuple(replace(run, forces={**run.forces, "A-D": noise}) for run in right(truss, cases))
+
+    monkeypatch.setattr(stiffness, "solve_all", noisy)
+    case = LoadCase("lamp", {"E": (0, -12)})
+    found = roof({"A-D": "1E-13"}, case, propped(), members=["A-D"])
+    assert found.members["A-D"].exact is None
+    assert (found.members["A-D"].our_sense, found.agreed) == ("0", True)
+    exactly = {"A-D": exact(1e-13)}
+    assert roof(exactly, case, propped(), members=["A-D"], relative=0, absolute=0).agreed
+
+
 def test_letters_of_both_sides_are_told() -> None:
     """Beside the signed difference, theirs minus ours."""
     item = roof({"A-C": "10.5 T"}).members["A-C"]
@@ -640,6 +672,14 @@ def test_a_check_that_disagrees_is_not_vouched_for(monkeypatch: pytest.MonkeyPat
     found = reveal(frozen(check), TABLE)
     assert not found.agreed
     assert found.own_faults == ("A-B: the two routes differ by more than the tolerance",)
+
+
+def test_a_check_out_of_balance_is_not_vouched_for() -> None:
+    """Every fault of the check comes along."""
+    check = check_members(ROOF, SNOW, ["A-B"])
+    found = reveal(frozen(replace(check, residuals={"C": (parse("1"), parse("0"))})), TABLE)
+    assert not found.agreed
+    assert found.own_faults == ("joint C: is out of balance",)
 
 
 # --- as data and as lines -----------------------------------------------------------------------------------
