@@ -89,13 +89,13 @@ CONFINED = {
     "matplotlib": {"render.draw"},
     "nbformat": {"render.notebook"},
     "typst": {"render.pdf"},
-    "ipywidgets": {"widgets.form", "widgets.onscreen", "widgets.trainscreen"},
+    "ipywidgets": {"widgets.form", "widgets.onscreen", "widgets.trainscreen", "widgets.workscreen"},
     "anywidget": {"widgets.views"},
     "traitlets": {"widgets.views"},
     "importlib": {"__init__", "convenience"},  # what is loaded by name is not seen here
 }
 HEAVY = {"matplotlib", "nbformat", "typst", "ipywidgets", "anywidget", "traitlets", "IPython"}
-SHOWN_LATE = {f"widgets.{name}" for name in ("form", "onscreen", "screen", "trainscreen", "views")}
+SHOWN_LATE = {f"widgets.{name}" for name in ("form", "onscreen", "screen", "trainscreen", "views", "workscreen")}
 """Modules that may import what is heavy at once, because others import them only when something is shown."""
 
 Imports = list[tuple[str, str, bool]]

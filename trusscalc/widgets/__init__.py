@@ -12,6 +12,7 @@ from trusscalc.statics.owncuts import OwnCut
 from trusscalc.truss import Truss
 from trusscalc.trussfile import TrussFile
 from trusscalc.widgets.exploration import Exploration, names_of
+from trusscalc.widgets.longwork import LongWork
 
 if TYPE_CHECKING:
     from trusscalc.widgets.travelling import Travel
@@ -72,7 +73,11 @@ def explore(
     if not names:
         message = "there are no loads to explore: state a load case"
         raise InputError(message)
-    screens: dict[str, Any] = {"screen_of": _screen_of, "train_screen_of": _train_screen_of}
+    screens: dict[str, Any] = {
+        "screen_of": _screen_of,
+        "train_screen_of": _train_screen_of,
+        "work_screen_of": _work_screen_of,
+    }
     return Exploration(stated, case=name or names[0], members=members, cuts=cuts, **screens)
 
 
@@ -88,6 +93,13 @@ def _train_screen_of(travel: Travel) -> Any:
     with _told_what_is_missing():
         from trusscalc.widgets.trainscreen import TrainScreen  # noqa: PLC0415
     return TrainScreen(travel)
+
+
+def _work_screen_of(work: LongWork[Any]) -> Any:
+    """Return bar, words and button of long work."""
+    with _told_what_is_missing():
+        from trusscalc.widgets.workscreen import work_box  # noqa: PLC0415
+    return work_box(work)
 
 
 @contextmanager

@@ -9,13 +9,16 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import replace
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, Literal
 
+from trusscalc import envelopes
+from trusscalc.envelopes import Envelope
 from trusscalc.errors import InputError, UnknownNameError
 from trusscalc.exacttext import number
 from trusscalc.loads import LoadCase
-from trusscalc.membercheck import MemberCheck, check_members
+from trusscalc.membercheck import MemberCheck, check_members, members_named
 from trusscalc.render.notebook import Bundle
+from trusscalc.sheet.words import counted
 from trusscalc.statics.cuts import About
 from trusscalc.statics.owncuts import OwnCut, own_cut
 from trusscalc.trains import Train
@@ -25,6 +28,7 @@ from trusscalc.widgets.answers import Answer, answer
 from trusscalc.widgets.choices import Choices, typed_centre
 from trusscalc.widgets.crossings import Point
 from trusscalc.widgets.frozen import Present, frozen_bundle
+from trusscalc.widgets.longwork import LongWork
 
 if TYPE_CHECKING:
     from trusscalc.widgets.travelling import Travel
@@ -45,7 +49,7 @@ class Exploration:
         Members to be checked.
     cuts : mapping of str to OwnCut, optional
         For some members the cut to derive them from.
-    screen_of, train_screen_of : callable, optional
+    screen_of, train_screen_of, work_screen_of : callable, optional
         Make what is shown in a cell, when it is first shown there; without them only the static forms are.
 
     Raises
@@ -74,11 +78,14 @@ class Exploration:
         cuts: Mapping[str, OwnCut] | None = None,
         screen_of: Callable[[Exploration], Any] | None = None,
         train_screen_of: Callable[[Travel], Any] | None = None,
+        work_screen_of: Callable[[LongWork[Any]], Any] | None = None,
     ) -> None:
         self.stated = stated
         self._screen_of = screen_of or Unseen
         self._train_screen_of = train_screen_of
+        self._work_screen_of = work_screen_of
         self.watchers: list[Callable[[], None]] = []
+        self._enveloped: Envelope | None = None
         self._screen: Any = None
         self._checks: dict[tuple[str, tuple[str, ...], Kept], MemberCheck] = {}
         own = tuple((self.truss.member(name).name, cut.kept) for name, cut in (cuts or {}).items())
@@ -99,13 +106,12 @@ class Exploration:
     @choices.setter
     def choices(self, choices: Choices) -> None:
         self._take(choices)
-        for watcher in self.watchers:
-            watcher()
+        self._tell_watchers()
 
     @property
     def present(self) -> Present:
         """What was chosen and what it gives, as one record."""
-        return self._present
+        return replace(self._present, envelope=self._enveloped)
 
     @property
     def answer(self) -> Answer | None:
@@ -308,6 +314,41 @@ class Exploration:
         line = influence_line(self.truss, target, self.stated.chain(along))
         trains = (train,) if isinstance(train, Train) else self.stated.train(train)
         return Travel(line, trains, screen_of=self._train_screen_of)
+
+    # --- long work ----------------------------------------------------------------------------------------
+
+    @property
+    def envelope(self) -> Envelope | None:
+        """The envelope last worked out, None before the first."""
+        return self._enveloped
+
+    def work_out_envelope(self, members: Iterable[str] | Literal["all"] = "all") -> LongWork[Envelope]:
+        """Begin to work out the envelope of members over all combinations, in the background; return the work.
+
+        ``.result()`` of it waits, ``.stop()`` gives it up; only when all is done does ``envelope`` change.
+
+        Parameters
+        ----------
+        members : iterable of str, or "all"
+            Whose forces.
+        """
+        wanted = members_named(self.truss, members)
+        title = f"Envelope of {counted(len(wanted), 'member')}"
+        work = LongWork(
+            title,
+            lambda progress: envelopes.envelope(self.stated, wanted, progress=progress),
+            self._take_envelope,
+            screen_of=self._work_screen_of,
+        )
+        work.watchers.append(lambda: self._tell_watchers() if work.state == "finished" else None)
+        return work.start()
+
+    def _take_envelope(self, found: Envelope) -> None:
+        self._enveloped = found
+
+    def _tell_watchers(self) -> None:
+        for watcher in self.watchers:
+            watcher()
 
     # --- on file ------------------------------------------------------------------------------------------
 

@@ -18,9 +18,11 @@ from trusscalc.statics.cutreport import Possibility
 from trusscalc.statics.cuts import About
 from trusscalc.widgets.choices import typed_centre, typed_direction, typed_line
 from trusscalc.widgets.cutblocks import answer_blocks, possibility_words
+from trusscalc.widgets.envelopeblocks import envelope_blocks
 from trusscalc.widgets.exploration import Exploration
 from trusscalc.widgets.frozen import check_blocks
 from trusscalc.widgets.onscreen import button, control, show_in
+from trusscalc.widgets.workscreen import work_box
 
 Act = Callable[[Callable[[], None]], None]
 """Makes a move, and tells what went wrong with it."""
@@ -65,6 +67,8 @@ class Form:
         self.keep = self.button("Keep this cut", exploration.keep)
         self.clear = self.button("No cut", exploration.clear)
         self.forget = self.button("Empty the check", exploration.forget)
+        self.envelope = self.button("Envelope of all combinations", self.begin_envelope)
+        self.work = ipywidgets.VBox()
         self.answer, self.check = ipywidgets.Output(), ipywidgets.Output()
         self.answer.add_class("tc-answer")
         self.check.add_class("tc-answer")
@@ -88,7 +92,8 @@ class Form:
     def laid_out(self) -> Any:
         """Return everything in its place: what to do with a cut, then the choices, then the answers."""
         buttons = ipywidgets.HBox(
-            [self.side, self.nearest, self.keep, self.clear, self.forget], layout={"flex_flow": "row wrap"}
+            [self.side, self.nearest, self.keep, self.clear, self.forget, self.envelope],
+            layout={"flex_flow": "row wrap"},
         )
         columns = (
             [self.case, self.members, self.detail],
@@ -97,7 +102,7 @@ class Form:
         )
         boxes = [ipywidgets.VBox(column, layout={"min_width": "21.5em"}) for column in columns]
         controls = ipywidgets.HBox(boxes, layout={"flex_flow": "row wrap"})
-        return ipywidgets.VBox([buttons, controls, self.answer, self.check])
+        return ipywidgets.VBox([buttons, self.work, controls, self.answer, self.check])
 
     # --- moves --------------------------------------------------------------------------------------------
 
@@ -137,6 +142,18 @@ class Form:
         """Choose how much of the check is shown."""
         self.exploration.detail = detail
 
+    def begin_envelope(self) -> None:
+        """Begin with the envelope of all members; while one is being worked out, no other."""
+        work = self.exploration.work_out_envelope()
+        self.envelope.disabled = True
+
+        def done() -> None:
+            self.envelope.disabled = work.state == "running"
+
+        work.watchers.append(done)
+        self.work.children = [work_box(work)]
+        done()
+
     # --- showing ------------------------------------------------------------------------------------------
 
     def show(self) -> None:
@@ -145,6 +162,7 @@ class Form:
         show_in(self.answer, bundle(answer_blocks(present.answer)) if present.answer else {})
         self.show_choices()
         blocks = check_blocks(present)
+        blocks += envelope_blocks(present.envelope) if present.envelope else []
         show_in(self.check, bundle(blocks) if blocks else {})
 
     def show_choices(self) -> None:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Final
 
+from trusscalc.envelopes import Envelope
 from trusscalc.loads import LoadCase
 from trusscalc.membercheck import MemberCheck
 from trusscalc.render.notebook import Bundle, bundle
@@ -16,6 +17,7 @@ from trusscalc.truss import Truss
 from trusscalc.widgets.answers import Answer
 from trusscalc.widgets.choices import Choices
 from trusscalc.widgets.cutblocks import answer_blocks, in_one_sentence, note
+from trusscalc.widgets.envelopeblocks import envelope_blocks
 
 ON_FILE: Final = "What stands here stays on file, and reads without a kernel."
 
@@ -36,6 +38,8 @@ class Present:
         What the cut gives.
     check : MemberCheck or None
         The check of the members chosen.
+    envelope : Envelope or None
+        The envelope last worked out.
     """
 
     truss: Truss
@@ -43,6 +47,7 @@ class Present:
     choices: Choices
     answer: Answer | None
     check: MemberCheck | None
+    envelope: Envelope | None = None
 
 
 def frozen_bundle(present: Present) -> Bundle:
@@ -65,6 +70,8 @@ def frozen_blocks(present: Present) -> list[Block]:
             blocks.append(Picture((truss_figure(truss.at_values(), present.case),)))
     if check is not None:
         blocks += [Heading(4, "Check"), *check_blocks(present, drawings=True)]
+    if present.envelope is not None:
+        blocks += envelope_blocks(present.envelope)
     return [*blocks, note(ON_FILE)]
 
 

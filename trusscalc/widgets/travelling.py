@@ -21,7 +21,7 @@ from trusscalc.trains import Train
 from trusscalc.travel import Direction, Extreme, extremes
 from trusscalc.truss import did_you_mean
 from trusscalc.widgets.cutblocks import note
-from trusscalc.widgets.standing import standing
+from trusscalc.widgets.trainplace import standing
 
 DIRECTIONS: Final[tuple[Direction, ...]] = ("forward", "backward")
 PLACES: Final = 3
