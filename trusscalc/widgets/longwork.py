@@ -1,11 +1,14 @@
 """Work that takes a while: how far it is, a way to stop it, and its result as a whole or not at all.
 
 It runs beside the notebook, so that the rest goes on. Whatever does the work tells its progress from time to time; a
-stop takes effect there. Nothing is handed on before everything is done.
+stop takes effect there. Nothing is handed on before everything is done, and those who watch are told in the thread
+that began the work, where a notebook's other callbacks run, so that the two never meet.
 """
 
 from __future__ import annotations
 
+import asyncio
+import contextlib
 import threading
 import time
 from collections.abc import Callable
@@ -78,12 +81,16 @@ class LongWork(Generic[Result]):
         self._stop = threading.Event()
         self._told = 0.0
         self._thread: threading.Thread | None = None
+        self._loop: asyncio.AbstractEventLoop | None = None
+        self._awaited = False
         self._screen_of = screen_of
 
     def start(self) -> LongWork[Result]:
         """Begin, once; return the work itself."""
         if self._thread is None:
             self.state = "running"
+            with contextlib.suppress(RuntimeError):  # outside a notebook nothing else runs meanwhile
+                self._loop = asyncio.get_running_loop()
             self._thread = threading.Thread(target=self._run, name=self.title, daemon=True)
             self._thread.start()
         return self
@@ -105,13 +112,18 @@ class LongWork(Generic[Result]):
         if self._thread is None:
             message = f"{self.title} has not been started; call start()"
             raise InputError(message)
+        self._awaited = True
         try:
             while self._thread.is_alive():
                 self._thread.join(OFTEN)
+                self._tell_now()
         except KeyboardInterrupt:
             self.stop()
             self._thread.join()
+            self._tell_now()
             raise
+        finally:
+            self._awaited = False
         if self.problem is not None:
             raise self.problem
         if not self._found:
@@ -145,6 +157,15 @@ class LongWork(Generic[Result]):
             self._tell()
 
     def _tell(self) -> None:
+        """Have those who watch told, in the thread that began the work where it has a loop."""
+        if self._awaited:
+            return  # whoever waits tells them
+        if self._loop is not None and self._loop.is_running():
+            self._loop.call_soon_threadsafe(self._tell_now)
+        else:
+            self._tell_now()
+
+    def _tell_now(self) -> None:
         for watcher in tuple(self.watchers):
             watcher()
 
