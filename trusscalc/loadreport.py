@@ -129,7 +129,8 @@ def influence_text(
 
 
 def _extreme_text(word: str, extreme: Extreme, force: str, length: str, places: int) -> str:
-    value = f"{word}: {short_exact(extreme.value)} = {rounded(extreme.value, places)} {force}"
+    exact, decimal = short_exact(extreme.value), str(rounded(extreme.value, places))
+    value = f"{word}: {exact} = {decimal} {force}" if extreme.value else f"{word}: 0 {force}"
     stand = extreme.stand
     if stand is None:
         return f"{value}; no position of the axles is adverse"
