@@ -68,12 +68,31 @@ class Project:
 
 
 @dataclass(frozen=True)
+class Analysis:
+    """What another analysis does: its model, the joints stiff at a slenderness (0: hinges), what it does to its table."""
+
+    stated: Stated
+    loads: Mapping[str, tuple[float, float]]
+    slenderness: float = 0.0
+    after: tuple[Callable[[Table], Table], ...] = ()
+
+    def table(self) -> Table | None:
+        """Return the member forces it prints, or None for a truss that hardly stands."""
+        table = solved(self.stated, self.loads)
+        if table is not None and self.slenderness:
+            table = frame_forces(self.stated.truss, self.loads, self.slenderness)
+        for change in self.after:
+            table = table and change(table)
+        return table
+
+
+@dataclass(frozen=True)
 class Planted:
-    """Results with a blunder in them: the explanations that are right, and the table as printed."""
+    """Results with blunders in them: kinds, places and how they were made, and the table as printed."""
 
     project: Project
-    kind: str
-    where: tuple[str, ...]
+    kinds: tuple[str, ...]
+    where: tuple[tuple[str, ...], ...]
     told: str
     printed: dict[str, str]
 
@@ -194,8 +213,8 @@ def _stiffened(draw: random.Random, stated: Stated) -> Stated:
 
 # --- blunders ---------------------------------------------------------------------------------------------
 
-Blunder = tuple[str, tuple[str, ...], str, Table | None]
-"""Kind, where, how it was done, and the table."""
+Blunder = tuple[tuple[str, ...], str, Analysis] | None
+"""Where, how it was done, and the analysis with it."""
 
 
 def neighbours(stated: Stated, joint: str) -> list[str]:
@@ -204,123 +223,136 @@ def neighbours(stated: Stated, joint: str) -> list[str]:
     return [b if a == joint else a for a, b in ends if joint in (a, b)]
 
 
-def plant(draw: random.Random, kind: str, family: str) -> Planted:
-    """Return results with a blunder of one kind in them."""
+def plant(draw: random.Random, kinds: str, family: str) -> Planted:
+    """Return results with one blunder in them, or with two, ``"load-missing+sign"``."""
+    listed = tuple(kinds.split("+"))
     while True:
-        extra = draw.choice([1, 2, 3]) if kind == "member-missing" else draw.choice([0, 0, 0, 1])
+        extra = draw.choice([1, 2, 3]) if "member-missing" in listed else draw.choice([0, 0, 0, 1])
         given = project(draw, family, extra=extra)
-        found = BLUNDERS[kind](draw, given)
-        right = solved(given.stated, given.total())
-        if found is None or found[3] is None or right is None:
-            continue
-        _, where, told, table = found
-        if changed(right, table):
-            return Planted(given, kind, where, told, {name: f"{force:.4g}" for name, force in table.items()})
+        analyses = [Analysis(given.stated, given.total())]
+        places, told = [], []
+        for kind in listed:
+            found = BLUNDERS[kind](draw, given, analyses[-1])
+            if found is None:
+                break
+            places.append(found[0])
+            told.append(found[1])
+            analyses.append(found[2])
+        tables = [analysis.table() for analysis in analyses]
+        if len(tables) == len(listed) + 1 and all(tables):
+            steps = zip(tables, tables[1:], strict=False)
+            if all(changed(before, after) for before, after in steps if before and after) and tables[-1]:
+                printed = {name: f"{force:.4g}" for name, force in tables[-1].items()}
+                return Planted(given, listed, tuple(places), "; ".join(told), printed)
 
 
 def changed(right: Table, table: Table) -> bool:
-    """Return whether some value is changed by more than 20 roundings to four figures, noise aside."""
+    """Return whether some value that both have is changed by more than 20 roundings to four figures, noise aside."""
     noise = 1e-6 * max(map(abs, right.values()))
+    if not noise:
+        return any(table.values())
 
     def roundings(name: str) -> float:
         size = max(abs(right[name]), abs(table[name]), noise)
         return abs(right[name] - table[name]) / (0.5 * 10.0 ** (np.floor(np.log10(size)) - 3))
 
-    return any(roundings(name) > CHANGE for name in table) or (set(table) != set(right))
+    return any(roundings(name) > CHANGE for name in table if name in right)
 
 
-def sign(_: random.Random, given: Project) -> Blunder:
-    table = solved(given.stated, given.total())
-    return "sign", (), "all signs", table and {name: -force for name, force in table.items()}
+def sign(_: random.Random, __: Project, now: Analysis) -> Blunder:
+    after = (*now.after, lambda table: {name: -force for name, force in table.items()})
+    return (), "all signs", replace(now, after=after)
 
 
-def scale(draw: random.Random, given: Project) -> Blunder:
-    factor = draw.choice([1000, 0.001, 4.4482216152605, 1 / 4.4482216152605, 12, 1 / 12, 0.3048, 1 / 0.3048])
-    factor = draw.choice([factor, 1.35, 1.5, 1.6, 1 / 1.2, 9.80665, 2, 0.5, 1.4, 1.25, 25.4])
-    table = solved(given.stated, given.total())
-    return "scale", (), f"times {factor:g}", table and {name: factor * force for name, force in table.items()}
+def scale(draw: random.Random, _: Project, now: Analysis) -> Blunder:
+    units = [1000, 0.001, 4.4482216152605, 1 / 4.4482216152605, 12, 1 / 12, 0.3048, 1 / 0.3048, 25.4]
+    factor = draw.choice([draw.choice(units), draw.choice([1.35, 1.5, 1.6, 1 / 1.2, 9.80665, 2, 0.5, 1.4, 1.25])])
+    after = (*now.after, lambda table: {name: factor * force for name, force in table.items()})
+    return (f"{factor:.6g}",), f"times {factor:g}", replace(now, after=after)
 
 
-def _combination(draw: random.Random, given: Project) -> Project:
-    return replace(given, compared=draw.choice(list(given.combinations)))
+def _added(now: Analysis, loads: Mapping[str, tuple[float, float]], factor: float) -> Analysis:
+    total = dict(now.loads)
+    for joint, (fx, fy) in loads.items():
+        x, y = total.get(joint, (0.0, 0.0))
+        total[joint] = (x + factor * fx, y + factor * fy)
+    return replace(now, loads=total)
 
 
-def case_missing(draw: random.Random, given: Project) -> Blunder | None:
+def case_missing(draw: random.Random, given: Project, now: Analysis) -> Blunder:
     case = draw.choice(list(given.factors))
-    factors = {name: factor for name, factor in given.factors.items() if name != case}
-    return ("case-missing", (case,), case, solved(given.stated, given.total(factors))) if factors else None
+    lost = given.total({case: given.factors[case]})
+    return ((case,), case, _added(now, lost, -1)) if len(given.factors) > 1 else None
 
 
-def case_doubled(draw: random.Random, given: Project) -> Blunder:
+def case_doubled(draw: random.Random, given: Project, now: Analysis) -> Blunder:
     case = draw.choice(list(given.factors))
-    factors = {**given.factors, case: 2 * given.factors[case]}
-    return "case-doubled", (case,), case, solved(given.stated, given.total(factors))
+    return (case,), case, _added(now, given.total({case: given.factors[case]}), 1)
 
 
-def wrong_combination(draw: random.Random, given: Project) -> Blunder:
+def wrong_combination(draw: random.Random, given: Project, now: Analysis) -> Blunder:
     states = {name: {name: 1.0} for name in given.cases}
     states |= {name: {case: float(f) for case, f in factors.items()} for name, factors in given.combinations.items()}
     other = draw.choice([name for name in states if name != given.compared])
-    return "wrong-combination", (other,), other, solved(given.stated, given.total(states[other]))
+    return (other,), other, _added(_added(now, given.total(), -1), given.total(states[other]), 1)
 
 
-def _load(kind: str, factor: float) -> Callable[[random.Random, Project], Blunder]:
-    def planted(draw: random.Random, given: Project) -> Blunder:
+def _load(factor: float) -> Callable[[random.Random, Project, Analysis], Blunder]:
+    def planted(draw: random.Random, given: Project, now: Analysis) -> Blunder:
         loads = given.total()
         joint = draw.choice(list(loads))
-        loads[joint] = (factor * loads[joint][0], factor * loads[joint][1])
-        return kind, (joint,), joint, solved(given.stated, loads)
+        return (joint,), joint, _added(now, {joint: loads[joint]}, factor - 1)
 
     return planted
 
 
-def load_moved(draw: random.Random, given: Project) -> Blunder:
+def load_moved(draw: random.Random, given: Project, now: Analysis) -> Blunder:
     loads = given.total()
     joint = draw.choice(list(loads))
     other = draw.choice(neighbours(given.stated, joint))
-    (fx, fy), (x, y) = loads.pop(joint), loads.get(other, (0.0, 0.0))
-    loads[other] = (x + fx, y + fy)
-    return "load-moved", (joint, other), f"{joint} to {other}", solved(given.stated, loads)
+    moved = _added(_added(now, {joint: loads[joint]}, -1), {other: loads[joint]}, 1)
+    return (joint, other), f"{joint} to {other}", moved
 
 
 def _links(support: Any) -> int:
     return 2 if support == "pin" else len(support) if isinstance(support, list) else 1
 
 
-def support_exchanged(_: random.Random, given: Project) -> Blunder | None:
-    supports = dict(given.stated.supports)
-    pins = [joint for joint, support in supports.items() if _links(support) == 2]
-    rollers = [joint for joint, support in supports.items() if _links(support) == 1]
+def _rollers(now: Analysis) -> list[str]:
+    return [joint for joint, support in now.stated.supports.items() if _links(support) == 1]
+
+
+def _supported(now: Analysis, changes: Mapping[str, Any]) -> Analysis:
+    return replace(now, stated=replace(now.stated, supports={**now.stated.supports, **changes}))
+
+
+def support_exchanged(_: random.Random, __: Project, now: Analysis) -> Blunder:
+    supports, rollers = now.stated.supports, _rollers(now)
+    pins = [joint for joint in supports if joint not in rollers]
     if not pins or not rollers:
         return None
     one, other = pins[0], rollers[-1]
-    supports[one], supports[other] = supports[other], supports[one]
-    altered = replace(given.stated, supports=supports)
-    return "support-exchanged", (one, other), f"{one}, {other}", solved(altered, given.total())
+    return (one, other), f"{one}, {other}", _supported(now, {one: supports[other], other: supports[one]})
 
 
-def support_extra(draw: random.Random, given: Project) -> Blunder | None:
-    rollers = [joint for joint, support in given.stated.supports.items() if _links(support) == 1]
+def support_extra(draw: random.Random, _: Project, now: Analysis) -> Blunder:
+    rollers = _rollers(now)
+    joint = draw.choice(rollers) if rollers else ""
+    return ((joint,), joint, _supported(now, {joint: "pin"})) if rollers else None
+
+
+def support_turned(draw: random.Random, _: Project, now: Analysis) -> Blunder:
+    rollers = _rollers(now)
     if not rollers:
         return None
     joint = draw.choice(rollers)
-    altered = replace(given.stated, supports={**given.stated.supports, joint: "pin"})
-    return "support-extra", (joint,), joint, solved(altered, given.total())
-
-
-def support_turned(draw: random.Random, given: Project) -> Blunder | None:
-    rollers = [joint for joint, support in given.stated.supports.items() if _links(support) == 1]
-    if not rollers:
-        return None
-    joint = draw.choice(rollers)
-    support = given.stated.supports[joint]
+    support = now.stated.supports[joint]
     dx, dy = ("0", "1") if support == "roller" else support["reaction"]
     turned = draw.choice([(dy, dx), (f"-({dx})", dy), ("1", "0"), ("0", "1"), ("1", "2"), ("-3", "4"), ("1", "1")])
-    altered = replace(given.stated, supports={**given.stated.supports, joint: {"reaction": turned}})
-    return "support-turned", (joint,), f"{joint} {turned}", solved(altered, given.total())
+    return (joint,), f"{joint} {turned}", _supported(now, {joint: {"reaction": turned}})
 
 
-def mirrored(draw: random.Random, given: Project) -> Blunder | None:
+def mirrored(draw: random.Random, given: Project, now: Analysis) -> Blunder:
     places = {joint: (float(value(x)), float(value(y))) for joint, (x, y) in given.stated.joints.items()}
     across = [x for x, _ in places.values()]
     middle = min(across) + max(across)
@@ -328,56 +360,50 @@ def mirrored(draw: random.Random, given: Project) -> Blunder | None:
         joint: next((o for o, (u, v) in places.items() if abs(u - middle + x) < 1e-9 and abs(v - y) < 1e-9), "")
         for joint, (x, y) in places.items()
     }
-    loads = given.total()
     ways = ["truss"]
+    there = {frozenset(name.split("-")): name for name in given.stated.members}
+    partner = {name: there.get(frozenset(image[end] for end in name.split("-")), "") for name in given.stated.members}
     if all(image.values()):
-        ways.append("loads")
-        there = {frozenset(name.split("-")): name for name in given.stated.members}
-        partner = {name: there.get(frozenset(image[end] for end in name.split("-"))) for name in given.stated.members}
-        ways += ["table"] * all(partner.values())
+        ways += ["loads", *["table"] * all(partner.values())]
     way = draw.choice(ways)
     if way == "table":
-        table = solved(given.stated, loads)
-        return "mirrored", (), way, table and {name: table[partner[name]] for name in table}
+        after = (*now.after, lambda table: {name: table[partner[name]] for name in table})
+        return (), way, replace(now, after=after)
     if way == "loads":
-        return "mirrored", (), way, solved(given.stated, {image[joint]: load for joint, load in loads.items()})
-    joints = {joint: (f"{middle!r}-({x})", y) for joint, (x, y) in given.stated.joints.items()}
-    return "mirrored", (), way, solved(replace(given.stated, joints=joints), loads)
+        return (), way, replace(now, loads={image[joint]: load for joint, load in now.loads.items()})
+    joints = {joint: (f"{middle!r}-({x})", y) for joint, (x, y) in now.stated.joints.items()}
+    return (), way, replace(now, stated=replace(now.stated, joints=joints))
 
 
-def rows_exchanged(draw: random.Random, given: Project) -> Blunder:
-    table = solved(given.stated, given.total())
-    assert table
-    one, other = draw.sample(list(table), 2)
-    table[one], table[other] = table[other], table[one]
-    return "rows-exchanged", (one, other), f"{one}, {other}", table
+def rows_exchanged(draw: random.Random, given: Project, now: Analysis) -> Blunder:
+    one, other = draw.sample(given.stated.members, 2)
+
+    def exchanged(table: Table) -> Table:
+        return table | {one: table[other], other: table[one]} if one in table and other in table else {}
+
+    return (one, other), f"{one}, {other}", replace(now, after=(*now.after, exchanged))
 
 
-def member_missing(draw: random.Random, given: Project) -> Blunder:
+def member_missing(draw: random.Random, given: Project, now: Analysis) -> Blunder:
     gone = draw.choice(given.stated.members)
-    rest = replace(given.stated, members=tuple(name for name in given.stated.members if name != gone))
-    table = solved(rest, given.total())
-    if table is not None and draw.random() < 0.5:
-        table[gone] = 0.0
-    whole = solved(given.stated, given.total())
-    if table is None or whole is None or not changed({name: whole[name] for name in table}, table):
-        table = None
-    return "member-missing", (gone,), gone, table
+    rest = replace(now.stated, members=tuple(name for name in now.stated.members if name != gone))
+    more = {gone: 0.0} if draw.random() < 0.5 else {}
+    return (gone,), gone, replace(now, stated=rest, after=(*now.after, lambda table: table | more))
 
 
-def joint_displaced(draw: random.Random, given: Project) -> Blunder | None:
-    joint = draw.choice(list(given.stated.joints))
+def joint_displaced(draw: random.Random, _: Project, now: Analysis) -> Blunder:
+    joint = draw.choice(list(now.stated.joints))
     axis = draw.choice([0, 1])
-    number = float(value(given.stated.joints[joint][axis]))
+    number = float(value(now.stated.joints[joint][axis]))
     typed = f"{number:.{draw.choice([3, 4, 6])}f}".rstrip("0").rstrip(".")
     slipped = draw.choice([_digits_exchanged, _sign_turned, _point_moved])(draw, typed)
     if slipped is None or float(slipped) == float(typed):
         return None
-    pair = list(given.stated.joints[joint])
+    pair = list(now.stated.joints[joint])
     pair[axis] = slipped
-    altered = replace(given.stated, joints={**given.stated.joints, joint: (pair[0], pair[1])})
+    joints = {**now.stated.joints, joint: (pair[0], pair[1])}
     told = f"{joint} {'xy'[axis]} {typed} typed {slipped}"
-    return "joint-displaced", (joint,), told, solved(altered, given.total())
+    return (joint,), told, replace(now, stated=replace(now.stated, joints=joints))
 
 
 def _digits_exchanged(draw: random.Random, typed: str) -> str | None:
@@ -401,14 +427,13 @@ def _point_moved(draw: random.Random, typed: str) -> str:
     return f"{float(typed) * draw.choice([10, 0.1]):.9g}"
 
 
-def stiff_joints(draw: random.Random, given: Project) -> Blunder:
+def stiff_joints(draw: random.Random, _: Project, now: Analysis) -> Blunder:
     slenderness = 10 ** draw.uniform(1.2, 2.1)
-    return "stiff-joints", (), f"mean length / radius {slenderness:.0f}", frame_forces(given, slenderness)
+    return (), f"mean length / radius {slenderness:.0f}", replace(now, slenderness=slenderness)
 
 
-def frame_forces(given: Project, slenderness: float) -> Table:
+def frame_forces(truss: Truss, acting: Mapping[str, tuple[float, float]], slenderness: float) -> Table:
     """Return the axial forces of a frame with EA and EI the same for all members, by whole member matrices."""
-    truss: Truss = given.stated.truss
     index = {joint.name: 3 * place for place, joint in enumerate(truss.joints)}
     places = {joint.name: np.array((float(joint.x), float(joint.y))) for joint in truss.joints}
     lengths = [float(np.linalg.norm(places[m.end] - places[m.start])) for m in truss.members]
@@ -438,20 +463,20 @@ def frame_forces(given: Project, slenderness: float) -> Table:
         own = [index[link.joint], index[link.joint] + 1]
         matrix[np.ix_(own, own)] += rigid * np.outer(way, way) / (way @ way)
     loads = np.zeros(len(matrix))
-    for joint, pair in given.total().items():
+    for joint, pair in acting.items():
         loads[index[joint] : index[joint] + 2] += pair
     moves = np.linalg.solve(matrix, loads)
     return {name: float(row @ moves[own]) for name, own, row in parts}
 
 
-BLUNDERS: dict[str, Callable[[random.Random, Project], Blunder | None]] = {
+BLUNDERS: dict[str, Callable[[random.Random, Project, Analysis], Blunder]] = {
     "sign": sign,
     "scale": scale,
     "case-missing": case_missing,
     "case-doubled": case_doubled,
-    "load-missing": _load("load-missing", 0.0),
-    "load-doubled": _load("load-doubled", 2.0),
-    "load-reversed": _load("load-reversed", -1.0),
+    "load-missing": _load(0.0),
+    "load-doubled": _load(2.0),
+    "load-reversed": _load(-1.0),
     "load-moved": load_moved,
     "support-exchanged": support_exchanged,
     "support-extra": support_extra,

@@ -47,6 +47,8 @@ LAYERS = (
     *(
         "statics.zeroforce",
         "stiffness",
+        "flexibility",
+        "frame",
         "verdicts",
         "numericruns",
         "membercheck",
@@ -68,6 +70,16 @@ LAYERS = (
         "ourforces",
         "comparison",
         "compare",
+        "fits",
+        "slips",
+        "ratios",
+        "altered",
+        "alterations",
+        "screening",
+        "fitting",
+        "pairs",
+        "explanations",
+        "diagnosis",
         "blind",
         "comparereport",
         "sheet",
@@ -85,7 +97,7 @@ RENDER_MAY_IMPORT = {"errors", "exact", "exacttext", "decimals", "units"}
 SHEET_MAY_NAME = {"statics.matrix": {"Bar", "Equilibrium", "GROUND"}}
 SOLVERS = {"stiffness", *(name for name in LAYERS if name.startswith("statics."))} - {"statics.cuts", "statics.steps"}
 CONFINED = {
-    "numpy": {"stiffness"},
+    "numpy": {"stiffness", "flexibility", "frame", "screening", "fitting", "pairs"},
     "matplotlib": {"render.draw"},
     "nbformat": {"render.notebook"},
     "typst": {"render.pdf"},

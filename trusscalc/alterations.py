@@ -22,6 +22,7 @@ MOST_STATES: Final = 200
 """Other cases and combinations tried; a combination with pairs of factors stands for several."""
 MOST_MOVES: Final = 6000
 """Loads are tried on every other joint while that is no more than so many; then on neighbours alone."""
+RULES: Final = {"SelfWeight": "self-weight", "LineLoad": "line load", "PointLoad": "point load"}
 SAME: Final = 1e-9
 """Share of the truss's size within which two places are one, and sine below which directions are."""
 
@@ -68,22 +69,51 @@ class Compared:
     others: tuple[Part, ...]
 
 
-def compared(stated: TrussFile, name: str) -> Compared:
-    """Return what is compared under the name of a case or a combination.
+def compared(stated: TrussFile, case: str | LoadCase) -> Compared:
+    """Return what is compared under the name of a case or a combination, or as loads of its own.
 
     Raises
     ------
     UnknownNameError
-        When there is neither.
+        When there is neither of that name.
     """
-    case = stated.case(name)
-    by_name = {each.name: each for each in stated.cases}
-    combination = next((each for each in stated.combinations if each.name == name), None)
-    factors = [(name, 1.0)] if combination is None else [(c, float(f)) for c, (f, *_) in combination.factors]
-    parts = tuple(
-        Part((part,), f"the case {part}", _times(factor, by_name[part].as_floats())) for part, factor in factors
-    )
-    return Compared(stated.truss.at_values(), case, parts, (), tuple(_others(stated, name)))
+    loads = stated.case(case) if isinstance(case, str) else case
+    by_name = {each.name: each.as_floats() for each in stated.acting}
+    combination = next((each for each in stated.all_combinations if each.name == loads.name), None)
+    factors = {loads.name: 1.0} if combination is None else {each: float(f[0]) for each, f in combination.factors}
+    parts: dict[str, Part] = {}
+    if all(part in by_name for part in factors):
+        parts = {part: _case(part, _times(factor, by_name[part])) for part, factor in factors.items()}
+    total: dict[str, Pair] = {}
+    for part in parts.values():
+        total = _sum(total, part.loads)
+    rules = tuple(_rules(stated, factors, parts))
+    if not _equal(total, loads.as_floats()):
+        parts, rules = {loads.name: _case(loads.name, loads.as_floats())}, ()
+    others = tuple(_others(stated, loads.name))
+    return Compared(stated.truss.at_values(), loads, tuple(parts.values()), rules, others)
+
+
+def _case(name: str, loads: Mapping[str, Pair]) -> Part:
+    return Part((name,), f"the case {name}", loads)
+
+
+def _equal(one: Mapping[str, Pair], other: Mapping[str, Pair]) -> bool:
+    apart = [abs(part) for pair in _sum(one, _times(-1, other)).values() for part in pair]
+    return max(apart, default=0.0) <= SAME * max((abs(part) for pair in other.values() for part in pair), default=0.0)
+
+
+def _rules(stated: TrussFile, factors: Mapping[str, float], parts: Mapping[str, Part]) -> Iterator[Part]:
+    """Yield the panel loads that are not all of their case."""
+    symbols = {case.name: case.symbols for case in stated.acting}
+    for spread in stated.spreads():
+        case = spread.rule.case
+        if case in parts:
+            loads = LoadCase(case, spread.loads, symbols=symbols[case]).as_floats()
+            loads = _times(factors[case], loads)
+            if loads != parts[case].loads:
+                kind = RULES[type(spread.rule).__name__]
+                yield Part((case, kind), f"the {kind} in the case {case}", loads)
 
 
 def _times(factor: float, loads: Mapping[str, Pair]) -> dict[str, Pair]:
@@ -93,15 +123,18 @@ def _times(factor: float, loads: Mapping[str, Pair]) -> dict[str, Pair]:
 def _others(stated: TrussFile, name: str) -> Iterator[Part]:
     """Yield the other cases, and the other combinations with every choice of their factors."""
     left = MOST_STATES
-    for case in stated.cases:
+    for case in stated.acting:
         if case.name != name and left:
             left -= 1
-            yield Part((case.name,), f"the case {case.name}", case.as_floats())
-    for combination in stated.combinations:
+            yield _case(case.name, case.as_floats())
+    moving = {load.name for load in stated.moving}
+    for combination in stated.all_combinations:
+        if combination.name == name or moving & {case for case, _ in combination.factors}:
+            continue
         for chosen in _choices(combination):
-            if combination.name != name and left:
+            if left:
                 left -= 1
-                loads = combine(chosen, stated.cases).as_floats()
+                loads = combine(chosen, stated.acting).as_floats()
                 yield Part((combination.name,), f"the combination {chosen.name}", loads)
 
 
@@ -139,16 +172,16 @@ def of_cases(what: Compared) -> Iterator[Alteration]:
 
 def of_loads(what: Compared) -> Iterator[Alteration]:
     """Yield loads of single joints left out, doubled, reversed and moved; those of a single case of several too."""
-    near = neighbours(what.truss)
-    unit = what.truss.force
-    sources = [(Part((), "", what.case.as_floats()), 0)]
+    near, unit = neighbours(what.truss), what.truss.force
+    total = what.case.as_floats()
+    sources = [(Part((), "", total), 0)]
     if len(what.parts) > 1:
         sources += [(part, 2) for part in what.parts]
     for part, strain in sources:
         loads = {joint: load for joint, load in part.loads.items() if any(load)}
         everywhere = len(loads) * len(what.truss.joints) <= MOST_MOVES
         for joint, (fx, fy) in loads.items():
-            if strain and what.case.as_floats().get(joint) == (fx, fy):
+            if strain and total.get(joint) == (fx, fy):
                 continue  # the whole load of the joint is from this case
             of_case = f" of {part.words}" if strain else ""
             named = f"the load ({plain(fx)}, {plain(fy)}) {unit} on {joint}{of_case}"
@@ -215,7 +248,7 @@ def of_supports(truss: Truss) -> Iterator[Alteration]:
                 explanation="support-extra", where=(joint,), words=words, supports=((joint, PIN),), strain=2
             )
             for turned in _turned(links[0], joint, truss):
-                yield turned_to(joint, turned, truss, strain=3)
+                yield turned_to(joint, turned, strain=3)
     for name in (joint.name for joint in truss.joints if joint.name not in held):
         for link, way in zip(PIN, ("sideways", "up and down"), strict=True):
             words = f"a support at {name} that holds it {way}"
@@ -224,7 +257,7 @@ def of_supports(truss: Truss) -> Iterator[Alteration]:
             )
 
 
-def turned_to(joint: str, link: Pair, truss: Truss, *, strain: int, fitted: int = 0) -> Alteration:
+def turned_to(joint: str, link: Pair, *, strain: int, fitted: int = 0) -> Alteration:
     """Return the roller at a joint with its reaction along another direction."""
     angle = math.degrees(math.atan2(link[1], link[0])) % 180
     words = f"the roller at {joint} turned, its reaction at {plain(angle)} degrees to the x axis"
@@ -264,7 +297,7 @@ def _turned(link: Pair, joint: str, truss: Truss) -> list[Pair]:
 # --- geometry ---------------------------------------------------------------------------------------------
 
 
-def of_members(truss: Truss, listed: Iterable[str]) -> Iterator[Alteration]:
+def of_members(listed: Iterable[str]) -> Iterator[Alteration]:
     """Yield each of the listed members left out."""
     for name in listed:
         yield Alteration(
@@ -299,7 +332,6 @@ def displaced(joint: str, spot: Pair, words: str, *, strain: int, fitted: int = 
 def of_mirrors(what: Compared) -> Iterator[Alteration]:
     """Yield the truss mirrored under its loads and supports, and where it is its own image, loads or supports alone."""
     places = {joint.name: (float(joint.x), float(joint.y)) for joint in what.truss.joints}
-    loads = what.case.as_floats()
     for axis, way in enumerate(("left to right", "upside down")):
         level = [place[axis] for place in places.values()]
         middle = (min(level) + max(level)) / 2
@@ -313,7 +345,7 @@ def of_mirrors(what: Compared) -> Iterator[Alteration]:
         )
         partners = _partners(places, image)
         if partners:
-            yield from _loads_mirrored(what, partners, axis, way, loads)
+            yield from _loads_mirrored(what, partners, axis, way)
 
 
 def _mirrored(place: Pair, axis: int, middle: float) -> Pair:
@@ -333,9 +365,9 @@ def _partners(places: Mapping[str, Pair], image: Mapping[str, Pair]) -> dict[str
     return found
 
 
-def _loads_mirrored(
-    what: Compared, partners: Mapping[str, str], axis: int, way: str, loads: Mapping[str, Pair]
-) -> Iterator[Alteration]:
+def _loads_mirrored(what: Compared, partners: Mapping[str, str], axis: int, way: str) -> Iterator[Alteration]:
+    loads = what.case.as_floats()
+
     def turned(vector: Pair) -> Pair:
         return _mirrored(vector, axis, 0.0)
 
@@ -369,7 +401,5 @@ def plain(value: float) -> str:
     >>> plain(-12.5), plain(123456.0), plain(1 / 3), plain(0.0)
     ('-12.5', '123456', '0.3333', '0')
     """
-    if abs(value) >= 1000:
-        return f"{value:.0f}"
     text = f"{value:.{max(0, 3 - math.floor(math.log10(abs(value))))}f}" if value else "0"
     return text.rstrip("0").rstrip(".") if "." in text else text

@@ -7,109 +7,137 @@ joints, by ``frame``). A table that agrees within roundings and tolerance is nev
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Iterable, Sequence
 from typing import Final
 
-from trusscalc import alterations, fitting, frame, screening, stiffness
-from trusscalc.alterations import Compared, compared
+from trusscalc import alterations, fitting, frame, pairs, screening, stiffness
+from trusscalc.alterations import Compared, compared, plain
 from trusscalc.altered import Alteration, altered, in_turn, tabulated
-from trusscalc.errors import InputError, UnknownNameError
-from trusscalc.explanations import Explanation, Trial, explanations, ranked, share
-from trusscalc.fits import ALLOWED, APART, PRINTED, SHARP, Fit, Printed, fit, reactions_as_named
+from trusscalc.comparison import Comparison
+from trusscalc.errors import InputError
+from trusscalc.explanations import Explanation, Trial, explanations
+from trusscalc.fits import ALLOWED, APART, SHARP, Fit, Printed, fit, reactions_by_name
+from trusscalc.loads import LoadCase
 from trusscalc.ratios import known_ratios
-from trusscalc.screening import Screen
+from trusscalc.screening import MOST_EXCHANGED, PAIR, Screen
 from trusscalc.trussfile import TrussFile
 
 MOST_JOINTS: Final = 600
 """Larger trusses are not searched."""
+MOST_TOLD: Final = 4
+"""Values or joints named where nothing explains the results."""
 WORST_BALANCE: Final = 1e-6
 """An altered model whose joints are further from equilibrium is a mechanism."""
+NOTHING: Final = Alteration(explanation="", where=(), words="")
+
+Ratios = Sequence[tuple[float, str]]
 
 
-def diagnose(
-    stated: TrussFile,
-    name: str,
-    forces: Mapping[str, float],
-    half_units: Mapping[str, float],
-    *,
-    reactions: Mapping[str, float] | None = None,
-    reaction_half_units: Mapping[str, float] | None = None,
-    allowed: Mapping[str, float] | None = None,
-) -> tuple[Explanation, ...]:
+def diagnose(comparison: Comparison, stated: TrussFile) -> tuple[Explanation, ...]:
+    """Return explanations of the differences a comparison shows, the best first; nothing where it shows none.
+
+    Parameters
+    ----------
+    comparison : Comparison
+        Their results beside ours; its criterion is the tolerance.
+    stated : TrussFile
+        Our truss, cases and combinations.
+    """
+    ours, criterion = comparison.ours.decimal, comparison.criterion
+    shares = float(criterion.relative), float(criterion.absolute) * comparison.largest
+    rows, reactions = comparison.submitted.rows, comparison.submitted.reactions
+    allowed = {row.member: shares[0] * abs(ours.get(row.member, 0.0)) + shares[1] for row in rows}
+    allowed |= {name: item.tolerance for name, item in comparison.reactions.items()}
+    printed = Printed(
+        {row.member: float(row.force) for row in rows},
+        {row.member: float(row.digits) for row in rows},
+        reactions={row.name: float(row.force) for row in reactions},
+        reaction_half_units={row.name: float(row.digits) for row in reactions},
+        allowed=allowed,
+    )
+    found = explain(stated, comparison.case, printed)
+    if found or not comparison.differing:
+        return found
+    text = (
+        f"{_listed(comparison.differing)} of another sense, within the tolerance: nothing that a blunder would explain"
+    )
+    return (Explanation("unexplained", comparison.differing, text, 0.0, fits=False),)
+
+
+def explain(stated: TrussFile, case: str | LoadCase, printed: Printed) -> tuple[Explanation, ...]:
     """Return explanations of printed results that differ from ours, the best first; nothing where they agree.
 
     Parameters
     ----------
     stated : TrussFile
         Our truss, cases and combinations.
-    name : str
+    case : str or LoadCase
         The case or combination the results are for.
-    forces, half_units : mapping of member name to float
-        The printed member forces, tension positive, in the truss's unit of force, and half a unit of the last digit
-        printed. Members may be missing.
-    reactions, reaction_half_units : mapping of link name to float
-        Printed reactions where there are any, such as ``L0.x``.
-    allowed : mapping of member or link name to float
-        What a value may differ by besides its rounding.
+    printed : Printed
+        The results.
 
     Raises
     ------
     UnknownNameError
-        When a member or link, the case or the combination is not there.
+        When the case or the combination is not there.
 
     Notes
     -----
     Statically indeterminate trusses are taken with the same EA in all members.
+
+    Examples
+    --------
+    >>> from trusscalc.truss import Truss
+    >>> roof = Truss({"A": (0, 0), "B": (8, 0), "C": (4, 3)}, ["A-B", "A-C", "C-B"], {"A": "pin", "B": "roller"})
+    >>> stated = TrussFile(roof, (LoadCase("snow", {"C": (3, -12)}),))
+    >>> printed = Printed({"A-B": 9.5, "A-C": -8.13, "C-B": -11.88}, dict.fromkeys(("A-B", "A-C", "C-B"), 0.005))
+    >>> explain(stated, "snow", printed)
+    ()
+    >>> on_the_right = Printed({"A-B": 6.5, "A-C": -8.13, "C-B": -11.88}, printed.half_units)
+    >>> [(one.explanation, one.where) for one in explain(stated, "snow", on_the_right)][0]
+    ('support-exchanged', ('A', 'B'))
     """
-    what = compared(stated, name)
-    printed = _printed(what, forces, half_units, reactions or {}, reaction_half_units or {}, allowed or {})
-    before = _fit(what, printed, Alteration(explanation="", where=(), words=""))
+    what = compared(stated, case)
+    before = _fit(what, printed, NOTHING)
     if before is None or before.closeness <= ALLOWED:
         return ()
-    look = screening.screen(what, printed) if len(what.truss.joints) <= MOST_JOINTS else None
+    if len(what.truss.joints) > MOST_JOINTS:
+        text = f"not searched: the truss has more than {MOST_JOINTS} joints"
+        return (Explanation("unexplained", (), text, before.remainder, fits=False),)
+    look = screening.screen(what, printed)
     if look is None:
         return (_unexplained(what, None, before),)
-    trials = _single(what, printed, look, stated)
+    ratios = known_ratios(float(f) for each in stated.all_combinations for _, given in each.factors for f in given)
+    trials = _single(what, printed, look, ratios)
+    if all(trial.fit.closeness == APART for trial in trials):
+        trials += _double(what, printed, look, ratios)
     return explanations(trials, before, _unexplained(what, look, before))
-
-
-def _printed(
-    what: Compared,
-    forces: Mapping[str, float],
-    half_units: Mapping[str, float],
-    reactions: Mapping[str, float],
-    reaction_half_units: Mapping[str, float],
-    allowed: Mapping[str, float],
-) -> Printed:
-    spelled = {given: what.truss.member(given).name for given in {*forces, *half_units}}
-    links = {link.name for link in what.truss.links}
-    for given in reactions:
-        if given not in links:
-            message = f"there is no reaction {given!r}; there are {', '.join(sorted(links))}"
-            raise UnknownNameError(message, name=given)
-    return Printed(
-        {spelled[given]: value for given, value in forces.items()},
-        {spelled[given]: half_units[given] for given in forces},
-        dict(reactions),
-        {given: reaction_half_units[given] for given in reactions},
-        {spelled.get(given, given): value for given, value in allowed.items()},
-    )
 
 
 # --- trials -----------------------------------------------------------------------------------------------
 
 
-def _single(what: Compared, printed: Printed, look: Screen, stated: TrussFile) -> list[Trial]:
+def _single(what: Compared, printed: Printed, look: Screen, ratios: Ratios) -> list[Trial]:
     """Return the trials of one blunder each."""
     listed = plain_blunders(what, printed)
-    forces = screening.forces_of(look, listed)
-    near = screening.shortlist(look, listed, forces)
-    near += of_table(look, stated)
-    trials = _run(what, printed, near)
+    near = screening.shortlist(look, listed, screening.forces_of(look, listed))
+    near += of_table(look, look.forces, ratios)
+    trials = _run(what, printed, ((one,) for one in near))
     if min((trial.fit.closeness for trial in trials), default=APART) > SHARP:
         places = [one for one in near if one.explanation == "joint-displaced"]
-        trials += _run(what, printed, fitted_blunders(look, what, places))
+        trials += _run(what, printed, ((one,) for one in fitted_blunders(look, what, places)))
     return trials
+
+
+def _double(what: Compared, printed: Printed, look: Screen, ratios: Ratios) -> list[Trial]:
+    """Return the trials of two blunders each."""
+    listed = plain_blunders(what, printed)
+    forces = screening.forces_of(look, listed)
+    found = pairs.of_loads(look, listed, forces)
+    for place in {*pairs.near_in_proportion(look, forces), *pairs.few_rows_off(look, forces, MOST_EXCHANGED)}:
+        found += [(listed[place], one) for one in of_table(look, forces[:, place], ratios)]
+    found += pairs.on_altered_models(look, listed, pairs.first_blunders(look, listed, forces))
+    return _run(what, printed, found)
 
 
 def plain_blunders(what: Compared, printed: Printed) -> list[Alteration]:
@@ -124,21 +152,22 @@ def plain_blunders(what: Compared, printed: Printed) -> list[Alteration]:
         *alterations.of_loads(what),
         *alterations.of_supports(what.truss),
         *alterations.of_mirrors(what),
-        *alterations.of_members(what.truss, gone),
+        *alterations.of_members(gone),
         *alterations.of_places(what.truss),
     ]
 
 
-def of_table(look: Screen, stated: TrussFile) -> list[Alteration]:
-    """Return blunders of the table alone: a common ratio, rows exchanged."""
-    factors = [float(f) for each in stated.combinations for _, given in each.factors for f in given]
-    found = fitting.of_ratio(look, look.forces, known_ratios(factors))
-    rows = screening.exchanged_rows(look, look.forces)
+def of_table(look: Screen, forces: screening.Floats, ratios: Ratios) -> list[Alteration]:
+    """Return blunders of the table that make a model's forces the printed ones: a common ratio, rows exchanged."""
+    found = fitting.of_ratio(look, forces, ratios)
+    rows = screening.exchanged_rows(look, forces)
     if rows:
         names = tuple(member for member, _ in rows)
-        words = f"the values of {' and '.join(names) if len(names) == 2 else ', '.join(names)} exchanged"
-        strain = 2 if len(rows) == 2 else 7
-        found.append(Alteration(explanation="rows-exchanged", where=names, words=words, rows=tuple(rows), strain=strain))
+        words = f"the values of {_listed(names)} exchanged"
+        strain = 2 if len(rows) == PAIR else 7
+        found.append(
+            Alteration(explanation="rows-exchanged", where=names, words=words, rows=tuple(rows), strain=strain)
+        )
     return found
 
 
@@ -152,13 +181,14 @@ def fitted_blunders(look: Screen, what: Compared, slipped: Sequence[Alteration])
     ]
 
 
-def _run(what: Compared, printed: Printed, listed: Iterable[Alteration]) -> list[Trial]:
-    """Return a trial of each alteration whose model holds together."""
+def _run(what: Compared, printed: Printed, listed: Iterable[tuple[Alteration, ...]]) -> list[Trial]:
+    """Return a trial of each blunder or pair whose model holds together."""
     found = []
-    for one in listed:
+    for blunders in listed:
+        one = blunders[0] if len(blunders) == 1 else in_turn(*blunders)
         measured = _fit(what, printed, one)
         if measured is not None:
-            found.append(Trial((one,), measured))
+            found.append(Trial(blunders, measured))
     return found
 
 
@@ -174,12 +204,35 @@ def _fit(what: Compared, printed: Printed, one: Alteration) -> Fit | None:
     found = stiffness.solve(truss, case)
     if not found.condition < float("inf") or found.residual > WORST_BALANCE:
         return None
-    return fit(printed, tabulated(one, found.forces), reactions_as_named(what.truss, found.reactions, truss))
+    reactions = reactions_by_name(printed.reactions, what.truss, truss, found.reactions)
+    return fit(printed, tabulated(one, found.forces), reactions)
 
 
 # --- nothing found ----------------------------------------------------------------------------------------
 
 
 def _unexplained(what: Compared, look: Screen | None, before: Fit) -> Explanation:
-    text = "none of the blunders tried reproduces the values"
-    return Explanation("unexplained", (), text, before.remainder, fits=False)
+    """Return what can be said all the same: which values differ, if they are few, and which joints do not balance."""
+    text, where = "none of the blunders tried reproduces the values", tuple[str, ...]()
+    if look is not None:
+        rows = screening.rows_off(look, look.forces)
+        joints = fitting.implied_otherwise(look)
+        if len(rows) <= PAIR:
+            where = tuple(rows)
+            text += f"; all values agree but {_listed(where)}"
+        elif 0 < len(joints) <= MOST_TOLD:
+            where = tuple(joint for joint, *_ in joints)
+            unit = what.truss.force
+            told = [f"{joint} carries ({plain(x)}, {plain(y)}) {unit} more than stated" for joint, x, y in joints]
+            text += f"; by their own equilibrium, {_listed(told)}, and all other joints what is stated"
+        elif not joints:
+            text += "; the joints are in equilibrium under the stated loads, so that supports or stiffnesses may differ"
+        else:
+            text += f"; {len(joints)} joints are not in equilibrium under the stated loads"
+    return Explanation("unexplained", where, text, before.remainder, fits=False)
+
+
+def _listed(names: Sequence[str]) -> str:
+    """Return names as a list in words."""
+    shown = [*names[:MOST_TOLD], *([f"{len(names) - MOST_TOLD} more"] if len(names) > MOST_TOLD else [])]
+    return shown[0] if len(shown) == 1 else f"{', '.join(shown[:-1])} and {shown[-1]}"

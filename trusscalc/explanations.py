@@ -18,6 +18,8 @@ PER_NUMBER: Final = 1.5
 """A remainder counts so many times for every number fitted to the values, and for every step of strain a little."""
 PER_BLUNDER: Final = 3.0
 """A second blunder must make the remainder that much smaller to come first."""
+LEAST_TOLD: Final = 0.001
+"""Per cent of the largest force."""
 MOSTLY: Final = 0.1
 """What leaves less than this share of the difference explains most of it."""
 
@@ -83,7 +85,7 @@ class Trial:
 
 
 def ranked(trials: Sequence[Trial]) -> list[Trial]:
-    """Return the trials, the best first: by closeness, then by simplicity among those that fit, else by what is left."""
+    """Return the trials, the best first: by closeness; then, if they fit, by simplicity, else by what they leave."""
     best: dict[tuple[Name, ...], Trial] = {}
     for trial in sorted(trials, key=_order):
         best.setdefault(trial.name, trial)
@@ -156,4 +158,4 @@ def _told(trial: Trial, before: Fit) -> Explanation:
 def share(part: float) -> str:
     """Return a part of the largest force in words."""
     percent = 100 * part
-    return f"{plain(float(f'{percent:.2g}'))} % of the largest force" if percent >= 1e-3 else "under 0.001 %"
+    return f"{plain(float(f'{percent:.2g}'))} % of the largest force" if percent >= LEAST_TOLD else "under 0.001 %"

@@ -3,14 +3,16 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
-from dataclasses import dataclass
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass, field
 from typing import Final
 
-from trusscalc.truss import Truss
+from trusscalc.truss import Link, Truss
 
 NOISE: Final = 1e-6
 """Share of the largest force within which analyses differ without a reason: single precision, stiff springs."""
+
+AXES: Final = ("x", "y")
 
 SHARP, PRINTED, ALLOWED, APART = range(4)
 """How closely: within the digits of the table as a whole, of every value as printed, within the tolerance, or not."""
@@ -27,16 +29,16 @@ class Printed:
     half_units : dict of str to float
         Half a unit of the last digit printed.
     reactions, reaction_half_units : dict of str to float
-        The same for reactions by link name, where they are given.
+        The same for reactions, by link or as components such as ``L0.x``, where they are given.
     allowed : dict of str to float
         What each value may differ by besides its rounding; 0 where nothing is stated.
     """
 
     forces: Mapping[str, float]
     half_units: Mapping[str, float]
-    reactions: Mapping[str, float]
-    reaction_half_units: Mapping[str, float]
-    allowed: Mapping[str, float]
+    reactions: Mapping[str, float] = field(default_factory=dict)
+    reaction_half_units: Mapping[str, float] = field(default_factory=dict)
+    allowed: Mapping[str, float] = field(default_factory=dict)
 
     @property
     def largest(self) -> float:
@@ -123,32 +125,42 @@ def _closeness(off: float, sharp: float, rounding: float, allowed: float) -> int
     return APART
 
 
-def reactions_as_named(truss: Truss, reactions: Mapping[str, float], altered: Truss) -> dict[str, float]:
-    """Return an altered model's reactions under the names of the truss's own links, as far as they have a meaning.
+def reactions_by_name(
+    names: Iterable[str], truss: Truss, altered: Truss, reactions: Mapping[str, float]
+) -> dict[str, float]:
+    """Return an altered model's reactions under the names they are printed by, as far as these have a meaning in it.
 
     Parameters
     ----------
-    truss : Truss
-        Whose links are asked for.
+    names : iterable of str
+        Links of the truss, or ``L0.x`` and ``L0.y`` for the components of all that holds a joint.
+    truss, altered : Truss
+        Whose links the names are, and the truss that was solved.
     reactions : dict of str to float
-        The altered truss's, by its own link names.
-    altered : Truss
-        The truss they are of.
+        Of the altered truss, by its own link names.
     """
     totals: dict[str, tuple[float, float]] = {}
     for link in altered.links:
-        dx, dy = float(link.dx), float(link.dy)
-        size = math.hypot(dx, dy)
+        dx, dy = _unit(link)
         x, y = totals.get(link.joint, (0.0, 0.0))
-        totals[link.joint] = (x + reactions[link.name] * dx / size, y + reactions[link.name] * dy / size)
-    found = {}
+        totals[link.joint] = (x + reactions[link.name] * dx, y + reactions[link.name] * dy)
+    links = {link.name: link for link in truss.links}
     kept = {support.joint: support.links for support in altered.supports}
-    for support in truss.supports:
-        x, y = totals.get(support.joint, (0.0, 0.0))
-        for link in support.links:
-            if kept.get(support.joint) == support.links:
-                found[link.name] = reactions[link.name]
-            elif support.kind != "links" or len(support.links) == 1:
-                dx, dy = float(link.dx), float(link.dy)
-                found[link.name] = (x * dx + y * dy) / math.hypot(dx, dy)
+    several = {support.joint for support in truss.supports if len(support.links) > 1}
+    found = {}
+    for name in names:
+        joint, _, axis = name.rpartition(".")
+        x, y = totals.get(joint, (0.0, 0.0))
+        if axis in AXES:
+            found[name] = x if axis == "x" else y
+        elif name in links and links[name] in kept.get(joint, ()):
+            found[name] = reactions[name]
+        elif name in links and joint not in several:
+            dx, dy = _unit(links[name])
+            found[name] = x * dx + y * dy
     return found
+
+
+def _unit(link: Link) -> tuple[float, float]:
+    dx, dy = float(link.dx), float(link.dy)
+    return dx / math.hypot(dx, dy), dy / math.hypot(dx, dy)

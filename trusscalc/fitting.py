@@ -13,7 +13,7 @@ import numpy as np
 from trusscalc.alterations import Compared, displaced, neighbours, plain, turned_to
 from trusscalc.altered import Alteration, directions
 from trusscalc.frame import Frame, frame
-from trusscalc.screening import Flags, Floats, Screen, best_ratio, forces_of, misfits, ratio_range
+from trusscalc.screening import Flags, Floats, Screen, best_ratio, forces_of, ratio_range
 
 ROUNDS: Final = 12
 """Steps of a fit; four or five are usual."""
@@ -33,7 +33,9 @@ Forward = Callable[[Floats], Floats]
 
 def of_ratio(look: Screen, forces: Floats, ratios: Sequence[tuple[float, str]]) -> list[Alteration]:
     """Return what a common ratio of all values would be: the sign, a known ratio, or the one that fits best."""
-    found = []
+    found: list[Alteration] = []
+    if not (np.abs(look.values[look.given]) > look.rounding[look.given]).any():
+        return found
     for tolerance, strain in ((look.sharp, 0), (look.rounding, 2)):
         least, most = ratio_range(look, forces, tolerance)
         if least <= -1.0 <= most:
@@ -73,49 +75,37 @@ def _times(ratio: float, words: str, strain: int, *, fitted: int = 0) -> Alterat
 
 def of_load_sizes(look: Screen, what: Compared) -> Iterator[Alteration]:
     """Yield a case with another factor, and members with more or less weight than stated."""
-    if len(what.parts) > 1:
-        for part in what.parts:
-            loads = np.zeros_like(look.loads)
-            for joint, (fx, fy) in part.loads.items():
-                loads[2 * look.index[joint] : 2 * look.index[joint] + 2] += fx, fy
-            words = f"{part.words} with its loads times {{}}"
-            yield from _of_size(look, loads, "wrong-combination", part.where, words, 1.0, 5)
+    for part in what.parts if len(what.parts) > 1 else ():
+        loads = np.zeros_like(look.loads)
+        for joint, (fx, fy) in part.loads.items():
+            loads[2 * look.index[joint] : 2 * look.index[joint] + 2] += fx, fy
+        size = _size(look, loads)
+        words = f"{part.words} with its loads times {plain(1 + size)}"
+        yield _of_size(look, "wrong-combination", part.where, words, loads=size * loads, strain=5)
     weight = look.flexibility.own_weight()
-    for one in _of_size(look, weight, "case-doubled", ("self-weight",), "members heavier by {} per length", 0.0, 6):
-        less = one.loads[0][2] > 0
-        kind = "case-missing" if less else "case-doubled"
-        yield Alteration(
-            explanation=kind,
-            where=one.where,
-            words=f"{one.words} (the same for every member) than the stated loads",
-            loads=one.loads,
-            strain=one.strain,
-            fitted=1,
-        )
+    size = _size(look, weight)
+    words = f"{plain(abs(size))} {what.truss.force}/{what.truss.length} of every member"
+    kind, told = ("case-doubled", "weighing more") if size > 0 else ("case-missing", "weighing less")
+    yield _of_size(
+        look, kind, ("self-weight",), f"{words} {told} than the stated loads say", loads=size * weight, strain=6
+    )
+
+
+def _size(look: Screen, loads: Floats) -> float:
+    """Return how many times some loads fit the differences best when added."""
+    given = look.given
+    effect = ((look.flexibility.forces @ loads) / look.sharp)[given]
+    off = ((look.values - look.forces) / look.sharp)[given]
+    square = float(effect @ effect)
+    return float(effect @ off) / square if square else 0.0
 
 
 def _of_size(
-    look: Screen, loads: Floats, explanation: str, where: tuple[str, ...], words: str, base: float, strain: int
-) -> Iterator[Alteration]:
-    effect = look.flexibility.forces @ loads
-    given = look.given
-    mine, off = (effect / look.sharp)[given], ((look.values - look.forces) / look.sharp)[given]
-    square = float(mine @ mine)
-    if square:
-        size = float(mine @ off) / square
-        listed = tuple(
-            (joint, size * float(loads[2 * place]), size * float(loads[2 * place + 1]))
-            for joint, place in look.index.items()
-            if loads[2 * place : 2 * place + 2].any()
-        )
-        yield Alteration(
-            explanation=explanation,
-            where=where,
-            words=words.format(plain(base + size)),
-            loads=listed,
-            strain=strain,
-            fitted=1,
-        )
+    look: Screen, explanation: str, where: tuple[str, ...], words: str, *, loads: Floats, strain: int
+) -> Alteration:
+    pairs: list[tuple[float, float]] = [(x, y) for x, y in loads.reshape(-1, 2).tolist()]
+    listed = tuple((joint, *pairs[place]) for joint, place in look.index.items() if any(pairs[place]))
+    return Alteration(explanation=explanation, where=where, words=words, loads=listed, strain=strain, fitted=1)
 
 
 # --- supports ---------------------------------------------------------------------------------------------
@@ -131,14 +121,14 @@ def of_directions(look: Screen, what: Compared) -> Iterator[Alteration]:
 
         def turned(angle: float, joint: str = joint) -> Alteration:
             link = (float(np.cos(angle)), float(np.sin(angle)))
-            return turned_to(joint, link, what.truss, strain=6, fitted=1)
+            return turned_to(joint, link, strain=6, fitted=1)
 
-        starts = [turned(np.pi * part / ANGLES) for part in range(ANGLES)]
-        apart = misfits(look, forces_of(look, starts), look.sharp)
-        if np.isfinite(apart).any():
-            best = np.array([np.pi * int(np.argmin(apart)) / ANGLES])
-            angle = fitted(look, lambda at, turned=turned: forces_of(look, [turned(float(at[0]))])[:, 0], best, 1e-5, 0.3)
-            yield turned(float(angle[0]))
+        def forward(angle: Floats, turned: Callable[[float], Alteration] = turned) -> Floats:
+            return forces_of(look, [turned(float(angle[0]))])[:, 0]
+
+        starts = [np.array([np.pi * part / ANGLES]) for part in range(ANGLES)]
+        best = _nearest(look, forward, starts)
+        yield turned(float(fitted(look, forward, best, 1e-5, 0.3)[0]))
 
 
 # --- places -----------------------------------------------------------------------------------------------
@@ -166,9 +156,8 @@ def of_free_places(look: Screen, what: Compared, slipped: Sequence[Alteration]) 
         def forward(spot: Floats, place: int = place) -> Floats:
             return look.flexibility.elsewhere(place, spot[None], look.loads)[:, 0]
 
-        best = min(
-            (fitted(look, forward, start, 1e-6 * size, size) for start in listed), key=lambda s: _apart(look, forward(s))
-        )
+        ends = [fitted(look, forward, start, 1e-6 * size, size) for start in listed]
+        best = _nearest(look, forward, ends)
         x, y = (best + look.origin).tolist()
         words = f"joint {joint} at ({plain(x)}, {plain(y)}), found by fitting, no plain slip of its coordinates"
         yield displaced(joint, (x, y), words, strain=8, fitted=2)
@@ -180,23 +169,52 @@ def unbalanced(look: Screen, values: Floats) -> Floats:
     What a support can take is not counted.
     """
     off = look.flexibility.implied(values) - look.loads.reshape(-1, 2)
-    for link, joint in enumerate(look.flexibility.held.tolist()):
-        others = look.flexibility.directions[look.flexibility.held == joint]
-        _, sizes, right = np.linalg.svd(others)
-        free = right[int((sizes > COLLINEAR).sum()) :]
-        off[joint] = free.T @ (free @ off[joint])
-        del link
-    return off
+    return np.asarray(np.einsum("jxy,jy->jx", look.flexibility.free_parts(), off), dtype=np.float64)
 
 
 def out_of_balance(look: Screen, values: Floats) -> Flags:
     """Return which joints the values do not balance, roundings aside (joints,)."""
-    tolerance = np.zeros(len(look.index))
-    np.add.at(tolerance, look.flexibility.start, look.rounding)
-    np.add.at(tolerance, look.flexibility.end, look.rounding)
     off = np.abs(unbalanced(look, values)).max(axis=1)
     with np.errstate(invalid="ignore"):
-        return np.asarray(off > tolerance, dtype=np.bool_)
+        return np.asarray(off > _joint_tolerance(look), dtype=np.bool_)
+
+
+def implied_otherwise(look: Screen) -> list[tuple[str, float, float]]:
+    """Return the joints out of balance with what the printed values say they carry besides the stated load."""
+    off, names = unbalanced(look, look.values).tolist(), list(look.index)
+    wrong = np.flatnonzero(out_of_balance(look, look.values)).tolist()
+    return [(names[place], off[place][0], off[place][1]) for place in wrong]
+
+
+def _joint_tolerance(look: Screen) -> Floats:
+    """Return the sum of the roundings of each joint's members (joints,)."""
+    tolerance = np.zeros(len(look.index))
+    for ends in (look.flexibility.start, look.flexibility.end):
+        np.add.at(tolerance, ends, look.rounding)
+    return tolerance
+
+
+def unbalanced_joints(look: Screen, moved: Sequence[Alteration]) -> list[int]:
+    """Return how many joints the printed values leave out of balance with one joint at another place, for each."""
+    model, values = look.flexibility, look.values
+    free, tolerance = model.free_parts(), _joint_tolerance(look)
+    off = model.implied(values) - look.loads.reshape(-1, 2)
+    found = []
+    for one in moved:
+        joint, x, y = one.places[0]
+        place = look.index[joint]
+        mine = np.flatnonzero((model.start == place) | (model.end == place))
+        others = np.where(model.start[mine] == place, model.end[mine], model.start[mine])
+        old = model.places[others] - model.places[place]
+        new = model.places[others] - ((x, y) - look.origin)
+        with np.errstate(invalid="ignore", divide="ignore"):
+            turned = new / np.hypot(new[:, 0], new[:, 1])[:, None] - old / np.hypot(old[:, 0], old[:, 1])[:, None]
+            there = off.copy()
+            there[others] += values[mine, None] * turned
+            there[place] -= values[mine] @ turned
+            left = np.abs(np.einsum("jxy,jy->jx", free, there)).max(axis=1)
+            found.append(int((left > tolerance).sum()))
+    return found
 
 
 def suspects(look: Screen, near: dict[str, list[str]]) -> list[str]:
@@ -259,8 +277,7 @@ def _radius(look: Screen, model: Frame, stiff: Flags) -> float:
         return model.axial(np.where(stiff, np.exp(2 * logarithm[0]), 0.0))
 
     starts = [np.array([np.log(mean / ratio)]) for ratio in SLENDERNESS]
-    start = min(starts, key=lambda at: _apart(look, forward(at)))
-    return float(np.exp(fitted(look, forward, start, 1e-4, 1.0)[0]))
+    return float(np.exp(fitted(look, forward, _nearest(look, forward, starts), 1e-4, 1.0)[0]))
 
 
 def _running_through(look: Screen) -> Flags:
@@ -305,6 +322,11 @@ def _off(look: Screen, forces: Floats) -> Floats:
     return np.asarray(((forces - look.values) / look.sharp)[look.given], dtype=np.float64)
 
 
-def _apart(look: Screen, forces: Floats) -> float:
-    off = _off(look, forces)
-    return float(off @ off) if np.isfinite(off).all() else np.inf
+def _nearest(look: Screen, forward: Forward, parameters: Sequence[Floats]) -> Floats:
+    """Return the parameters that leave the least squares of differences."""
+
+    def apart(at: Floats) -> float:
+        off = _off(look, forward(at))
+        return float(off @ off) if np.isfinite(off).all() else np.inf
+
+    return min(parameters, key=apart)

@@ -66,6 +66,12 @@ class Flexibility:
             np.add.at(total[:, axis], self.end, parts)
         return total
 
+    def free_parts(self) -> Floats:
+        """Return the projections (joints, 2, 2) on the directions in which each joint is not held."""
+        ways = free_ways(len(self.places), self.held, self.directions)
+        parts = ways.reshape(len(self.places), 2, -1)
+        return np.asarray(np.einsum("jxw,jyw->jxy", parts, parts), dtype=np.float64)
+
     def elsewhere(self, joint: int, spots: Floats, loads: Floats) -> Floats:
         """Return the member forces (members, spots) with one joint at each of the spots (spots, 2).
 
@@ -172,20 +178,14 @@ def flexibility(truss: FloatTruss) -> Flexibility | None:
 
 def free_ways(joints: int, held: Whole, directions: Floats) -> Floats:
     """Return the independent unit displacements the supports leave, as columns (2 joints, ways)."""
-    by_joint: dict[int, list[int]] = {}
-    for link, joint in enumerate(held.tolist()):
-        by_joint.setdefault(joint, []).append(link)
-    columns = []
-    for joint in range(joints):
-        ways = np.eye(2)
-        if joint in by_joint:
-            _, sizes, right = np.linalg.svd(directions[by_joint[joint]])
-            ways = right[int((sizes > NO_PIVOT * sizes[0]).sum()) :]
-        for way in ways:
-            column = np.zeros(2 * joints)
-            column[2 * joint : 2 * joint + 2] = way
-            columns.append(column)
-    return np.array(columns, dtype=np.float64).reshape(-1, 2 * joints).T
+    ways = np.eye(2 * joints)
+    kept = np.ones(2 * joints, dtype=np.bool_)
+    for joint in sorted(set(held.tolist())):
+        _, sizes, right = np.linalg.svd(directions[held == joint])
+        taken = int((sizes > NO_PIVOT * sizes[0]).sum())
+        ways[2 * joint : 2 * joint + 2, 2 * joint : 2 * joint + 2] = right.T
+        kept[2 * joint : 2 * joint + taken] = False
+    return ways[:, kept]
 
 
 def _axes(joints: Whole) -> Whole:

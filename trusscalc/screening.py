@@ -109,6 +109,7 @@ def forces_of(look: Screen, tried: Sequence[Alteration]) -> Floats:
     by_loads: list[int] = []
     by_joint: dict[str, list[int]] = {}
     by_member: list[int] = []
+    by_hold: list[int] = []
     for place, one in enumerate(tried):
         if one.of_loads_alone:
             by_loads.append(place)
@@ -116,10 +117,12 @@ def forces_of(look: Screen, tried: Sequence[Alteration]) -> Floats:
             by_joint.setdefault(one.places[0][0], []).append(place)
         elif one.without and not (one.loads or one.places or one.supports):
             by_member.append(place)
+        elif _is_plain_hold(look, one):
+            by_hold.append(place)
         else:
             found[:, place] = _forces_anew(look, one)
     if by_loads:
-        found[:, by_loads] = look.forces[:, None] + look.flexibility.forces @ _changes(
+        found[:, by_loads] = look.forces[:, None] + look.flexibility.forces @ changes(
             look, [tried[p] for p in by_loads]
         )
     for joint, listed in by_joint.items():
@@ -128,10 +131,22 @@ def forces_of(look: Screen, tried: Sequence[Alteration]) -> Floats:
     if by_member:
         each = look.flexibility.without_each(look.forces)
         found[:, by_member] = each[:, [look.members.index(tried[place].without) for place in by_member]]
+    if by_hold:
+        each = look.flexibility.holding_each(look.loads)
+        holds = [tried[place].supports[0] for place in by_hold]
+        found[:, by_hold] = each[:, [2 * look.index[joint] + (link == (0.0, 1.0)) for joint, (link,) in holds]]
     return found
 
 
-def _changes(look: Screen, tried: Sequence[Alteration]) -> Floats:
+def _is_plain_hold(look: Screen, one: Alteration) -> bool:
+    """Return whether nothing is altered but a free joint, held along an axis."""
+    if one.loads or one.places or one.without or len(one.supports) != 1:
+        return False
+    joint, links = one.supports[0]
+    return links in (((1.0, 0.0),), ((0.0, 1.0),)) and look.index[joint] not in look.flexibility.held
+
+
+def changes(look: Screen, tried: Sequence[Alteration]) -> Floats:
     """Return the loads added, (2 joints, alterations)."""
     added = np.zeros((len(look.loads), len(tried)))
     for place, one in enumerate(tried):
@@ -146,7 +161,7 @@ def _forces_anew(look: Screen, one: Alteration) -> Floats:
     model = flexibility(altered_floats(look, one))
     found = np.full(len(look.members), np.nan)
     if model is not None:
-        forces = model.forces @ (look.loads + _changes(look, [one])[:, 0])
+        forces = model.forces @ (look.loads + changes(look, [one])[:, 0])
         kept = np.array([name != one.without for name in look.members])
         found[kept], found[~kept] = forces, 0.0
     return found
@@ -217,8 +232,7 @@ def exchanged_rows(look: Screen, forces: Floats) -> list[tuple[str, str]]:
 
     Few rows may differ, and the values printed there are the same as those that should be.
     """
-    with np.errstate(invalid="ignore"):
-        wrong = np.flatnonzero(look.given & ~(np.abs(look.values - forces) <= look.rounding))
+    wrong = _rows_off(look, forces)
     if not PAIR <= len(wrong) <= MOST_EXCHANGED:
         return []
     theirs = wrong[np.argsort(look.values[wrong], kind="stable")]
@@ -226,3 +240,13 @@ def exchanged_rows(look: Screen, forces: Floats) -> list[tuple[str, str]]:
     if (np.abs(look.values[theirs] - forces[ours]) <= look.rounding[theirs]).all():
         return [(look.members[row], look.members[source]) for row, source in zip(theirs, ours, strict=True)]
     return []
+
+
+def rows_off(look: Screen, forces: Floats) -> list[str]:
+    """Return the members whose printed values are not a model's."""
+    return [look.members[row] for row in _rows_off(look, forces).tolist()]
+
+
+def _rows_off(look: Screen, forces: Floats) -> Whole:
+    with np.errstate(invalid="ignore"):
+        return np.flatnonzero(look.given & ~(np.abs(look.values - forces) <= look.rounding))
