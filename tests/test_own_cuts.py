@@ -152,3 +152,17 @@ def test_conveniences_on_the_truss() -> None:
     assert cut == own_cut(truss, keep=["L0", "L1", "U1"])
     assert "Solves alone" in cut.report(loads)._repr_mimebundle_()["text/plain"]
     assert "Bars cut" in cut._repr_mimebundle_()["text/plain"]
+
+
+def test_three_bars_of_one_joint_are_not_decided_together() -> None:
+    """A joint has two equations; force sums along three directions are still only two."""
+    truss = trusscalc.Truss(
+        {"A": (0, 0), "B": (6, 1), "C": (2, 5), "D": (3, 2), "E": (9, 4)},
+        ["A-B", "B-C", "C-A", "A-D", "B-D", "D-C", "E-C", "E-B"],
+        {"A": "pin", "E": {"reaction": (1, 3)}},
+    )
+    own = own_cut(truss, keep=["D"])
+    report = cut_report(own, trusscalc.LoadCase("", {"C": (3, -4)}))
+    assert len(report.unknown) == 3
+    assert report.together == ()
+    assert "meet in one point" in report.reason

@@ -135,6 +135,7 @@ def _closing(prices: Prices, table: Derivations, carried: tuple[int, ...], free:
 
 def reduced_row(row: list[int], rows: list[list[int]], p: int) -> list[int]:
     """Return the row with the pivots of earlier rows removed, leading entry 1."""
+    row = [entry % p for entry in row]
     for other in rows:
         pivot = next(place for place, entry in enumerate(other) if entry)
         if row[pivot]:
