@@ -225,7 +225,9 @@ def test_hs20_table_of_simple_spans(span: int, moment: str, shear: str) -> None:
     shears = shear_at_end(PUBLISHED["HS20-44 shear"].trains, span)
     assert abs(found - exact(Fraction(moment))) < rational(1, 12)
     assert abs(shears - exact(Fraction(shear))) < rational(1, 12)
-    assert found == rational(72 * (3 * span - 14) ** 2, 36 * span) - 112  # by hand: resultant and axle equally far from midspan
+    assert (
+        found == rational(72 * (3 * span - 14) ** 2, 36 * span) - 112
+    )  # by hand: resultant and axle equally far from midspan
 
 
 def test_hs20_long_span_is_the_lane_loading() -> None:

@@ -294,13 +294,7 @@ def test_of_equal_trains_the_first() -> None:
 
 
 def test_following_load_is_whole_and_unlimited() -> None:
-    """On a triangle the summit may be level, found from the parabola; light axles leave the chain to the load."""
-    largest = largest_of(TRIANGLE, Train("t", (20,), follow=(2, 3)))
-    # beyond the vertex the slope is -20/2 + 3 (20 - (x - 2)) / 2, zero at x = 46/3, which is 14/3 from the other end
-    assert largest.stand
-    assert (largest.stand.direction, largest.stand.lead_axle_at) == ("backward", rational(14, 3))
-    assert dict(largest.parts) == {"axles": rational(140, 3), "follow": rational(350, 3)}
-    assert largest.patches == ((rational(20, 3), exact(20), exact(3)),)
+    """It helps where the line is of the other sign; light axles leave the chain to the load alone."""
     passed = largest_of(TRIANGLE, Train("t", (10,), follow=(2, 3)))
     assert passed.value == 150
     assert passed.stand
@@ -309,6 +303,43 @@ def test_following_load_is_whole_and_unlimited() -> None:
     assert mixed.stand
     assert dict(mixed.parts)["follow"] == mixed.value - dict(mixed.parts)["axles"]
     assert (mixed.stand.direction, mixed.stand.lead_axle_at) == ("backward", 20)
+
+
+@pytest.mark.parametrize("axle", [13, 14, 20, 27])
+def test_a_level_summit(axle: int) -> None:
+    """Between two vertices the effect with a following load is a parabola; its summit by hand.
+
+    Beyond the vertex the slope is 3 (20 - (x - 2)) / 2 - axle / 2, zero at 22 - axle / 3; from the other end the same.
+    """
+    largest = largest_of(TRIANGLE, Train("t", (axle,), follow=(2, 3)))
+    lead = rational(axle, 3) - 2
+    assert largest.stand == Stand("t", "backward", lead, (lead,), (), at_limit=False)
+    assert dict(largest.parts) == {"axles": axle * lead / 2, "follow": 3 * (50 - (lead + 2) ** 2 / 4)}
+    assert largest.value == 150 + rational(axle * axle, 12) - axle
+    assert largest.patches == ((lead + 2, exact(20), exact(3)),)
+
+
+def test_a_level_summit_of_one_group() -> None:
+    """Two triangles far apart: the leading axle over one vertex, the other and its load level on the other triangle."""
+    line = line_of([0, 10, 20, 100, 110, 120], [0, 5, 0, 0, 5, 0])
+    largest = largest_of(line, Train("t", (100, 20), ((60, 120),), follow=(2, 3)))
+    assert largest.value == 500 + rational(490, 3)
+    second = 120 - rational(46, 3)
+    assert largest.stand == Stand("t", "backward", exact(10), (exact(10), second), (second - 10,), at_limit=False)
+
+
+def test_a_summit_over_a_zero_point() -> None:
+    """The last axle's load ends where the line changes its sign: level there, through a variable spacing too.
+
+    Both axles beyond the chain, the following load full on 0 to 17/3 and the accompanying one on all adverse lengths.
+    """
+    line = line_of([0, 4, "22/3"], [2, 2, -2])
+    for spacing in ((5, 5), (5, 6)):
+        largest = largest_of(line, Train("t", (24, 39), (spacing,), follow=(5, 8), beside=(3, 7)))
+        assert largest.value == 145
+        assert largest.stand
+        assert largest.stand.axles_at == (None, None)
+        assert largest.stand.lead_axle_at == 5 + 5 + rational(17, 3)
 
 
 def test_load_beside_the_group_on_adverse_lengths() -> None:
@@ -660,6 +691,32 @@ class TestAgainstTheSearch:
             found = search.best(10_000)
             assert moving_part(extreme) >= found - 1e-9 * (1 + found)
             check_stand(line, train, extreme, search)
+
+    @settings(max_examples=60)
+    @given(lines(), trains(uniform=True, variable=0), st.booleans())
+    def test_every_summit_is_a_critical_position(self, line: SimpleNamespace, train: Train, is_forward: bool) -> None:
+        """Every summit of the effect over a fine grid, not only the highest, has a critical position beside it."""
+        crossing = travel._crossing(line.positions, ordinates_of(line.ordinates), train)
+        way = 0 if is_forward else 1
+        train = replace(train, share=1)
+        for sense in (1, -1):
+            passage = Passage(
+                crossing.courses[way],
+                LoadedLine(*crossing.lines[way], sense),
+                LoadedLine(*crossing.fine[way], sense),
+                train,
+            )
+            (group,), (places,) = passage.course.groups, passage.course.places
+            summits = passage._level_summits(group, places, passage._effects(group, places), -np.inf)
+            known = np.array([float(at) for at in (*(spot.at for spot in places.spots), *summits)])
+            search = Search(line, train, sense)
+            at = np.linspace(known.min() - 1, known.max() + 1, 2_000)
+            lead = at if is_forward else search.positions[-1] - at
+            found = search.effect(lead, [float(low) for low, _ in train.spacing], ("forward", "backward")[way])
+            inner = found[1:-1]
+            is_summit = (inner > found[:-2] + 1e-9) & (inner > found[2:] + 1e-9)
+            for summit in at[1:-1][is_summit]:
+                assert np.abs(known - summit).min() <= 2 * (at[1] - at[0])
 
     def test_the_search_sees_a_lost_axle(self) -> None:
         """Negative control: against a train with one axle less it disagrees."""

@@ -146,7 +146,7 @@ class Course:
     reach: float
 
 
-@lru_cache(maxsize=64)
+@lru_cache(maxsize=16)
 def courses(knots: tuple[Exact, ...], train: Train) -> tuple[Course, Course]:
     """Return the critical positions of a train on a chain: travelling forward, and backward on the chain turned round.
 
@@ -295,19 +295,13 @@ def places_of(way: Way, group: Group, spots: Sequence[Spot]) -> Places:
 
 
 def _merged(way: Way, group: Group, known: Places, spots: Sequence[Spot]) -> Places:
-    """Return places with more spots among them; a spot that is there already is not taken twice."""
+    """Return places with more spots among them; one that is there already does no harm."""
     added = places_of(way, group, spots)
     both = [(spot, known, place) for place, spot in enumerate(known.spots)]
     both += [(spot, added, place) for place, spot in enumerate(added.spots)]
-    order = cmp_to_key(lambda a, b: _order(a[0].near - b[0].near, a[0], b[0], ZERO, way.slack))
-    both.sort(key=order)
-    kept = both[:1] + [
-        b
-        for a, b in pairwise(both)
-        if b[0].near - a[0].near > way.slack or (a[0].at, a[0].side) != (b[0].at, b[0].side)
-    ]
-    columns = tuple(tuple(places.columns[axle][place] for _, places, place in kept) for axle in range(len(group.axles)))
-    return Places(tuple(spot for spot, _, _ in kept), columns)
+    both.sort(key=cmp_to_key(lambda a, b: _order(a[0].near - b[0].near, a[0], b[0], ZERO, way.slack)))
+    columns = tuple(tuple(places.columns[axle][place] for _, places, place in both) for axle in range(len(group.axles)))
+    return Places(tuple(spot for spot, _, _ in both), columns)
 
 
 def _order(apart: float, a: Spot, b: Spot, shift: Exact, slack: float) -> int:

@@ -261,13 +261,13 @@ class Passage:
         return total
 
     def standing(self, group: Group, spot: Spot) -> list[tuple[int, Exact | None]]:
-        """Return where each axle of a group stands; None for one off the chain, and for one that is left out."""
+        """Return where each axle of a group stands; None off the chain, and for one left out as it adds nothing."""
         found: list[tuple[int, Exact | None]] = []
         for axle, offset in zip(group.axles, group.offsets, strict=True):
             location = spot.at - offset
             stands = self.course.way.carries(location, spot.side)
             if stands and self.train.omit:
-                stands = self.line.at(location).sign() >= 0
+                stands = self.line.at(location).sign() > 0
             found.append((axle, location if stands else None))
         return found
 

@@ -50,7 +50,7 @@ class Train:
     share : Exact
         Part of everything that this truss carries.
     omit : bool
-        Whether axles that help are left out.
+        Whether axles that add nothing or help are left out.
     follow : (Exact, Exact) or None
         Uniform load behind the last axle: distance from it, force per length; unlimited, whether it helps or not.
     beside : (Exact, Exact) or None

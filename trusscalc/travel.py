@@ -162,7 +162,6 @@ class _Found:
     arrangement: Arrangement
     direction: Direction
     lead: Exact
-    spacing: tuple[Exact, ...]
 
     def is_preferred_to(self, other: _Found) -> bool:
         """Return whether the effect is larger, or equal and the stand comes first by the rules."""
@@ -170,11 +169,7 @@ class _Found:
             return self.value > other.value
         if self.arrangement.at_limit != other.arrangement.at_limit:
             return other.arrangement.at_limit
-        if self.lead != other.lead:
-            return self.lead < other.lead
-        if self.direction != other.direction:
-            return self.direction == "forward"
-        return self.spacing < other.spacing
+        return self.lead < other.lead  # at the same position the first stays, and forward is tried first
 
 
 @dataclass(frozen=True, slots=True)
@@ -232,8 +227,7 @@ class _Crossing:
             for arrangement in passage.near(near_best):
                 at = arrangement.spots[0].at
                 lead = at if direction == "forward" else passage.course.way.knots[-1] - at
-                spacing = _spacing_taken(self.train, passage, arrangement)
-                found = _Found(arrangement.value, passage, arrangement, direction, lead, spacing)
+                found = _Found(arrangement.value, passage, arrangement, direction, lead)
                 if best is None or found.is_preferred_to(best):
                     best = found
         return best if best and best.value.sign() > 0 else None
@@ -252,11 +246,11 @@ def _crossing(positions: tuple[Exact, ...], ordinates: Ordinates, train: Train) 
     return _Crossing(train, (forward, backward), lines, fine)
 
 
-def _spacing_taken(train: Train, passage: Passage, arrangement: Arrangement) -> tuple[Exact, ...]:
+def _spacing_taken(train: Train, best: _Found) -> tuple[Exact, ...]:
     """Return the spacings of an arrangement: the fixed ones, and between two groups what is left."""
     between = [
         here.at - behind.at - group.offsets[-1]
-        for (here, behind), group in zip(pairwise(arrangement.spots), passage.course.groups, strict=False)
+        for (here, behind), group in zip(pairwise(best.arrangement.spots), best.passage.course.groups, strict=False)
     ]
     left = iter(between)
     return tuple(low if low == high else next(left) for low, high in train.spacing)
@@ -268,8 +262,8 @@ def _stand(train: Train, best: _Found, end: Exact) -> Stand:
         for axle, location in best.passage.standing(group, spot):
             if location is not None:
                 axles_at[axle] = location if best.direction == "forward" else end - location
-    at_limit = best.arrangement.at_limit
-    return Stand(train.name, best.direction, best.lead, tuple(axles_at), best.spacing, at_limit)
+    spacing = _spacing_taken(train, best)
+    return Stand(train.name, best.direction, best.lead, tuple(axles_at), spacing, best.arrangement.at_limit)
 
 
 def _axle_effect(train: Train, stand: Stand, line: LoadedLine) -> Exact:
