@@ -427,6 +427,13 @@ def test_symbols_are_refused() -> None:
         extremes(line, [PAIR])
 
 
+def test_sizes_beyond_floats_are_refused() -> None:
+    """Screening needs a product that a float can hold."""
+    line = line_of([0, 10, 20], [0, Fraction(10) ** 200, 0])
+    with pytest.raises(InexactNumberError, match="train 't': loads, lengths and ordinates are together too large"):
+        extremes(line, [Train("t", (Fraction(10) ** 200,))])
+
+
 # --- joint loads ------------------------------------------------------------------------------------------
 
 

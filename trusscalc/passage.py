@@ -6,6 +6,7 @@ bounded for the sizes at hand, is then worked out and compared exactly; the rest
 
 from __future__ import annotations
 
+import math
 from bisect import bisect_right
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
@@ -23,6 +24,7 @@ from trusscalc.criticalpositions import (
     runs,
     widened,
 )
+from trusscalc.errors import InexactNumberError
 from trusscalc.exact import ZERO, Exact
 from trusscalc.loadedline import LoadedLine
 from trusscalc.trains import Train
@@ -97,7 +99,11 @@ class Passage:
         reach = self.course.reach
         uniform = sum(map(float, self.intensity.values()))
         terms = len(self.weights) + len(self.fine.way.knots) + 16
-        return SAFETY * terms * (sum(self.weights) + uniform * reach) * (height + steepness * reach)
+        margin = SAFETY * terms * (sum(self.weights) + uniform * reach) * (height + steepness * reach)
+        if not math.isfinite(margin):
+            message = f"train {self.train.name!r}: loads, lengths and ordinates are together too large to be compared"
+            raise InexactNumberError(message)
+        return margin
 
     def _effects(self, group: Group, places: Places) -> list[float]:
         """Return the effect of a group at each of its spots."""
@@ -225,8 +231,7 @@ class Passage:
 
     def _nearly(self, group: int, indices: range, best: float) -> list[int]:
         totals = self.totals[group]
-        # "not below" instead of "above": sizes that overflow leave no float to compare, then all is decided exactly
-        return [index for index in indices if totals[index] != IMPOSSIBLE and not totals[index] < best - self.margin]
+        return [index for index in indices if totals[index] >= best - self.margin]
 
     def _arrangement(self, group: int, index: int) -> Arrangement:
         """Return the best exact arrangement of a group at a spot and all behind it; of equal ones the closest."""

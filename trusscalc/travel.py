@@ -120,7 +120,7 @@ def extremes(line: Line, trains: Sequence[Train]) -> tuple[Extreme, Extreme]:
     InputError
         When there is no train.
     InexactNumberError
-        When an ordinate holds a symbol.
+        When an ordinate holds a symbol, or when numbers are larger than floats can be.
 
     Examples
     --------
