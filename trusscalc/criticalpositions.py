@@ -297,9 +297,9 @@ def places_of(way: Way, group: Group, spots: Sequence[Spot]) -> Places:
 def _merged(way: Way, group: Group, known: Places, spots: Sequence[Spot]) -> Places:
     """Return places with more spots among them; one that is there already does no harm."""
     added = places_of(way, group, spots)
-    both = [(spot, known, place) for place, spot in enumerate(known.spots)]
-    both += [(spot, added, place) for place, spot in enumerate(added.spots)]
-    both.sort(key=cmp_to_key(lambda a, b: _order(a[0].near - b[0].near, a[0], b[0], ZERO, way.slack)))
+    both = [(spot, places, place) for places in (known, added) for place, spot in enumerate(places.spots)]
+    order = cmp_to_key(lambda a, b: _order(a.near - b.near, a, b, ZERO, way.slack))
+    both.sort(key=lambda item: order(item[0]))
     columns = tuple(tuple(places.columns[axle][place] for _, places, place in both) for axle in range(len(group.axles)))
     return Places(tuple(spot for spot, _, _ in both), columns)
 

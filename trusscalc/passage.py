@@ -187,7 +187,7 @@ class Passage:
         for (a, b), (left, right) in zip(pairwise(places.spots), pairwise(effects), strict=True):
             if not ends or (a.near == b.near and a.at == b.at):
                 continue
-            bends = [amount * slope[self._piece_between(a, b, *end)] for amount, slope, *end in ends]
+            bends = [amount * slope[self._piece_between(a, b, end, near)] for amount, slope, end, near in ends]
             if any(bends):
                 yield a, b, left, right, -sum(bends) * (b.near - a.near) ** 2 / 2
 
@@ -238,7 +238,8 @@ class Passage:
         if (group, index) in self.found:
             return self.found[group, index]
         spot = self.spots[group][index]
-        value, at_limit, spots = self._exact_effect(self.course.groups[group], spot), spot.side != 0, (spot,)
+        spots: tuple[Spot, ...] = (spot,)
+        value, at_limit = self._exact_effect(self.course.groups[group], spot), spot.side != 0
         if group + 1 < len(self.course.groups):
             first, after = self.course.windows[group][index]
             nearly = self._nearly(group + 1, range(first, after), max(self.totals[group + 1][first:after]))
