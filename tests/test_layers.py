@@ -34,6 +34,7 @@ LAYERS = (
         "publishedcombinations",
         "combinationsums",
         "combinationtables",
+        "trainvalues",
         "trains",
         "publishedtrains",
         "shapes",

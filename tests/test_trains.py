@@ -13,18 +13,8 @@ from trusscalc.errors import InputError, UnitError, UnknownNameError
 from trusscalc.exact import exact, rational, symbol
 from trusscalc.exacttext import parse
 from trusscalc.publishedtrains import published
-from trusscalc.trains import (
-    LARGEST_IMPACT,
-    MOST_AXLES,
-    MOST_VARIABLE,
-    LoadModel,
-    MovingLoad,
-    Train,
-    converted,
-    stated,
-    train_faults,
-    train_of,
-)
+from trusscalc.trains import LoadModel, MovingLoad, Train, converted, stated, train_faults, train_of
+from trusscalc.trainvalues import LARGEST_IMPACT, MOST_AXLES, MOST_VARIABLE
 
 WHERE = "[trains.pair]"
 FULL = {

@@ -21,11 +21,11 @@ Floats are only for finding a place in a list; where two of them are nearer than
 from __future__ import annotations
 
 from bisect import bisect_right
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass, replace
 from functools import cmp_to_key, lru_cache
 from itertools import pairwise
-from typing import Final, Literal
+from typing import Any, Final, Literal
 
 from trusscalc.exact import ZERO, Exact
 from trusscalc.trains import Train
@@ -281,7 +281,7 @@ def _places(way: Way, group: Group, positions: Mapping[Exact, bool]) -> Places:
         for near in [float(at)]
         for side in (SIDES if is_end else (0,))
     ]
-    spots.sort(key=cmp_to_key(lambda a, b: _order(a.near - b.near, a, b, ZERO, way.slack)))
+    spots.sort(key=_by_position(way.slack))
     return places_of(way, group, spots)
 
 
@@ -298,10 +298,19 @@ def _merged(way: Way, group: Group, known: Places, spots: Sequence[Spot]) -> Pla
     """Return places with more spots among them; one that is there already does no harm."""
     added = places_of(way, group, spots)
     both = [(spot, places, place) for places in (known, added) for place, spot in enumerate(places.spots)]
-    order = cmp_to_key(lambda a, b: _order(a.near - b.near, a, b, ZERO, way.slack))
+    order = _by_position(way.slack)
     both.sort(key=lambda item: order(item[0]))
     columns = tuple(tuple(places.columns[axle][place] for _, places, place in both) for axle in range(len(group.axles)))
     return Places(tuple(spot for spot, _, _ in both), columns)
+
+
+def _by_position(slack: float) -> Callable[[Spot], Any]:
+    """Return the key that sorts spots by (at, side)."""
+
+    def compare(a: Spot, b: Spot) -> int:
+        return _order(a.near - b.near, a, b, ZERO, slack)
+
+    return cmp_to_key(compare)
 
 
 def _order(apart: float, a: Spot, b: Spot, shift: Exact, slack: float) -> int:
