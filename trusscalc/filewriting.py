@@ -126,6 +126,6 @@ def value_text(value: Any) -> str:
         return f"[{', '.join(map(value_text, value))}]"
     if isinstance(value, dict):
         return f"{{ {', '.join(f'{_key(key)} = {value_text(item)}' for key, item in value.items())} }}"
-    if isinstance(value, int):
+    if isinstance(value, int) and not isinstance(value, bool):
         return str(value)
     return json.dumps(value, ensure_ascii=False).replace("\x7f", "\\u007f")
