@@ -72,6 +72,8 @@ class InfluenceLine(Convenient):
     shear_terms : tuple of Term
         For a shear, the loads and reactions left of the section with the load at ``shown_joint``; their products add up
         to the ordinate.
+    prefer : str
+        What the steps lean to, as asked for.
     """
 
     target: str
@@ -89,6 +91,7 @@ class InfluenceLine(Convenient):
     found: tuple[Mapping[str, Exact], ...] = ()
     section: PanelSection | None = None
     shear_terms: tuple[Term, ...] = ()
+    prefer: Preference = ""
 
     @property
     def agreed(self) -> bool:
@@ -213,6 +216,7 @@ def influence_line(
         steps=tuple(writer.steps),
         found=tuple(_forces_found(each.steps) for each in written),
         shear_terms=sought.terms(runs.structure(shown), writer.tensions) if isinstance(sought, PanelShear) else (),
+        prefer=prefer,
     )
 
 

@@ -7,11 +7,15 @@ sheet a skipped piece is a wrong sheet.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-from typing import Literal
+from dataclasses import dataclass, field
+from types import MappingProxyType
+from typing import Final, Literal
 
 from trusscalc.exact import Exact
 from trusscalc.sheet.marks import Figure
+
+ADDED: Final = MappingProxyType({"added": True})
+"""Marks a field that is newer than sheets already filed: unset, it does not count in their digest."""
 
 # --- mathematics ------------------------------------------------------------------------------------------
 
@@ -264,6 +268,14 @@ class Origin:
         Which derivations the sheet holds: ``members``, ``all`` or ``summary``.
     graphics : bool
         Whether it has the appendix of graphic statics.
+    task : str
+        What it is of: ``check``, ``envelope`` or ``influence``.
+    target : str
+        Of an influence line: the force.
+    along : str
+        Its chain, a name of the file or the joints.
+    train : str
+        The name of the train that stands on it, '' for none.
     """
 
     truss_text: str
@@ -280,6 +292,10 @@ class Origin:
     drawings: bool = True
     detail: Literal["members", "all", "summary"] = "members"
     graphics: bool = False
+    task: Literal["check", "envelope", "influence"] = field(default="check", metadata=ADDED)
+    target: str = field(default="", metadata=ADDED)
+    along: str = field(default="", metadata=ADDED)
+    train: str = field(default="", metadata=ADDED)
 
 
 @dataclass(frozen=True, slots=True)

@@ -9,7 +9,6 @@ from dataclasses import replace
 from trusscalc.errors import InputError, TrusscalcWarning
 from trusscalc.exacttext import to_text
 from trusscalc.files import reads, writes
-from trusscalc.loads import LoadCase
 from trusscalc.membercheck import MemberCheck
 from trusscalc.project import LINES, Project
 from trusscalc.sheet import figures, front, record
@@ -20,8 +19,8 @@ from trusscalc.sheet.derivation import Writer, writer_of
 from trusscalc.sheet.detail import DETAILS, Detail, bodies_drawn_once, shown
 from trusscalc.sheet.figures import Figure
 from trusscalc.sheet.inputecho import input_echo
+from trusscalc.sheet.sameinput import same_loads, same_truss
 from trusscalc.sheet.words import found_in
-from trusscalc.truss import Truss
 from trusscalc.trussfile import TrussFile
 
 MOST_PLACES = 12
@@ -75,16 +74,11 @@ def compose(
     if not check.own_checks:
         message = "this check was made without the steps' own checks, which a sheet shows; make it with own_checks=True"
         raise InputError(message)
-    if not 0 <= places <= MOST_PLACES:
-        message = f"{places} decimal places: give a number from 0 to {MOST_PLACES}"
-        raise InputError(message)
-    if detail not in DETAILS:
-        message = f"detail {detail!r}: choose {', '.join(DETAILS[:-1])} or {DETAILS[-1]}"
-        raise InputError(message)
+    proven_options(places, detail)
     stated = _stated(check, truss_text) if truss_text else None
     project = project or (stated.project if stated else Project())
     text = truss_text or writes(TrussFile(check.truss, (check.case,), (), project))
-    check = replace(check, truss=(stated or _read_again(text)).truss)  # the echo is of the text, groups and all
+    check = replace(check, truss=(stated or read_again(text)).truss)  # the echo is of the text, groups and all
     writer = writer_of(check, places)
     drawn = at_values(check)
     told = detail != "summary"
@@ -121,10 +115,25 @@ def compose(
     return Sheet(title, tuple(blocks), summary, replace(origin, detail=detail, graphics=graphics))
 
 
+def proven_options(places: int, detail: str = "members") -> None:
+    """Raise an InputError for decimal places or a detail that no sheet has."""
+    if not 0 <= places <= MOST_PLACES:
+        message = f"{places} decimal places: give a number from 0 to {MOST_PLACES}"
+        raise InputError(message)
+    if detail not in DETAILS:
+        message = f"detail {detail!r}: choose {', '.join(DETAILS[:-1])} or {DETAILS[-1]}"
+        raise InputError(message)
+
+
 def derivations(
-    writer: Writer, numbers: Collection[int], *, drawings: bool = True, each_drawn: bool = False
+    writer: Writer,
+    numbers: Collection[int],
+    *,
+    drawings: bool = True,
+    each_drawn: bool = False,
+    headed: bool = True,
 ) -> list[Block]:
-    """Return steps in their order: those that find reactions first stand under their own heading."""
+    """Return steps in their order; ``headed``: those that find reactions first stand under their own heading."""
     blocks: list[Block] = []
     heading = ""
     drawn = at_values(writer.check)
@@ -135,7 +144,7 @@ def derivations(
         links = all(writer.teller.is_link(name) for name in found_in(step))
         wanted = "Derivation of the reactions" if links and heading != "Derivation of the members" else ""
         wanted = wanted or "Derivation of the members"
-        if wanted != heading:
+        if headed and wanted != heading:
             heading = wanted
             blocks.append(Heading(2, heading))
         beside, drawn_as = once.get(step.number, (step.number, step.number))
@@ -177,33 +186,21 @@ def summary(check: MemberCheck, places: int = 3) -> tuple[Block, ...]:
 
 def _stated(check: MemberCheck, truss_text: str) -> TrussFile:
     """Return what the text states, once it is sure to be what was checked."""
-    stated = _read_again(truss_text)
-    if _without_groups(stated.truss) != _without_groups(check.truss):
+    stated = read_again(truss_text)
+    if not same_truss(stated.truss, check.truss):
         message = "the text of the truss file states another truss than was checked; give the text it was read from"
         raise InputError(message)
-    if _loads(stated.case(check.case.name)) != _loads(check.case):
+    if not same_loads(stated.case(check.case.name), check.case):
         message = f"the text of the truss file states other loads for {check.case.name!r} than were checked"
         raise InputError(message)
     return stated
 
 
-def _read_again(text: str) -> TrussFile:
+def read_again(text: str) -> TrussFile:
+    """Read a truss file that was read before, without its warnings."""
     with warnings.catch_warnings():
         warnings.simplefilter("ignore", TrusscalcWarning)  # told when the truss was made
         return reads(text)
-
-
-def _without_groups(truss: Truss) -> tuple[object, ...]:
-    members = tuple(replace(member, group="") for member in truss.members)
-    return (truss.joints, members, truss.supports, truss.length, truss.force, truss.tension_only, truss.no_uplift)
-
-
-def _loads(case: LoadCase) -> tuple[object, ...]:
-    return case.loads, tuple((name, value) for name, value in case.symbols if _uses(case, name))
-
-
-def _uses(case: LoadCase, name: str) -> bool:
-    return any(name in part.symbols for load in case.loads for part in (load.fx, load.fy))
 
 
 def _origin(check: MemberCheck, project: Project, text: str, places: int, *, drawings: bool) -> Origin:

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from typing import Final
 
 from trusscalc.exact import ZERO, Exact
+from trusscalc.loads import LoadCase
 from trusscalc.membercheck import ForceCheck, MemberCheck
 from trusscalc.sheet.blocks import (
     Bracket,
@@ -70,11 +71,14 @@ class Writer:
         Equations on paper.
     places : int
         Decimal places.
+    sums : str
+        What the sums of loads and reactions are called.
     """
 
     check: MemberCheck
     equations: EquationWriter
     places: int
+    sums: str = "the sums under Reactions"
 
     @property
     def teller(self) -> Teller:
@@ -93,8 +97,15 @@ class Writer:
             tables=(*tables, *self._numbered(step)),
             result=self._result(step),
             check=Lines(tuple(check)) if check else None,
-            notes=tuple(Paragraph(content, "note") for content in notes + check_notes),
+            notes=self._notes(notes + check_notes),
         )
+
+    def _notes(self, notes: Sequence[tuple[Inline, ...]]) -> tuple[Paragraph, ...]:
+        """Return notes as paragraphs; in brief they share one."""
+        if self.equations.brief and notes:
+            joined = [piece for content in notes for piece in (*content, Run(" "))]
+            return (Paragraph(tuple(joined[:-1]), "note"),)
+        return tuple(Paragraph(content, "note") for content in notes)
 
     def _right(self, step: Step) -> str:
         return ", ".join(self._told(step, name) for name in found_in(step))
@@ -154,7 +165,7 @@ class Writer:
         if step.partial:
             return [], []
         if equation is None:
-            where = "the sums under Reactions" if step.kind == "whole" else "the cross-check"
+            where = self.sums if step.kind == "whole" else "the cross-check"
             return [], [(Run(f"No other equation of this free body holds known forces alone; see {where}."),)]
         must_hold(not equation.residual, f"the check of step {step.number}")
         entries, _ = self.equations.entries(equation)
@@ -241,12 +252,16 @@ class Writer:
         return [Table(columns, rows, "Names that do not fit a subscript.")] if rows else []
 
 
-def writer_of(check: MemberCheck, places: int = 3) -> Writer:
-    """Return the writer of a check's steps."""
+def writer_of(
+    check: MemberCheck, places: int = 3, *, brief: bool = False, by_case: tuple[tuple[str, LoadCase], ...] = ()
+) -> Writer:
+    """Return the writer of a check's steps; ``brief`` and ``by_case`` as in ``EquationWriter``."""
     structure = structure_of(check.truss, check.case)
     groups = {member.name: member.group for member in check.truss.members}
     teller = Teller(structure, letters_of(structure, check.steps), *_sources(check), groups)
-    return Writer(check, EquationWriter(check.case, teller, symbols_of(structure)), places)
+    return Writer(
+        check, EquationWriter(check.case, teller, symbols_of(structure), brief=brief, by_case=by_case), places
+    )
 
 
 def tension_of(check: MemberCheck, name: str) -> Exact | None:

@@ -13,7 +13,7 @@ from typing import Any, Final
 
 from trusscalc.exact import Exact
 from trusscalc.exacttext import to_text
-from trusscalc.sheet.blocks import Sheet
+from trusscalc.sheet.blocks import Origin, Sheet
 
 FORMAT: Final = 1
 FINENESS: Final = 2
@@ -29,18 +29,30 @@ def record_of(sheet: Sheet) -> dict[str, Any]:
     return {
         "format": FORMAT,
         "program": origin.program,
-        "case": origin.case,
-        "members": list(origin.members),
-        "cuts": {name: list(kept) for name, kept in origin.cuts},
-        "prefer": origin.prefer,
+        **_asked(origin),
         "places": origin.places,
         "drawings": origin.drawings,
-        "detail": origin.detail,
-        "graphics": origin.graphics,
+        **({} if origin.task == "influence" else {"detail": origin.detail}),
+        **({"graphics": origin.graphics} if origin.task == "check" else {}),
         "project": dict(origin.project),
         "names": dict(origin.names),
         "input": hashlib.sha256(origin.truss_text.encode()).hexdigest(),
         "content": content_digest(sheet),
+    }
+
+
+def _asked(origin: Origin) -> dict[str, Any]:
+    """Return what was asked for; a check of members has no task, as in sheets filed before there were others."""
+    if origin.task == "envelope":
+        return {"task": origin.task, "members": list(origin.members)}
+    if origin.task == "influence":
+        asked = {"target": origin.target, "along": origin.along, "train": origin.train}
+        return {"task": origin.task, **asked, "prefer": origin.prefer}
+    return {
+        "case": origin.case,
+        "members": list(origin.members),
+        "cuts": {name: list(kept) for name, kept in origin.cuts},
+        "prefer": origin.prefer,
     }
 
 
@@ -70,6 +82,8 @@ def _plain(item: Any) -> Any:
     if isinstance(item, tuple):
         return [_plain(inner) for inner in item]
     if is_dataclass(item):
-        return [type(item).__name__, *(_plain(getattr(item, field.name)) for field in fields(item))]
+        held = [(field, getattr(item, field.name)) for field in fields(item)]
+        told = [value for field, value in held if not (field.metadata.get("added") and value == field.default)]
+        return [type(item).__name__, *map(_plain, told)]
     message = f"a sheet does not hold a {type(item).__name__}"
     raise TypeError(message)

@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import Final
+from typing import Final, Literal
 
 from trusscalc.exact import ONE, ZERO, Exact, rational
 from trusscalc.loads import LoadCase
@@ -70,11 +70,21 @@ class EquationWriter:
         Words.
     symbols : Symbols
         What forces are called.
+    brief : bool
+        Whether decimals of ten digits take the place of longer fractions already.
+    by_case : tuple of (str, LoadCase)
+        Cases that add up to the loads: many loads on the whole truss are collected case by case, not joint by joint.
     """
 
     case: LoadCase
     teller: Teller
     symbols: Symbols
+    brief: bool = False
+    by_case: tuple[tuple[str, LoadCase], ...] = ()
+
+    def printed(self, value: Exact, role: Literal["amount", "arm", "cosine"] = "amount") -> Number:
+        """Return a number as it stands in an equation of this writer."""
+        return printed(value, self.case, role, brief=self.brief)
 
     def entries(self, equation: Equation, sought: Sequence[str] = ()) -> tuple[list[Entry], Table | None]:
         """Return an equation's terms as they are written; many loads collected, with the table behind them."""
@@ -105,7 +115,7 @@ class EquationWriter:
             alike = _alike(entries, place)
             first = entries[place]
             if len(alike) < FEWEST_ALIKE:
-                force = printed(first.amount, self.case)
+                force = self.printed(first.amount)
                 written.append(Written(self.product(equation, first.coefficient, force), first.product))
                 place += 1
                 continue
@@ -115,28 +125,29 @@ class EquationWriter:
 
     def product(self, equation: Equation, coefficient: Exact, force: Name | Number) -> Product:
         """Return coefficient times force; a coefficient 1 is not written."""
-        return times(equation, coefficient, force, self.case)
+        return times(equation, coefficient, force, self.case, brief=self.brief)
 
     def evaluated(self, written: Written) -> Product:
         """Return a product multiplied out: exactly, or as a pencil does where rounded digits stand in it."""
         rough = multiplied(written.product, self.case)
         if rough is not None:
             return Product(rough.text.startswith("-"), (Decimals(rough.text.removeprefix("-")),))
-        return signed(printed(written.value, self.case))
+        return signed(self.printed(written.value))
 
     def _together(self, equation: Equation, alike: Sequence[Entry]) -> Written:
         """Return equal loads as one product: sum of arms, or their count, times the load."""
         first = alike[0]
         negative = first.coefficient.reads_negative()
         value = sum((entry.product for entry in alike), start=ZERO)
-        amount = printed(first.amount, self.case)
+        amount = self.printed(first.amount)
         sizes = [entry.coefficient.written_size() for entry in alike]
         factors: tuple[Number, ...]
         if all(size == sizes[0] for size in sizes):
-            coefficient = () if sizes[0] == ONE else (coefficient_of(equation, sizes[0], self.case),)
+            coefficient = () if sizes[0] == ONE else (coefficient_of(equation, sizes[0], self.case, brief=self.brief),)
             factors = (Value(rational(len(alike))), *coefficient)
         else:
-            factors = (Bracket(tuple(plus(coefficient_of(equation, size, self.case)) for size in sizes)),)
+            arms = (coefficient_of(equation, size, self.case, brief=self.brief) for size in sizes)
+            factors = (Bracket(tuple(map(plus, arms))),)
         return Written(Product(negative, (*factors, amount)), value)
 
     # --- many loads ---------------------------------------------------------------------------------------
@@ -148,32 +159,55 @@ class EquationWriter:
         for axis in "xy":
             own = [term for term in loads if term.axis == axis]
             if own:
-                entry, some = self._resultant_along(axis, own)
+                entry, some = self._resultant_along(axis, self._contributions(equation, axis, own))
                 entries.append(entry)
                 rows += some
         moment = equation.about.sum == "moment"
+        whole = bool(self.by_case) and equation.cut.kind == "whole"
         columns = (
-            Column("load at"),
+            Column("load case" if whole else "load at"),
             Column("force along the axis", "right"),
             Column("arm" if moment else "cosine", "right"),
             Column("adds to the sum", "right"),
         )
         where, what = self.teller.body(equation.cut), about_words(equation.about)
         acts = " The arm of a sum is the arm at which it acts." if moment else ""
+        if whole and moment and equation.about.joint:
+            acts = f" A load at {equation.about.joint} itself has no arm and is not in it.{acts}"
         if any(entry.symbol.base == "M" for entry in entries):
             acts = " M is what these loads add to the sum together."
         return entries, Table(columns, tuple(rows), f"Loads on the {where}, collected for {what}.{acts}")
 
-    def _resultant_along(self, axis: str, loads: Sequence[Term]) -> tuple[Entry, list[tuple[Inline | None, ...]]]:
-        signed_forces = [self._along_axis(term) * term.tension for term in loads]
-        products = [unscaled(term.product, term.scale) for term in loads]
-        rows: list[tuple[Inline | None, ...]] = [
-            self._row(term.name, axis, force, product)
-            for term, force, product in zip(loads, signed_forces, products, strict=True)
+    def _contributions(self, equation: Equation, axis: str, loads: Sequence[Term]) -> list[tuple[str, Exact, Exact]]:
+        """Return what the loads along an axis add to a sum, joint by joint or case by case: name, force, product."""
+        by_joint = [
+            (term.name, self._along_axis(term) * term.tension, unscaled(term.product, term.scale)) for term in loads
         ]
-        force, product = sum(signed_forces, start=ZERO), sum(products, start=ZERO)
+        if not self.by_case or equation.cut.kind != "whole":
+            return by_joint
+        joints, about = self.teller.structure.joints, equation.about
+        found = []
+        for name, case in self.by_case:
+            amounts = [
+                (
+                    load.fx if axis == "x" else load.fy,
+                    about.axis_lever(axis, joints[load.joint].x, joints[load.joint].y),
+                )
+                for load in case.loads
+            ]
+            amounts = [(amount, lever) for amount, lever in amounts if amount and lever]
+            force = sum((amount for amount, _ in amounts), start=ZERO)
+            product = sum((amount * lever for amount, lever in amounts), start=ZERO)
+            found += [(name, force, unscaled(product, loads[0].scale))] if amounts else []
+        return found if _totals(found) == _totals(by_joint) else by_joint  # else these cases are not what acts
+
+    def _resultant_along(
+        self, axis: str, parts: Sequence[tuple[str, Exact, Exact]]
+    ) -> tuple[Entry, list[tuple[Inline | None, ...]]]:
+        rows = [self._row(name, axis, force, product) for name, force, product in parts]
+        force, product = _totals(parts)
         if not force or (product / force).symbols:  # a couple, or an arm that depends on symbols
-            rows.append((Run(f"sum, {axis}"), printed(force, self.case), None, printed(product, self.case)))
+            rows.append((Run(f"sum, {axis}"), self.printed(force), None, self.printed(product)))
             return Entry(ONE, Name("M", f"P,{axis}"), product, product), rows
         rows.append(self._row("sum", axis, force, product))
         size = -force if force.reads_negative() else force
@@ -185,20 +219,26 @@ class EquationWriter:
         return -1 if load.reads_negative() else 1
 
     def _row(self, name: str, axis: str, force: Exact, product: Exact) -> tuple[Inline | None, ...]:
-        numbers = (printed(number, self.case) for number in (force, product / force, product))
-        return (Run(f"{name}, {axis}"), *numbers)
+        arm = self.printed(product / force) if force else None  # a couple has none
+        return (Run(f"{name}, {axis}"), self.printed(force), arm, self.printed(product))
 
 
-def times(equation: Equation, coefficient: Exact, force: Name | Number, case: LoadCase) -> Product:
+def _totals(parts: Sequence[tuple[str, Exact, Exact]]) -> tuple[Exact, Exact]:
+    return sum((force for _, force, _ in parts), start=ZERO), sum((product for *_, product in parts), start=ZERO)
+
+
+def times(
+    equation: Equation, coefficient: Exact, force: Name | Number, case: LoadCase, *, brief: bool = False
+) -> Product:
     """Return coefficient times force as it stands in an equation; a coefficient 1 is not written."""
     size = coefficient.written_size()
-    before = () if size == ONE else (coefficient_of(equation, size, case),)
+    before = () if size == ONE else (coefficient_of(equation, size, case, brief=brief),)
     return Product(coefficient.reads_negative(), (*before, force))
 
 
-def coefficient_of(equation: Equation, size: Exact, case: LoadCase) -> Number:
+def coefficient_of(equation: Equation, size: Exact, case: LoadCase, *, brief: bool = False) -> Number:
     """Return an arm or a cosine, without its sign, as it is printed."""
-    return printed(size, case, "arm" if equation.about.sum == "moment" else "cosine")
+    return printed(size, case, "arm" if equation.about.sum == "moment" else "cosine", brief=brief)
 
 
 def unscaled(product: Exact, scale: Exact) -> Exact:

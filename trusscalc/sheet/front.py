@@ -62,13 +62,15 @@ def title_block(truss: Truss, project: Project) -> TitleBlock:
 
 def opening(check: MemberCheck, project: Project) -> list[Block]:
     """Return title and the line that says what loads these are."""
+    text = f"Load case “{check.case.name}”: {loads_words(project)}. Forces in {check.truss.force}, tension positive."
+    return [Heading(1, TITLE), Paragraph((Run(text),)), *_symbol_values(check)]
+
+
+def loads_words(project: Project) -> str:
+    """Return whether the loads are service or factored ones, and self-weight is in or out."""
     loads = {"": "service or factored not stated", "service": "service loads", "factored": "factored loads"}
     weight = f"self-weight {project.self_weight}" if project.self_weight else "self-weight in or out not stated"
-    text = (
-        f"Load case “{check.case.name}”: {loads[project.basis]}, {weight}. "
-        f"Forces in {check.truss.force}, tension positive."
-    )
-    return [Heading(1, TITLE), Paragraph((Run(text),)), *_symbol_values(check)]
+    return f"{loads[project.basis]}, {weight}"
 
 
 def _symbol_values(check: MemberCheck) -> list[Block]:

@@ -12,7 +12,7 @@ from trusscalc.exact import ONE, ZERO, Exact, symbol
 from trusscalc.roots import sqrt
 from trusscalc.sheet.blocks import Formula, Labelled, Name, Product, Value
 from trusscalc.sheet.equations import EquationWriter, plus, signed, unscaled
-from trusscalc.sheet.values import formula, printed
+from trusscalc.sheet.values import formula
 from trusscalc.sheet.words import found_in
 from trusscalc.statics.steps import Equation, Step
 
@@ -100,7 +100,7 @@ def _closed(writer: EquationWriter, step: Step) -> list[Labelled]:
         sizes = [(name, total.substitute({**zeros, letters[name]: ONE}) - constant) for name in step.solves]
         left = tuple(writer.product(equation, size, Value(symbol(letters[name]))) for name, size in sizes if size)
         label = "hence, collected" if place == 0 else ""
-        lines.append(Labelled(label, formula(left, (signed(printed(-constant, writer.case)),))))
+        lines.append(Labelled(label, formula(left, (signed(writer.printed(-constant)),))))
     return [*lines, *_results(writer, step)]
 
 
@@ -132,7 +132,7 @@ def _solved(  # noqa: PLR0917 - the parts of one line, in its order
 
 
 def _line(left: Product, writer: EquationWriter, right: Exact) -> Formula:
-    return formula((left,), (signed(printed(right, writer.case)),))
+    return formula((left,), (signed(writer.printed(right)),))
 
 
 def _sought(writer: EquationWriter, name: str) -> Name:

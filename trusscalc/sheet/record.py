@@ -59,6 +59,8 @@ NO_CODES: Final = (("Codes", (Run("none applied: loads and combinations are take
 WELL_CONDITIONED = "what double precision keeps of a well-conditioned truss; more is a mistake, not a tolerance"
 ILL_CONDITIONED = "ten times the rounding error to be expected of the numeric route at the condition told below"
 
+INDEPENDENCE = "the two routes share no arithmetic; they share geometry, supports and loads"
+
 AXIAL_ONLY = (
     "This sheet checks axial forces of an ideal truss only. It says nothing about the strength, stability, "
     "connections, fatigue or serviceability of any member."
@@ -176,10 +178,11 @@ def reaction_tables(writer: Writer, *, steps: bool = True) -> list[Block]:
             strong.append(place)
     columns, rows = without_sense((Column("reaction"), Column("derived by"), *RESULT_COLUMNS), rows)
     table = Table(columns, tuple(rows), f"Forces on the truss in {check.truss.force}.", tuple(strong))
-    return [table, *_balance(writer)]
+    return [table, *balance(writer)]
 
 
-def _balance(writer: Writer) -> list[Block]:
+def balance(writer: Writer) -> list[Block]:
+    """Return the sums of loads and reactions, which are zero."""
     check = writer.check
     tensions = {link.name: tension_of(check, link.name) for link in check.truss.links}
     acting = []
@@ -195,7 +198,7 @@ def _balance(writer: Writer) -> list[Block]:
     reaction_sum = _resultant(acting, check)
     total = tuple(a + b for a, b in zip(loads_sum, reaction_sum, strict=True))
     rows = tuple(
-        (Run(word), *(printed(value, check.case) for value in values))
+        (Run(word), *(writer.equations.printed(value) for value in values))
         for word, values in (("loads", loads_sum), ("reactions", reaction_sum), ("sum", total))
     )
     force, length = check.truss.force, check.truss.length
@@ -244,7 +247,7 @@ def cross_check(check: MemberCheck) -> list[Block]:
         ),
         ("Condition", (Run("estimated condition number "), condition_size(check.condition))),
         *_not_checked(check),
-        ("Independence", (Run("the two routes share no arithmetic; they share geometry, supports and loads"),)),
+        ("Independence", (Run(INDEPENDENCE),)),
     ]
     return [Heading(2, "Cross-check"), Items(tuple(items))]
 

@@ -9,11 +9,19 @@ from typing import Final, Literal
 from trusscalc.decimals import approximate, rounded
 from trusscalc.exact import ONE, ZERO, Exact, symbol
 from trusscalc.exacttext import to_text
-from trusscalc.loads import LoadCase
-from trusscalc.sheet.blocks import Bracket, Decimals, Formula, Name, Power, Product, Value
+from trusscalc.loads import LoadCase, factor_text
+from trusscalc.sheet.blocks import Bracket, Decimals, Formula, Name, Power, Product, Run, Value
+from trusscalc.sheet.inscriptions import exact_text
 
 LONGEST_EXACT: Final = 60
 """Characters of exact text beyond which nobody reads it."""
+BRIEF_FRACTION: Final = 6
+BRIEF_ROOT: Final = 30
+"""The same where many loads come together and a decimal of ten digits reads better: of fractions, of roots."""
+BRIEF_PLACES: Final = 6
+FEW_PLACES: Final = 3
+SMALL_DENOMINATOR: Final = 100
+"""A short decimal is written as one: of few places, or of more where it is no short fraction."""
 DIGITS: Final = 10
 """Significant digits printed instead of such a number."""
 PENCIL_DIGITS: Final = 40
@@ -22,15 +30,23 @@ WIDE: Final = Context(prec=400, rounding=ROUND_HALF_EVEN)
 Number = Value | Decimals | Bracket
 
 
-def is_readable(value: Exact) -> bool:
+def is_readable(value: Exact, *, brief: bool = False) -> bool:
     """Return whether a number is printed exactly: not too long, and no angle rounded to 30 digits in it."""
     text = to_text(value)
     if value.rounded:
         return value.is_rational and len(text) <= DIGITS
-    return len(text) <= LONGEST_EXACT
+    if not brief:
+        return len(text) <= LONGEST_EXACT
+    if value.is_rational:
+        fraction = value.as_fraction()
+        places = FEW_PLACES if fraction.denominator < SMALL_DENOMINATOR else BRIEF_PLACES
+        return len(text) <= BRIEF_FRACTION or (fraction * 10**places).denominator == 1
+    return len(text) <= BRIEF_ROOT
 
 
-def printed(value: Exact, case: LoadCase, role: Literal["amount", "arm", "cosine"] = "amount") -> Number:
+def printed(
+    value: Exact, case: LoadCase, role: Literal["amount", "arm", "cosine"] = "amount", *, brief: bool = False
+) -> Number:
     """Return a number as it stands in an equation: exact, or with ``DIGITS`` significant digits.
 
     Parameters
@@ -41,11 +57,13 @@ def printed(value: Exact, case: LoadCase, role: Literal["amount", "arm", "cosine
         Gives the symbols' values when a decimal has to be printed.
     role : str
         ``amount``, ``arm`` or ``cosine``, see ``Value``.
+    brief : bool
+        Whether a decimal takes the place of longer fractions already.
     """
-    if is_readable(value):
+    if is_readable(value, brief=brief):
         return Value(value, role)
     at_values = case.value(value)
-    if is_readable(at_values):
+    if is_readable(at_values, brief=brief):
         return Value(at_values, role)
     if at_values.symbols:
         return _in_carried_forces(at_values)
@@ -60,6 +78,18 @@ def told(value: Exact, case: LoadCase) -> Number | Formula:
             (), (Product(number.text.startswith("-"), (Decimals(number.text.removeprefix("-")),)),), approximately=True
         )
     return number
+
+
+def in_a_row(value: Exact) -> Run | Formula | Number:
+    """Return a result's exact value for a table of many rows: its fraction written with a solidus, as in captions."""
+    return Run(exact_text(value)) if is_readable(value) else told(value, LoadCase("", {}))
+
+
+def in_table(value: Exact, case: LoadCase) -> Number:
+    """Return a number for a table of loads: a decimal where one of few places is exact, else as in equations."""
+    if value.is_rational and (value.as_fraction() * 10**BRIEF_PLACES).denominator == 1:
+        return Decimals(factor_text(value))
+    return printed(value, case)
 
 
 def _places(size: Decimal) -> int:
