@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import itertools
 import random
-import time
 from fractions import Fraction
 from typing import Any
 
@@ -283,31 +282,6 @@ class TestRequests:
 
         with pytest.raises(KeyboardInterrupt):
             envelope(stated(), ["A-B"], progress=stop)
-
-
-@pytest.mark.slow
-def test_forty_members_and_sixty_combinations_with_a_train_take_little_longer_than_their_parts() -> None:
-    """A ratio within one run: the envelope against solving one of its 60 combinations by the check of 40 members."""
-    drawn = trade.pratt(24)
-    deck = Chain("deck", tuple(f"L{place}" for place in range(25)))
-    train = Train("five", (10, 20, 20, 20, 20), (4, 4, 4, 4))
-    cases = cases_of(3, list(drawn.joints), 6)
-    combinations = tuple(
-        Combination(
-            f"no. {place}", {f"case {place % 6}": ("1.25", "0.9"), f"case {(place + 1) % 6}": 1, "live": "1.75"}
-        )
-        for place in range(60)
-    )
-    moving = (MovingLoad("live", (train,), deck),)
-    file = TrussFile(drawn.truss, cases, combinations, chains=(deck,), trains=(train,), moving=moving)
-    members = drawn.members[:40]
-    started = time.process_time()
-    check_members(drawn.truss, cases[0], members)
-    one = time.process_time() - started
-    started = time.process_time()
-    found = envelope(file, members)
-    assert found.agreed
-    assert time.process_time() - started < 20 * one
 
 
 def test_values_are_exact() -> None:
