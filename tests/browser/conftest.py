@@ -24,6 +24,7 @@ from typing import Any
 
 import nbformat
 import pytest
+from parts import CELL_ERRORS, RUN_ALL, ready
 
 collect_ignore_glob = [] if find_spec("playwright") and find_spec("jupyterlab") else ["test_*.py"]
 
@@ -62,26 +63,6 @@ SERVER_SETTINGS = {
     "ServerApp": {"shutdown_no_activity_timeout": 900},  # a server whose run was killed goes away
     "MappingKernelManager": {"cull_idle_timeout": 600, "cull_interval": 60, "cull_connected": True},
 }
-IDLE = """() => {
-  const panel = window.jupyterapp?.shell.currentWidget;
-  const session = panel?.sessionContext;
-  return Boolean(session?.isReady) && session.session?.kernel?.status === 'idle';
-}"""
-CELL_ERRORS = """() => window.jupyterapp.shell.currentWidget.content.widgets
-  .filter((cell) => cell.model.type === 'code')
-  .flatMap((cell) => cell.model.sharedModel.toJSON().outputs)
-  .filter((output) => output.output_type === 'error')
-  .map((output) => `${output.ename}: ${output.evalue}`)"""
-LISTEN_TO_KERNEL = """() => {
-  window.kernelErrors = [];
-  const session = window.jupyterapp.shell.currentWidget.sessionContext;
-  session.iopubMessage.connect((_, message) => {
-    if (message.header.msg_type === 'error')
-      window.kernelErrors.push(`${message.content.ename}: ${message.content.evalue}`);
-  });
-  return true;
-}"""
-RUN_ALL = "() => window.jupyterapp.commands.execute('notebook:run-all-cells')"
 
 
 @dataclass
@@ -124,7 +105,7 @@ def _port_when_ready(process: subprocess.Popen[bytes], info: Path, log: Path) ->
 
 @pytest.fixture(scope="session")
 def server(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Server]:
-    """A JupyterLab with nothing of this machine's settings in it, and nothing of it left behind."""
+    """Start a JupyterLab with nothing of this machine's settings in it, and leave nothing of it behind."""
     base = tmp_path_factory.mktemp("lab")
     places = {
         name: base / name for name in ("folder", "config", "data", "runtime", "ipython", "mpl", "work", "settings")
@@ -166,7 +147,7 @@ def server(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Server]:
 
 @pytest.fixture(scope="session")
 def browser() -> Iterator[Any]:
-    """A browser with an empty profile."""
+    """Start a browser with an empty profile."""
     if not BROWSER:
         (pytest.fail if os.environ.get("CI") else pytest.skip)("no chromium here: apt-get install chromium")
     from playwright.sync_api import sync_playwright  # noqa: PLC0415 - a plain test run does without it
@@ -190,7 +171,7 @@ def pytest_runtest_makereport(item: pytest.Item) -> Iterator[None]:
 
 @pytest.fixture
 def page(server: Server, browser: Any, request: pytest.FixtureRequest, tmp_path: Path) -> Iterator[Any]:
-    """A fresh page that may ask nothing of the world and throw nothing, nor may its kernel."""
+    """Open a fresh page, which may ask nothing of the world and throw nothing, nor may its kernel."""
     from playwright.sync_api import expect  # noqa: PLC0415
 
     context = browser.new_context(viewport={"width": 1280, "height": 1400})
@@ -234,10 +215,3 @@ def notebook(server: Server, page: Any, request: pytest.FixtureRequest) -> Noteb
         return page.locator(".jp-NotebookPanel:not(.lm-mod-hidden)")
 
     return run
-
-
-def ready(page: Any) -> None:
-    """Wait until the notebook is open and its kernel idle, and listen for errors of the kernel."""
-    page.wait_for_selector(".jp-NotebookPanel .jp-Cell", timeout=60_000)
-    page.wait_for_function(IDLE, timeout=60_000)
-    page.evaluate(LISTEN_TO_KERNEL)
