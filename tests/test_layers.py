@@ -78,6 +78,7 @@ LAYERS = (
         "alterations",
         "screening",
         "fitting",
+        "stiffjoints",
         "pairs",
         "explanations",
         "diagnosis",
@@ -98,7 +99,7 @@ RENDER_MAY_IMPORT = {"errors", "exact", "exacttext", "decimals", "units"}
 SHEET_MAY_NAME = {"statics.matrix": {"Bar", "Equilibrium", "GROUND"}}
 SOLVERS = {"stiffness", *(name for name in LAYERS if name.startswith("statics."))} - {"statics.cuts", "statics.steps"}
 CONFINED = {
-    "numpy": {"stiffness", "flexibility", "frame", "screening", "fitting", "pairs"},
+    "numpy": {"stiffness", "flexibility", "frame", "screening", "fitting", "stiffjoints", "pairs"},
     "matplotlib": {"render.draw"},
     "nbformat": {"render.notebook"},
     "typst": {"render.pdf"},

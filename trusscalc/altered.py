@@ -43,10 +43,8 @@ class Alteration:
         Joints supported otherwise: the directions of their links; none for a joint no longer supported.
     without : str
         A member left out.
-    radius : float
-        Radius of gyration of the members with stiff ends; 0 for ideal hinges.
-    stiff : tuple of str
-        The members with stiff ends.
+    bending : tuple of (member, stiffness)
+        Members with stiff ends, and their EI in units of EA times length squared; all others have hinges.
     factor : float
         All values of the table are multiplied by it.
     rows : tuple of (member, member)
@@ -64,8 +62,7 @@ class Alteration:
     places: tuple[tuple[str, float, float], ...] = ()
     supports: tuple[tuple[str, tuple[Pair, ...]], ...] = ()
     without: str = ""
-    radius: float = 0.0
-    stiff: tuple[str, ...] = ()
+    bending: tuple[tuple[str, float], ...] = ()
     factor: float = 1.0
     rows: tuple[tuple[str, str], ...] = ()
     strain: int = 0
@@ -74,7 +71,7 @@ class Alteration:
     @property
     def of_loads_alone(self) -> bool:
         """Whether the structure and the table stay as they are."""
-        return not (self.places or self.supports or self.without or self.stiff or self.of_table)
+        return not (self.places or self.supports or self.without or self.bending or self.of_table)
 
     @property
     def of_table(self) -> bool:
@@ -123,8 +120,7 @@ def in_turn(first: Alteration, second: Alteration) -> Alteration:
         places=tuple((joint, *place) for joint, place in places.items()),
         supports=tuple((dict(first.supports) | dict(second.supports)).items()),
         without=first.without or second.without,
-        radius=first.radius or second.radius,
-        stiff=first.stiff or second.stiff,
+        bending=first.bending or second.bending,
         factor=first.factor * second.factor,
         rows=first.rows + second.rows,
         strain=first.strain + second.strain,

@@ -10,12 +10,12 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from typing import Final
 
-from trusscalc import alterations, fitting, frame, pairs, screening, stiffness
+from trusscalc import alterations, fitting, frame, pairs, screening, stiffjoints, stiffness
 from trusscalc.alterations import Compared, compared, plain
 from trusscalc.altered import Alteration, altered, in_turn, tabulated
 from trusscalc.comparison import Comparison
 from trusscalc.errors import InputError
-from trusscalc.explanations import Explanation, Trial, explanations
+from trusscalc.explanations import Explanation, Trial, convincing, explanations
 from trusscalc.fits import ALLOWED, APART, SHARP, Fit, Printed, fit, reactions_by_name
 from trusscalc.loads import LoadCase
 from trusscalc.ratios import known_ratios
@@ -109,7 +109,7 @@ def explain(stated: TrussFile, case: str | LoadCase, printed: Printed) -> tuple[
         return (_unexplained(what, None, before),)
     ratios = known_ratios(float(f) for each in stated.all_combinations for _, given in each.factors for f in given)
     trials = _single(what, printed, look, ratios)
-    if all(trial.fit.closeness == APART for trial in trials):
+    if not any(convincing(trial, before) for trial in trials):
         trials += _double(what, printed, look, ratios)
     return explanations(trials, before, _unexplained(what, look, before))
 
@@ -177,7 +177,7 @@ def fitted_blunders(look: Screen, what: Compared, slipped: Sequence[Alteration])
         *fitting.of_load_sizes(look, what),
         *fitting.of_directions(look, what),
         *fitting.of_free_places(look, what, slipped),
-        *fitting.of_stiff_joints(look, what),
+        *stiffjoints.of_stiff_joints(look, what),
     ]
 
 
@@ -198,9 +198,8 @@ def _fit(what: Compared, printed: Printed, one: Alteration) -> Fit | None:
         truss, case = altered(one, what.truss, what.case)
     except InputError:
         return None
-    if one.stiff:
-        bending = dict.fromkeys(one.stiff, one.radius**2)
-        return fit(printed, tabulated(one, frame.axial_forces(truss, case, bending)), {})
+    if one.bending:
+        return fit(printed, tabulated(one, frame.axial_forces(truss, case, dict(one.bending))), {})
     found = stiffness.solve(truss, case)
     if not found.condition < float("inf") or found.residual > WORST_BALANCE:
         return None

@@ -20,8 +20,15 @@ PER_BLUNDER: Final = 3.0
 """A second blunder must make the remainder that much smaller to come first."""
 LEAST_TOLD: Final = 0.001
 """Per cent of the largest force."""
-MOSTLY: Final = 0.1
+MOSTLY: Final = 0.05
 """What leaves less than this share of the difference explains most of it."""
+STIFFLY: Final = 0.35
+"""The same for stiff joints, whose sections are not known, where the differences are small."""
+SMALL: Final = 0.2
+"""A difference smaller than this share of the largest force may come from stiff joints."""
+PARTLY: Final = 0.5
+"""What leaves more than this share of the difference is not worth telling."""
+MOST_PARTLY: Final = 3
 
 Name = tuple[str, tuple[str, ...]]
 
@@ -84,23 +91,22 @@ class Trial:
         return self.fit.remainder * PER_NUMBER**fitted * PER_BLUNDER ** (len(self.blunders) - 1)
 
 
-def ranked(trials: Sequence[Trial]) -> list[Trial]:
-    """Return the trials, the best first: by closeness; then, if they fit, by simplicity, else by what they leave."""
-    best: dict[tuple[Name, ...], Trial] = {}
-    for trial in sorted(trials, key=_order):
-        best.setdefault(trial.name, trial)
-    return list(best.values())
+def convincing(trial: Trial, before: Fit) -> bool:
+    """Return whether a trial reproduces the values, or leaves hardly anything of the differences."""
+    return trial.fit.fits or trial.cost <= MOSTLY * before.remainder
 
 
-def _order(trial: Trial) -> tuple[int, float, float]:
-    closeness = trial.fit.closeness
-    if closeness >= ALLOWED:
-        return closeness, trial.cost, trial.strain
-    return closeness, trial.strain, trial.fit.remainder
+def _telling(trial: Trial, before: Fit) -> bool:
+    """Return whether a trial comes before "unexplained"; stiff joints do with less, for their sections are guessed."""
+    stiff = trial.blunders[0].bending and before.remainder <= SMALL and trial.cost <= STIFFLY * before.remainder
+    return bool(stiff) or convincing(trial, before)
 
 
 def explanations(trials: Sequence[Trial], before: Fit, nothing: Explanation) -> tuple[Explanation, ...]:
     """Return what is told of the trials, the best first.
+
+    Where some reproduce the values within their roundings, only those are told; then those within the tolerance or
+    nearly so; and where none does, that comes first, and what explains a part after it.
 
     Parameters
     ----------
@@ -111,18 +117,34 @@ def explanations(trials: Sequence[Trial], before: Fit, nothing: Explanation) -> 
     nothing : Explanation
         What to say where nothing explains the results.
     """
-    listed = ranked(trials)
-    told = [_told(trial, before) for trial in listed[:MOST_TOLD]]
-    if not listed or listed[0].fit.closeness == APART:
-        mostly = [one for one in told if one.remainder <= MOSTLY * before.remainder]
-        partly = [one for one in told if MOSTLY * before.remainder < one.remainder < before.remainder]
-        return (*mostly, nothing, *partly)
-    equals = [trial for trial in listed if trial.fit.closeness == listed[0].fit.closeness]
-    equals = equals if listed[0].fit.closeness < ALLOWED else []
-    # two blunders are no tie of one: more freedom fits more
-    fewest = min((len(trial.blunders) for trial in equals), default=0)
-    names = [trial.name for trial in equals if len(trial.blunders) == fewest]
-    return tuple(_with_ties(one, trial, names) for one, trial in zip(told, listed, strict=False))
+    listed = _ranked(trials, before)
+    fitting = [trial for trial in listed if trial.fit.fits]
+    if fitting:
+        alike = [trial for trial in fitting if trial.fit.closeness == fitting[0].fit.closeness]
+        # two blunders are no tie of one: more freedom fits more
+        names = [trial.name for trial in alike if len(trial.blunders) == len(alike[0].blunders)]
+        return tuple(_with_ties(_told(trial, before), trial, names) for trial in fitting[:MOST_TOLD])
+    nearly = [trial for trial in listed if _telling(trial, before)]
+    partly = [trial for trial in listed if trial not in nearly and trial.cost < PARTLY * before.remainder]
+    told = [_told(trial, before) for trial in nearly[:MOST_TOLD]]
+    if nearly and nearly[0].fit.closeness == ALLOWED:
+        return tuple(told)
+    return (*told, nothing, *(_told(trial, before) for trial in partly[:MOST_PARTLY]))
+
+
+def _ranked(trials: Sequence[Trial], before: Fit) -> list[Trial]:
+    """Return the trials, the best first: by closeness; then, if they fit, by simplicity, else by what they leave."""
+
+    def order(trial: Trial) -> tuple[int, float, float]:
+        closeness = trial.fit.closeness if convincing(trial, before) else APART
+        if closeness >= ALLOWED:
+            return closeness, trial.cost, trial.strain
+        return closeness, trial.strain, trial.fit.remainder
+
+    best: dict[tuple[Name, ...], Trial] = {}
+    for trial in sorted(trials, key=order):
+        best.setdefault(trial.name, trial)
+    return list(best.values())
 
 
 def _with_ties(one: Explanation, trial: Trial, names: Sequence[tuple[Name, ...]]) -> Explanation:

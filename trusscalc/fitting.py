@@ -12,7 +12,6 @@ import numpy as np
 
 from trusscalc.alterations import Compared, displaced, neighbours, plain, turned_to
 from trusscalc.altered import Alteration, directions
-from trusscalc.frame import Frame, frame
 from trusscalc.screening import Flags, Floats, Screen, best_ratio, forces_of, ratio_range
 
 ROUNDS: Final = 12
@@ -23,9 +22,6 @@ MOST_JOINTS: Final = 8
 """Joints tried at other places: those that explain most of what is not in equilibrium."""
 FLATTEST: Final = 1e-3
 """Lines crossing at a smaller slope do not tell where."""
-SLENDERNESS: Final = (300.0, 150.0, 80.0, 40.0, 20.0, 10.0, 5.0)
-"""Mean length of the members over the radius of gyration, as starts of the fit."""
-COLLINEAR: Final = 1e-6
 
 Forward = Callable[[Floats], Floats]
 """From parameters (parameters,) to member forces (members,)."""
@@ -127,7 +123,7 @@ def of_directions(look: Screen, what: Compared) -> Iterator[Alteration]:
             return forces_of(look, [turned(float(angle[0]))])[:, 0]
 
         starts = [np.array([np.pi * part / ANGLES]) for part in range(ANGLES)]
-        best = _nearest(look, forward, starts)
+        best = nearest(look, forward, starts)
         yield turned(float(fitted(look, forward, best, 1e-5, 0.3)[0]))
 
 
@@ -157,7 +153,7 @@ def of_free_places(look: Screen, what: Compared, slipped: Sequence[Alteration]) 
             return look.flexibility.elsewhere(place, spot[None], look.loads)[:, 0]
 
         ends = [fitted(look, forward, start, 1e-6 * size, size) for start in listed]
-        best = _nearest(look, forward, ends)
+        best = nearest(look, forward, ends)
         x, y = (best + look.origin).tolist()
         words = f"joint {joint} at ({plain(x)}, {plain(y)}), found by fitting, no plain slip of its coordinates"
         yield displaced(joint, (x, y), words, strain=8, fitted=2)
@@ -245,52 +241,6 @@ def _where_lines_cross(look: Screen, joint: str) -> Floats:
     return np.asarray(np.linalg.solve(matrix, side), dtype=np.float64)
 
 
-# --- stiff joints -----------------------------------------------------------------------------------------
-
-
-def of_stiff_joints(look: Screen, what: Compared) -> Iterator[Alteration]:
-    """Yield stiff joints throughout, and members that run through joints with hinged ones between, as they fit best."""
-    model = frame(look.truss, what.case)
-    every = np.ones(len(look.members), dtype=np.bool_)
-    through = _running_through(look)
-    families = [(every, "stiff joints")]
-    if through.any() and not through.all():
-        families.append((through, "members that run stiff through their joints, the others hinged"))
-    for stiff, words in families:
-        radius = _radius(look, model, stiff)
-        told = f"{words}, of a radius of gyration of {plain(radius)} {what.truss.length} throughout"
-        yield Alteration(
-            explanation="stiff-joints",
-            where=(),
-            words=told,
-            radius=radius,
-            stiff=tuple(name for name, is_stiff in zip(look.members, stiff.tolist(), strict=True) if is_stiff),
-            strain=4,
-            fitted=1,
-        )
-
-
-def _radius(look: Screen, model: Frame, stiff: Flags) -> float:
-    mean = float(model.lengths.mean())
-
-    def forward(logarithm: Floats) -> Floats:
-        return model.axial(np.where(stiff, np.exp(2 * logarithm[0]), 0.0))
-
-    starts = [np.array([np.log(mean / ratio)]) for ratio in SLENDERNESS]
-    return float(np.exp(fitted(look, forward, _nearest(look, forward, starts), 1e-4, 1.0)[0]))
-
-
-def _running_through(look: Screen) -> Flags:
-    """Return which members go on in a straight line at one of their ends."""
-    model = look.flexibility
-    found = np.zeros(len(look.members), dtype=np.bool_)
-    for joint in range(len(model.places)):
-        mine = np.flatnonzero((model.start == joint) | (model.end == joint))
-        outward = model.cosines[mine] * np.where(model.start[mine] == joint, 1.0, -1.0)[:, None]
-        found[mine] |= (outward @ outward.T < -1 + COLLINEAR).any(axis=1)
-    return found
-
-
 # --- least squares ----------------------------------------------------------------------------------------
 
 
@@ -322,7 +272,7 @@ def _off(look: Screen, forces: Floats) -> Floats:
     return np.asarray(((forces - look.values) / look.sharp)[look.given], dtype=np.float64)
 
 
-def _nearest(look: Screen, forward: Forward, parameters: Sequence[Floats]) -> Floats:
+def nearest(look: Screen, forward: Forward, parameters: Sequence[Floats]) -> Floats:
     """Return the parameters that leave the least squares of differences."""
 
     def apart(at: Floats) -> float:
