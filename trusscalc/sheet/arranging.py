@@ -70,7 +70,8 @@ def aligned(boards: Sequence[Board], caption: str, alt: str, *, width: float = F
     top = height = sum(figure.height for figure in figures)
     for board, figure in zip(boards, figures, strict=True):
         top -= figure.height
-        marks += [moved(mark, board.bounds[0] - left + margin, top) for mark in figure.marks]
+        aside = board.bounds[0] - left + margin
+        marks += [moved(mark, aside, top) for mark in figure.marks]
     return Figure(round(full, 2), round(height, 2), tuple(marks), caption, alt)
 
 

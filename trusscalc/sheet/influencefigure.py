@@ -98,7 +98,7 @@ def _truss_drawing(truss: Truss, line: InfluenceLine, scale: Scale, standing: Se
     if line.kind == "shear":
         _section(whole, line)
     points = [whole.sketch.place[joint] for joint in line.chain.joints]
-    draw_on_chain(whole.board, points, standing, line.positions, UP if _is_above(truss, line) else DOWN)
+    draw_on_chain(whole, line, standing, UP if _is_above(truss, line) else DOWN)
     whole.sketch.write_pending()
     whole.joints(named=[line.target] if line.kind == "member" else [])
     for point in points:

@@ -12,12 +12,13 @@ from trusscalc.loadrules import Beside, Direction, LineLoad, PointLoad, SelfWeig
 from trusscalc.loads import JointLoad, LoadCase
 from trusscalc.sheet import words
 from trusscalc.sheet.arranging import aligned, largest
-from trusscalc.sheet.board import FULL_WIDTH, LIGHT, MEDIUM, SMALL_SIZE, Board, around
+from trusscalc.sheet.board import FULL_WIDTH, LIGHT, MEDIUM, SMALL_SIZE, Board, along, around
 from trusscalc.sheet.elevation import METRES
 from trusscalc.sheet.inscriptions import Scale, amount, arm
-from trusscalc.sheet.lettering import Point, box_of, boxes_of
+from trusscalc.sheet.lettering import Point, box_of, boxes_of, text_width
 from trusscalc.sheet.loadstands import Stands
 from trusscalc.sheet.marks import Arrow, Figure, Label
+from trusscalc.sheet.ordinates import row_style
 from trusscalc.sheet.symbols import ASIDE, CLEAR_ANGLE, GAP, LOAD_LENGTH
 from trusscalc.sheet.wholetruss import WholeTruss
 from trusscalc.truss import Truss
@@ -121,15 +122,53 @@ def _at_joints(truss: Truss, case: LoadCase, scale: Scale) -> WholeTruss:
 
 def _draw_loads(whole: WholeTruss, case: LoadCase) -> None:
     """Draw joint loads with their values: the upright ones first, so that level ones find a place beside them."""
-    whole.loads(
-        LoadCase(case.name, [JointLoad(load.joint, ZERO, load.fy) for load in case.loads], symbols=case.symbols)
-    )
+    upright = [load for load in case.loads if load.fy]
+    rows = [[load for load in upright if _points_down(whole, load.joint) == down] for down in (False, True)]
+    styles = [_style(whole, row) for row in rows]
+    if any(angle for angle, _ in styles):
+        for row, (_, every) in zip(rows, styles, strict=True):
+            _draw_row(whole, row, every)
+    else:
+        plain = [JointLoad(load.joint, ZERO, load.fy) for load in upright]
+        whole.loads(LoadCase(case.name, plain, symbols=case.symbols))
     level = [JointLoad(load.joint, load.fx, ZERO) for load in case.loads if load.fx]
-    hemmed_in = [load for load in level if not whole.crowded and _has_bars_on_both_sides(whole, load.joint)]
+    if level and whole.crowded:
+        whole.notes.append("Level loads on joints are not drawn, all are in the table")
+        level = []
+    hemmed_in = [load for load in level if _has_bars_on_both_sides(whole, load.joint)]
     whole.loads(LoadCase(case.name, [load for load in level if load not in hemmed_in], symbols=case.symbols))
     whole.sketch.write_pending()
     for load in hemmed_in:
         _draw_over_bars(whole, load)
+
+
+def _points_down(whole: WholeTruss, joint: str) -> bool:
+    """Return whether an upright load is drawn below its joint: at a lower joint without a support."""
+    return joint not in whole.depth and whole.sketch.place[joint][1] < whole.middle[1]
+
+
+def _style(whole: WholeTruss, row: Sequence[JointLoad]) -> tuple[float, int]:
+    places = [(whole.sketch.place[load.joint][0], text_width(_text(load), SMALL_SIZE)) for load in row]
+    return row_style(places) if len({round(x, 3) for x, _ in places}) == len(places) else (0.0, 1)
+
+
+def _text(load: JointLoad) -> str:
+    return amount(_size(load.fy))
+
+
+def _draw_row(whole: WholeTruss, row: Sequence[JointLoad], every: int) -> None:
+    """Draw upright loads close together, their values turned; of very many, some are lettered."""
+    for number, load in enumerate(sorted(row, key=lambda load: whole.sketch.place[load.joint])):
+        out = (0.0, -1.0) if _points_down(whole, load.joint) else (0.0, 1.0)
+        place = whole.sketch.place[load.joint]
+        near, far = along(place, out, GAP), along(place, out, GAP + LOAD_LENGTH)
+        back = load.fy.reads_negative() == (out[1] > 0)
+        whole.board.arrow(*((far, near) if back else (near, far)), width=LIGHT, small=True)
+        whole.sketch.take(load.joint, out)
+        if number % every == 0:
+            whole.board.write(around(far, Label(far, _text(load), SMALL_SIZE, angle=90.0), 0.7, [out]))
+    if every > 1:
+        whole.notes.append(f"One joint load in {every} is lettered, all are in the table")
 
 
 def _has_bars_on_both_sides(whole: WholeTruss, joint: str) -> bool:
@@ -204,8 +243,8 @@ def _caption(truss: Truss, case: LoadCase, rules: Sequence[Spread], drawing: _Dr
     text += f" {_sums(rules, truss)}"
     if drawing.missing:
         text += f" No room in the drawing for: {', '.join(drawing.missing)}."
-    remarks = whole.remarks() + (drawing.below.remarks() if drawing.below is not None else "")
-    return text + remarks
+    remarks = [made.remarks() for made in (whole, drawing.below) if made is not None]
+    return text + "".join(dict.fromkeys(remarks))
 
 
 def _sums(rules: Sequence[Spread], truss: Truss) -> str:

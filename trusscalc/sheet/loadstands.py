@@ -75,8 +75,15 @@ class Stands:
         band = _shifted(max(pieces, key=lambda piece: round(math.dist(*piece.band.base), 3)).band, base)
         label = Label((0.0, 0.0), text, SMALL_SIZE)
         foot, edge = band.at(0.5)
-        ways = [band.side, *compass(band.side)]
-        self._letter([*along_line(*band.outer, label, 0.7, foot), *around(edge, label, 1.0, ways)])
+        ahead = unit(*band.base)
+        spots = [
+            *along_line(*band.outer, label, 0.7, foot),
+            *around(edge, label, 1.0, [band.side, *compass(band.side)]),
+        ]
+        for share, way in ((0.0, (-ahead[0], -ahead[1])), (1.0, ahead)):  # before it and behind it
+            spots += around(band.at(share)[1], label, 1.0, [way])
+            spots += around(band.at(share)[0], label, 1.0, [way])
+        self._letter(spots)
 
     def force(self, spread: Spread, text: str) -> None:
         """Draw a force at its place, beyond the bands that stand there."""

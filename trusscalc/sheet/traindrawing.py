@@ -17,6 +17,7 @@ from trusscalc.sheet.lettering import Point, text_width
 from trusscalc.sheet.loadbands import draw_band, level_band
 from trusscalc.sheet.marks import Arrow, Label
 from trusscalc.sheet.ordinates import BETWEEN, LETTER_HEIGHT, LineOnPaper, reading, row_style
+from trusscalc.sheet.wholetruss import WholeTruss
 
 if TYPE_CHECKING:
     from trusscalc.influence import InfluenceLine
@@ -34,7 +35,11 @@ TRAVEL_GAP: Final = 4.0
 ON_CHAIN: Final = 5.0
 """Length of an axle's arrow on the truss, mm."""
 OFF_CHAIN: Final = 0.9
-"""How far its tip or tail keeps from the chain."""
+"""How far its tip or tail keeps from the chain, mm."""
+PAST_NAMES: Final = 4.2
+"""The same on a crowded drawing, whose few names of joints stand between."""
+OVER_TICK: Final = 1.1
+"""How far a distance between axles keeps from its line, clear of the oblique strokes, mm."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -160,7 +165,7 @@ def _axle_distances(board: HatchedBoard, drawn: LineOnPaper, standing: Sequence[
     missing = []
     for size, run in itertools.groupby(gaps, key=lambda gap: gap[0]):
         spans = [span for _, span in run]
-        text, together = arm(size), f"{len(spans)} × {arm(size)}"
+        text, together = reading(size), f"{len(spans)} × {reading(size)}"
         whole = [min(low for low, _ in spans), max(high for _, high in spans)]
         if text_width(text, SMALL_SIZE) + BETWEEN <= spans[0][1] - spans[0][0]:
             _letter_spans(board, spans, level, text, 0.0)
@@ -176,35 +181,33 @@ def _axle_distances(board: HatchedBoard, drawn: LineOnPaper, standing: Sequence[
 def _letter_spans(board: Board, spans: Sequence[Sequence[float]], level: float, text: str, angle: float) -> None:
     for low, high in spans:
         middle = ((low + high) / 2, level)
-        board.write(around(middle, Label(middle, text, SMALL_SIZE, angle=angle), 0.7, [(0.0, 1.0)]))
+        board.write(around(middle, Label(middle, text, SMALL_SIZE, angle=angle), OVER_TICK, [(0.0, 1.0)]))
 
 
-def draw_on_chain(
-    board: Board, path: Sequence[Point], standing: Sequence[Axle], places: Sequence[Exact], side: Point
-) -> None:
+def draw_on_chain(whole: WholeTruss, line: InfluenceLine, standing: Sequence[Axle], side: Point) -> None:
     """Draw axles as short arrows on the truss, on the free side of the chain.
 
     Parameters
     ----------
-    board : Board
-        With the truss.
-    path : sequence of (x, y)
-        The chain's joints on paper.
+    whole : WholeTruss
+        The truss.
+    line : InfluenceLine
+        Gives the chain.
     standing : sequence of Axle
-        What stands there.
-    places : sequence of Exact
-        The joints' positions along the chain.
+        What stands on it.
     side : (x, y)
         Upwards when the axles stand on the chain from above, downwards when they hang from it.
     """
+    path, places = [whole.sketch.place[joint] for joint in line.chain.joints], line.positions
+    gap = PAST_NAMES if whole.crowded else OFF_CHAIN
     for axle in standing:
         last = next(index for index, place in enumerate(places[1:], 1) if axle.position <= place)
         share = float((axle.position - places[last - 1]) / (places[last] - places[last - 1]))
         (x0, y0), (x1, y1) = path[last - 1], path[last]
         foot = x0 + share * (x1 - x0), y0 + share * (y1 - y0)
-        near, far = along(foot, side, OFF_CHAIN), along(foot, side, OFF_CHAIN + ON_CHAIN)
+        near, far = along(foot, side, gap), along(foot, side, gap + ON_CHAIN)
         ends = (far, near) if side[1] > 0 else (near, far)
-        board.put("symbol", Arrow(*ends, LIGHT, head_length=1.8, head_width=1.1))
+        whole.board.put("symbol", Arrow(*ends, LIGHT, head_length=1.8, head_width=1.1))
 
 
 # --- words ------------------------------------------------------------------------------------------------
