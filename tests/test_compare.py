@@ -16,7 +16,7 @@ from hypothesis import strategies as st
 
 from trusscalc import stiffness
 from trusscalc.blind import Frozen, frozen, reveal
-from trusscalc.compare import compare, compare_cases
+from trusscalc.compare import compare_cases, compare_submitted
 from trusscalc.comparereport import compare_data, comparison_lines
 from trusscalc.comparison import ABSOLUTE, RELATIVE, ComparedForce, Comparison
 from trusscalc.errors import InputError, UnknownNameError, UnstableTrussError
@@ -39,7 +39,7 @@ SNOW = LoadCase("snow", {"C": (0, -12)})
 def roof(table: object, case: LoadCase = SNOW, truss: Truss = ROOF, **options: Any) -> Comparison:
     """Return a table compared with the roof under snow; options of reading and of comparing."""
     reading = {key: options.pop(key) for key in ("convention", "columns", "names", "unit") if key in options}
-    return compare(TrussFile(truss, (case,)), read_submitted(table, truss, **reading), case.name, **options)
+    return compare_submitted(TrussFile(truss, (case,)), read_submitted(table, truss, **reading), case.name, **options)
 
 
 def verdicts(comparison: Comparison) -> dict[str, str]:
@@ -83,7 +83,7 @@ def test_published_tables_agree_but_for_their_misprints(case: PublishedCase) -> 
     table = "member,force\n" + "".join(f"{name},{value}\n" for name, value in printed.items())
     stated = TrussFile(case.truss, (case.loads,))
     cut_off = set(case.data.get("last_digit", {}))
-    found = compare(
+    found = compare_submitted(
         stated, read_submitted(table, case.truss), "published", members=set(printed) - cut_off, relative=0, absolute=0
     )
     assert {name: item.flipped for name, item in found.members.items() if item.verdict == "differs"} == MISPRINTS.get(
@@ -96,7 +96,7 @@ def test_published_tables_agree_but_for_their_misprints(case: PublishedCase) -> 
 def test_a_flipped_misprint_fails_at_any_tolerance(case: PublishedCase) -> None:
     """However much is allowed."""
     table = dict(as_submitted(case))
-    found = compare(
+    found = compare_submitted(
         TrussFile(case.truss, (case.loads,)), read_submitted(table, case.truss), "published", relative=10, absolute=10
     )
     flipped = {name for name, wrong in MISPRINTS[case.id].items() if wrong}
@@ -153,7 +153,9 @@ def test_a_surd_on_the_edge_is_decided_exactly() -> None:
     (row,) = table.rows
     for digits, verdict in ((just, "agrees"), (just * parse("1 - 1/10^12"), "differs")):
         given_table = replace(table, rows=(replace(row, digits=digits),))
-        found = compare(TrussFile(truss, (case,)), given_table, "snow", members=["A-C"], relative=0, absolute=0)
+        found = compare_submitted(
+            TrussFile(truss, (case,)), given_table, "snow", members=["A-C"], relative=0, absolute=0
+        )
         assert found.members["A-C"].verdict == verdict
 
 
@@ -186,12 +188,12 @@ def test_a_flipped_sense_fails_however_small(size: object) -> None:
         {"A": "pin", "D": "roller"},
     )
     case = LoadCase("snow", {"C": (0, -100_000), "D": (size, 0)})
-    ours = compare(TrussFile(truss, (case,)), read_submitted({"A-B": 0}, truss), "snow")
+    ours = compare_submitted(TrussFile(truss, (case,)), read_submitted({"A-B": 0}, truss), "snow")
     table = {name: item.exact for name, item in ours.members.items()}
-    assert compare(TrussFile(truss, (case,)), read_submitted(table, truss), "snow").agreed
+    assert compare_submitted(TrussFile(truss, (case,)), read_submitted(table, truss), "snow").agreed
     for name, value in table.items():
         assert value is not None
-        found = compare(TrussFile(truss, (case,)), read_submitted({**table, name: -value}, truss), "snow")
+        found = compare_submitted(TrussFile(truss, (case,)), read_submitted({**table, name: -value}, truss), "snow")
         assert found.differing == ((name,) if value else ())
         assert found.members[name].flipped == bool(value)
 
@@ -346,13 +348,13 @@ def test_several_cases_at_once() -> None:
     assert {name: item.agreed for name, item in found.items()} == {"snow": True, "wind": True, "1.2S+0.5W": True}
     assert found["wind"].their_case == "WIND"
     assert {row.case for row in found["wind"].submitted.rows} == {"WIND"}
-    single = compare(FILE, table, "wind")
+    single = compare_submitted(FILE, table, "wind")
     assert single.members == found["wind"].members
     other = read_submitted(rows_of(FILE, {"LC1": "snow", "LC2": "wind"}), ROOF)
     assert all(item.agreed for item in compare_cases(FILE, other, {"snow": "LC1", "wind": "LC2"}).values())
     swapped = compare_cases(FILE, other, {"snow": "LC2", "wind": "LC1"})
     assert not any(item.agreed for item in swapped.values())
-    assert compare(FILE, other, "wind", theirs="LC2").agreed
+    assert compare_submitted(FILE, other, "wind", theirs="LC2").agreed
 
 
 def test_all_cases_of_the_table() -> None:
@@ -366,16 +368,16 @@ def test_all_cases_of_the_table() -> None:
 def test_the_case_of_the_table() -> None:
     """Its only case is taken and noted; of several one has to fit."""
     only = read_submitted(rows_of(FILE, {"LC1": "snow"}), ROOF)
-    found = compare(FILE, only, "snow")
+    found = compare_submitted(FILE, only, "snow")
     assert found.agreed
     assert "the table's only case is called 'LC1': compared with snow" in found.notes
     two = read_submitted(rows_of(FILE, {"LC1": "snow", "winds": "wind"}), ROOF)
     with pytest.raises(InputError, match="has no case 'wind'; it has 'LC1', 'winds'; did you mean winds"):
-        compare(FILE, two, "wind")
+        compare_submitted(FILE, two, "wind")
     with pytest.raises(InputError, match="has no case 'LC3'; it has 'LC1'"):
-        compare(FILE, only, "snow", theirs="LC3")
+        compare_submitted(FILE, only, "snow", theirs="LC3")
     with pytest.raises(UnknownNameError, match="'rain'"):
-        compare(FILE, only, "rain")
+        compare_submitted(FILE, only, "rain")
 
 
 def test_a_convention_is_detected_over_all_cases() -> None:
@@ -388,7 +390,7 @@ def test_a_convention_is_detected_over_all_cases() -> None:
 
 def test_loads_of_no_case_of_the_file() -> None:
     """A load case made on the spot will do as well."""
-    assert compare(
+    assert compare_submitted(
         FILE, read_submitted({"A-B": 16, "A-C": -20, "C-B": -20}, ROOF), LoadCase("2S", {"C": (0, -24)})
     ).agreed
 
@@ -557,7 +559,7 @@ def test_one_wrong_row_is_found_and_nothing_else(data: st.DataObject) -> None:
         st.sampled_from([lambda v: -v, lambda v: v * 10, lambda v: v / 10, lambda v: v * 1.01, lambda v: v * 0.98])
     )
     table[member] = f"{change(ours[member]):.4g}"
-    found = compare(TrussFile(PRATT.truss, (PRATT.case,)), read_submitted(table, PRATT.truss), "load")
+    found = compare_submitted(TrussFile(PRATT.truss, (PRATT.case,)), read_submitted(table, PRATT.truss), "load")
     assert found.differing == (PRATT.truss.member(member).name,)
     assert not found.agreed
 
@@ -567,7 +569,7 @@ def test_exchanged_rows_are_found() -> None:
     table = {name: f"{force:.4g}" for name, force in stiffness.member_forces(PRATT.truss, PRATT.case).items()}
     one, two = "U2-U3", "L2-L3"
     table[one], table[two] = table[two], table[one]
-    found = compare(TrussFile(PRATT.truss, (PRATT.case,)), read_submitted(table, PRATT.truss), "load")
+    found = compare_submitted(TrussFile(PRATT.truss, (PRATT.case,)), read_submitted(table, PRATT.truss), "load")
     assert set(found.differing) == {one, two}
 
 
@@ -582,7 +584,7 @@ def test_faithful_tables_agree(stated: Any, figures: int) -> None:
     table = {name: f"{force:.{figures}g}" for name, force in stiffness.member_forces(stated.truss, stated.case).items()}
     table = {name: "0.000" if abs(float(force)) < 1e-9 else force for name, force in table.items()}
     share = 0 if figures < 15 else 1e-14
-    found = compare(
+    found = compare_submitted(
         TrussFile(stated.truss, (stated.case,)), read_submitted(table, stated.truss), "load", relative=0, absolute=share
     )
     assert found.agreed, found.differing
@@ -615,6 +617,18 @@ def test_a_table_read_before_is_not_called_blind() -> None:
     assert "this record does not show which came first" in found.order
 
 
+def test_a_digest_written_down_must_be_the_one_found_now() -> None:
+    """As it was noted, blanks and capitals aside; else nothing is compared."""
+    kept = frozen(FILE, "snow")
+    noted = f" {kept.digest[:32].upper()} {kept.digest[32:]}"
+    found = reveal(kept, TABLE, written_down=noted)
+    assert found.written_down
+    assert found.order.endswith("; their digest had been written down before, and is the same")
+    assert not reveal(kept, TABLE).written_down
+    with pytest.raises(InputError, match="is of other values: ours now have"):
+        reveal(kept, TABLE, written_down=frozen(FILE, "wind").digest)
+
+
 def test_options_of_reading_go_with_the_table() -> None:
     """Columns, conventions, their case."""
     table = "Stab;Kraft;Fall\nA-B;-8,0;LF1\nA-C;10,0;LF1\nC-B;10,0;LF1\nA-B;1,0;LF2\n"
@@ -644,7 +658,7 @@ def test_the_digest_changes_with_everything_that_matters(other: TrussFile, optio
 def test_frozen_values_that_were_changed_are_refused() -> None:
     """A looser criterion after the fact, say."""
     kept = frozen(FILE, "snow")
-    looser = Frozen(kept.ours, kept.members, frozen(FILE, "snow", relative=1).criterion, kept.text)
+    looser = Frozen(kept.stated, kept.ours, kept.members, frozen(FILE, "snow", relative=1).criterion, kept.text)
     with pytest.raises(InputError, match="not those their digest was made of"):
         reveal(looser, TABLE)
 
@@ -728,7 +742,7 @@ def test_implied_loads_in_the_data() -> None:
     pratt = TrussFile(PRATT.truss, (LoadCase("load", {"L3": (0, -80), "L5": (0, -80)}),))
     theirs = LoadCase("theirs", {"L3": (0, -80), "U4": (0, -80)})
     table = {name: f"{force:.5g}" for name, force in stiffness.member_forces(PRATT.truss, theirs).items()}
-    data = compare_data(compare(pratt, read_submitted(table, PRATT.truss), "load"))
+    data = compare_data(compare_submitted(pratt, read_submitted(table, PRATT.truss), "load"))
     assert sorted(data["implied_loads"]) == ["L0", "L3", "L5", "L8", "U4"]
     assert data["implied_loads"]["L5"] == pytest.approx([0, 0], abs=0.01)
     assert data["implied_loads"]["U4"] == pytest.approx([0, -80], abs=0.01)
@@ -781,4 +795,6 @@ def test_what_is_said_of_each_force_is_complete() -> None:
         verdict="agrees",
         note="",
         row=1,
+        called="A-B",
+        printed="8.004",
     )

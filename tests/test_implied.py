@@ -12,7 +12,7 @@ from random_trusses import trusses
 from stated_truss import Stated
 
 from trusscalc import stiffness
-from trusscalc.compare import compare
+from trusscalc.compare import compare_submitted
 from trusscalc.comparison import Comparison
 from trusscalc.exact import ZERO, Exact, exact
 from trusscalc.exacttext import parse
@@ -108,7 +108,7 @@ def printed(forces: Mapping[str, float], digits: int = 4) -> str:
 
 def against(truss: Truss, ours: LoadCase, theirs: Mapping[str, float]) -> Comparison:
     """Return our loads compared with printed forces."""
-    return compare(TrussFile(truss, (ours,)), read_submitted(printed(theirs), truss), ours.name)
+    return compare_submitted(TrussFile(truss, (ours,)), read_submitted(printed(theirs), truss), ours.name)
 
 
 def braced() -> Truss:

@@ -18,6 +18,7 @@ from trusscalc.errors import FileFormatError, InputError
 from trusscalc.exact import Exact
 from trusscalc.exacttext import parse
 from trusscalc.submitted import Submitted, columns_of, read_submitted
+from trusscalc.submitted.kept import kept, kept_again
 from trusscalc.submitted.numbers import Amount, Printed, amount, decimal_sign, sense_of, taken_apart
 from trusscalc.submitted.tables import LARGEST_FILE, MOST_ROWS
 from trusscalc.truss import Truss
@@ -867,3 +868,74 @@ def test_the_digest_of_a_table_in_memory() -> None:
     """Stable, and of its content."""
     one, two = ({"L0-L1": force} for force in (8, 9))
     assert read(one).digest == read(dict(one)).digest != read(two).digest
+
+
+# --- kept ---------------------------------------------------------------------------------------------------
+
+KEPT = {
+    "plain": ("text", b"member,force\nL0-L1,1.5\n"),
+    "spreadsheet": ("text", "Stab;N [kN]\r\nL0–L1;-1.234,50\r\n".encode()),
+    "mark": ("base64", b"\xef\xbb\xbfmember,force\nL0-L1,1.5\n"),
+    "two bytes": ("base64", "member,force\nL0-L1,1.5\n".encode("utf-16")),
+    "another page of signs": ("base64", "Stab;Kraft\nL0–L1;1,5\n".encode("cp1252")),
+}
+
+
+@pytest.mark.parametrize("name", KEPT)
+def test_a_kept_file_is_read_the_same_again(name: str) -> None:
+    """Byte for byte: digest, rows, notes, and the text as plain text where it is plain."""
+    kind, content = KEPT[name]
+    options = {"columns": {"member": 1, "force": 2}, "convention": "tension positive", "names": {"U1": "7"}}
+    table = read(content, **options)
+    written = kept(table.table)
+    assert written[0] == kind
+    again = read(kept_again(*written, table.source), **table.reading.options)
+    assert again == table
+
+
+@pytest.mark.parametrize(
+    "given",
+    [
+        {"L0-L1": "1,5", "L1-L2": "(2.50)"},
+        [{"member": 7.0, "force": -1e-20}, {"member": "L1-L2", "force": 3}],
+        {"member": ["L0-L1"], "force": [Fraction(1, 3)]},
+    ],
+    ids=["texts", "numbers", "a fraction"],
+)
+def test_a_kept_table_in_memory_is_read_the_same_again(given: object) -> None:
+    """Every cell with its digits."""
+    table = read(given, names={"L0-L1": "7"})
+    kind, content = kept(table.table)
+    assert kind == "cells"
+    assert read(kept_again(kind, content, table.source), **table.reading.options) == table
+
+
+@pytest.mark.parametrize(
+    ("kind", "content"),
+    [
+        ("cells", "["),
+        ("cells", "7"),
+        ("cells", "[7]"),
+        ("cells", '[["0", ["member", "force"]]]'),
+        ("cells", '[[0, [["1"]]]]'),
+        ("cells", '[[0, [["1/0", "1"]]]]'),
+        ("cells", f'[[0, [["{"1" * 4000}", "1"]]]]'),
+        ("cells", "[" * 100_000),
+        ("base64", "!"),
+        ("base64", "é"),
+        ("pickle", "x"),
+    ],
+    ids=lambda text: text[:20],
+)
+def test_what_was_never_kept_is_refused(kind: str, content: str) -> None:
+    """A record is untrusted."""
+    with pytest.raises(FileFormatError):
+        kept_again(kind, content, "a.csv")
+
+
+def test_numbers_as_they_stand_in_the_table() -> None:
+    """Digits, signs, letters and units; of numbers in memory the digits of their column."""
+    table = read('member,force [kip]\nL0-L1,"1,234.50 (C)"\nL1-L2,(2.50)\nL0-U1,-1.5e+03\nU1-L2,3.0 kips\n')
+    assert [row.printed for row in table.rows] == ["1,234.50 C", "(2.50)", "-1.5e+3", "3.0 kips"]
+    table = read({"member": ["L0-L1", "L1-L2", "L0-U1"], "force": [-1.5, 3, Fraction(1, 3)]})
+    assert [row.printed for row in table.rows] == ["-1.5", "3.0", "1/3"]

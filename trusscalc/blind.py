@@ -29,6 +29,8 @@ class Frozen:
 
     Attributes
     ----------
+    stated : TrussFile
+        What is stated.
     ours : OurForces
         All values of the case.
     members : tuple of str
@@ -39,6 +41,7 @@ class Frozen:
         The values as a text that can be filed; the digest is made of it.
     """
 
+    stated: TrussFile
     ours: OurForces
     members: tuple[str, ...]
     criterion: Criterion
@@ -69,7 +72,7 @@ def frozen(
     members : iterable of str, or "all"
         What will be compared.
     relative, absolute : number
-        As for ``compare``.
+        As for ``compare_submitted``.
 
     Raises
     ------
@@ -78,6 +81,7 @@ def frozen(
     """
     if isinstance(stated, MemberCheck):
         ours = of_check(stated)
+        stated = TrussFile(stated.truss, (stated.case,))
     elif case:
         (ours,) = our_forces(stated.truss, [stated.case(case) if isinstance(case, str) else case])
     else:
@@ -85,10 +89,12 @@ def frozen(
         raise InputError(message)
     names = _names(ours, members)
     criterion = criterion_of(relative, absolute)
-    return Frozen(ours, names, criterion, _text(ours, names, criterion))
+    return Frozen(stated, ours, names, criterion, _text(ours, names, criterion))
 
 
-def reveal(frozen_values: Frozen, submitted: object, *, theirs: str = "", **reading: Any) -> Comparison:
+def reveal(
+    frozen_values: Frozen, submitted: object, *, theirs: str = "", written_down: str = "", **reading: Any
+) -> Comparison:
     """Return the comparison of frozen values with submitted ones, which says in which order things were done.
 
     Parameters
@@ -100,18 +106,29 @@ def reveal(frozen_values: Frozen, submitted: object, *, theirs: str = "", **read
         before the comparison says that this order is not shown.
     theirs : str
         What the table calls the case.
+    written_down : str
+        The digest as it was written down when the values were frozen, by whoever did it.
     **reading
         Options of ``read_submitted``.
 
     Raises
     ------
     InputError
-        When the frozen values do not fit their own text any more; and as ``read_submitted`` and ``compare``.
+        When the frozen values do not fit their own text any more, or are not those of the digest written down; and as
+        ``read_submitted`` and ``compare_submitted``.
     """
     ours, names, criterion = frozen_values.ours, frozen_values.members, frozen_values.criterion
     if frozen_values.text != _text(ours, names, criterion):
         message = "the frozen values are not those their digest was made of; freeze them again"
         raise InputError(message)
+    noted = "".join(written_down.split()).casefold()
+    if noted and noted != frozen_values.digest:
+        message = (
+            f"the digest written down, {noted[:64]!r}, is of other values: ours now have {frozen_values.digest}; was "
+            "the truss file, the case, the members or the criterion another one?"
+        )
+        raise InputError(message)
+    read_before = isinstance(submitted, Submitted)
     if isinstance(submitted, Submitted):
         table = submitted
         order = (
@@ -121,8 +138,10 @@ def reveal(frozen_values: Frozen, submitted: object, *, theirs: str = "", **read
     else:
         table = read_submitted(submitted, ours.truss, **reading)
         order = "our values and the criterion were frozen before the submitted table was opened"
-    found = confronted(ours, table, theirs=theirs, members=names, criterion=criterion)
-    return replace(found, frozen=frozen_values.digest, order=order)
+    if noted:
+        order += "; their digest had been written down before, and is the same"
+    found = confronted(frozen_values.stated, ours, table, theirs=theirs, members=names, criterion=criterion)
+    return replace(found, frozen=frozen_values.digest, order=order, read_before=read_before, written_down=bool(noted))
 
 
 def _names(ours: OurForces, members: Iterable[str] | Literal["all"]) -> tuple[str, ...]:

@@ -8,7 +8,7 @@ its last printed digit together. A flipped sense never agrees, however small the
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import replace
+from dataclasses import dataclass, replace
 from typing import Final, Literal
 
 from trusscalc.comparison import (
@@ -41,7 +41,7 @@ SENSES: Final[tuple[Sense, Sense, Sense]] = ("0", "T", "C")
 """By sign: zero, plus, minus."""
 
 
-def compare(
+def compare_submitted(
     stated: TrussFile,
     submitted: Submitted,
     case: str | LoadCase,
@@ -83,14 +83,14 @@ def compare(
     >>> from trusscalc.truss import Truss
     >>> roof = Truss({"A": (0, 0), "B": (8, 0), "C": (4, 3)}, ["A-B", "A-C", "C-B"], {"A": "pin", "B": "roller"})
     >>> stated = TrussFile(roof, (LoadCase("snow", {"C": (0, -12)}),))
-    >>> found = compare(stated, read_submitted({"A-B": 8.01, "A-C": 10.0}, roof), "snow")
+    >>> found = compare_submitted(stated, read_submitted({"A-B": 8.01, "A-C": 10.0}, roof), "snow")
     >>> [(item.name, item.verdict, item.flipped) for item in found.members.values()]
     [('A-B', 'agrees', False), ('A-C', 'differs', True), ('C-B', 'missing', False)]
     """
     loads = stated.case(case) if isinstance(case, str) else case
     (ours,) = our_forces(stated.truss, [loads])
     criterion = criterion_of(relative, absolute)
-    return confronted(ours, submitted, theirs=theirs, members=members, criterion=criterion)
+    return confronted(stated, ours, submitted, theirs=theirs, members=members, criterion=criterion)
 
 
 def compare_cases(
@@ -106,7 +106,7 @@ def compare_cases(
     Parameters
     ----------
     stated, submitted, relative, absolute
-        As for ``compare``.
+        As for ``compare_submitted``.
     cases : mapping of str to str, or iterable of str, optional
         Our cases or combinations (with what the table calls them); left out: every case of the table.
     """
@@ -119,12 +119,22 @@ def compare_cases(
     if settled is not submitted:
         parts = parts_of(settled, named)
     return {
-        name: _confronted(one, part, settled, _members(one, "all"), criterion)
+        name: _confronted(Asked(stated, named[name], criterion), one, part, settled, _members(one, "all"))
         for one, (name, part) in zip(ours, parts.items(), strict=True)
     }
 
 
+@dataclass(frozen=True, slots=True)
+class Asked:
+    """What a comparison was asked with: what is stated, what the table calls the case ('' left open), what agrees."""
+
+    stated: TrussFile
+    theirs: str
+    criterion: Criterion
+
+
 def confronted(
+    stated: TrussFile,
     ours: OurForces,
     submitted: Submitted,
     *,
@@ -132,13 +142,13 @@ def confronted(
     members: Iterable[str] | Literal["all"],
     criterion: Criterion,
 ) -> Comparison:
-    """Return our side, worked out before, and theirs in one record; as ``compare``."""
+    """Return our side, worked out before, and theirs in one record; as ``compare_submitted``."""
     named = {ours.case.name: theirs}
     (part,) = parts_of(submitted, named).values()
     settled = _settled(submitted, [ours], {ours.case.name: part}, criterion)
     if settled is not submitted:
         (part,) = parts_of(settled, named).values()
-    return _confronted(ours, part, settled, _members(ours, members), criterion)
+    return _confronted(Asked(stated, theirs, criterion), ours, part, settled, _members(ours, members))
 
 
 def criterion_of(relative: object, absolute: object) -> Criterion:
@@ -205,9 +215,8 @@ def _shown(ours: Sequence[OurForces], parts: Sequence[Part], criterion: Criterio
 # --- verdicts ---------------------------------------------------------------------------------------------
 
 
-def _confronted(
-    ours: OurForces, part: Part, submitted: Submitted, members: Sequence[str], criterion: Criterion
-) -> Comparison:
+def _confronted(asked: Asked, ours: OurForces, part: Part, submitted: Submitted, members: Sequence[str]) -> Comparison:
+    criterion = asked.criterion
     judge = _Judge(ours, criterion)
     given = {row.member: row for row in part.rows}
     compared = {name: judge.member(name, given.get(name)) for name in members}
@@ -222,9 +231,11 @@ def _confronted(
                 0, f"{why}: the table may mean the other sign; if so, state its convention or have it detected"
             )
     return Comparison(
+        stated=asked.stated,
         truss=ours.truss,
         case=ours.case,
         submitted=replace(submitted, rows=part.rows, reactions=part.reactions, displacements=part.displacements),
+        theirs=asked.theirs,
         their_case=part.case,
         members=compared,
         reactions=reactions,
@@ -309,6 +320,8 @@ class _Judge:
             verdict="agrees" if agrees and not flipped else "differs",
             note=note,
             row=theirs.row,
+            called=theirs.theirs if isinstance(theirs, SubmittedForce) else "",
+            printed=theirs.printed,
         )
 
     def _sense(self, value: Exact | None, decimal: float) -> Sense:

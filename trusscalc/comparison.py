@@ -6,12 +6,14 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Final, Literal
 
+from trusscalc.convenience import Convenient
 from trusscalc.exact import ZERO, Exact, rational
 from trusscalc.implied import implied_loads, rounding_bounds
 from trusscalc.loads import LoadCase
 from trusscalc.ourforces import OurForces
 from trusscalc.submitted import Submitted
 from trusscalc.truss import Truss
+from trusscalc.trussfile import TrussFile
 
 RELATIVE: Final = rational(1, 1000)
 """Share of ours."""
@@ -76,6 +78,10 @@ class ComparedForce:
         What else is to be said; ''.
     row : int
         Where theirs stands, 0 where missing.
+    called : str
+        Of a member: what they call it.
+    printed : str
+        Theirs as it stands in the table.
     """
 
     name: str
@@ -91,6 +97,8 @@ class ComparedForce:
     verdict: Verdict
     note: str = ""
     row: int = 0
+    called: str = ""
+    printed: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -139,19 +147,21 @@ class ImpliedLoad:
 
 
 @dataclass(frozen=True, slots=True)
-class Comparison:
+class Comparison(Convenient):
     """The result of a comparison.
 
     Attributes
     ----------
+    stated : TrussFile
+        Our truss, cases and combinations as stated.
     truss : Truss
         Our truss, symbols at their values.
     case : LoadCase
-        Our loads.
+        Our loads, symbols at their values.
     submitted : Submitted
         Their table, signs as they were found to be meant.
-    their_case : str
-        What they call the case, ''.
+    theirs, their_case : str
+        What the table was said to call the case, '' for nothing; and what it does call it, ''.
     members : dict of str to ComparedForce
         Every member asked for, in the truss's order.
     reactions : dict of str to ComparedForce
@@ -175,11 +185,17 @@ class Comparison:
         In blind mode: the digest of our values, frozen before the submitted ones were revealed.
     order : str
         In blind mode: what was done in which order.
+    read_before : bool
+        In blind mode: whether the table had been read already, so that the record does not show the order.
+    written_down : bool
+        In blind mode: whether the digest had been written down before, and was the same.
     """
 
+    stated: TrussFile
     truss: Truss
     case: LoadCase
     submitted: Submitted
+    theirs: str
     their_case: str
     members: Mapping[str, ComparedForce]
     reactions: Mapping[str, ComparedForce]
@@ -192,6 +208,8 @@ class Comparison:
     agreed: bool
     frozen: str = ""
     order: str = ""
+    read_before: bool = False
+    written_down: bool = False
 
     @property
     def missing(self) -> tuple[str, ...]:

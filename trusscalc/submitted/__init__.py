@@ -14,10 +14,11 @@ from trusscalc.exact import Exact, rational
 from trusscalc.filetext import capped
 from trusscalc.submitted.blocks import Blocks, blocks_of, stated_in
 from trusscalc.submitted.heads import ROLES, Unit
-from trusscalc.submitted.names import NameMatch, Names
+from trusscalc.submitted.kept import Reading
+from trusscalc.submitted.names import NameMatch, Names, name_map
 from trusscalc.submitted.numbers import FORCE_UNITS
 from trusscalc.submitted.rows import RowReader
-from trusscalc.submitted.tables import opened
+from trusscalc.submitted.tables import Source, opened
 from trusscalc.submitted.values import (
     COMPRESSION,
     DETECT,
@@ -50,6 +51,8 @@ class SubmittedForce:
         Where it stands.
     theirs : str
         The member as they name it.
+    printed : str
+        The number as it stands in the table.
     """
 
     member: str
@@ -58,6 +61,7 @@ class SubmittedForce:
     digits: Exact
     row: int
     theirs: str
+    printed: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -71,6 +75,7 @@ class SubmittedReaction:
     force: Exact
     digits: Exact
     row: int
+    printed: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -83,6 +88,7 @@ class SubmittedDisplacement:
     amount: Exact
     digits: Exact
     row: int
+    printed: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -107,6 +113,10 @@ class Submitted:
         The unit the forces were printed in.
     notes : tuple of str
         What was assumed, detected and skipped on reading.
+    table : Source
+        The table itself.
+    reading : Reading
+        How it was asked to be read.
     """
 
     source: str
@@ -117,6 +127,8 @@ class Submitted:
     convention: Convention
     unit: str
     notes: tuple[str, ...]
+    table: Source
+    reading: Reading
 
     @property
     def cases(self) -> tuple[str, ...]:
@@ -185,10 +197,11 @@ def read_submitted(
     [('A-B', Exact('2'), Exact('1/200')), ('A-C', Exact('-56/25'), Exact('1/200'))]
     """
     theirs = _options(convention, unit, decimal)
+    named, mapped = columns_of(columns), name_map(names, truss)
     source = opened(path_or_table)
-    blocks = blocks_of(source, columns_of(columns))
+    blocks = blocks_of(source, named)
     stated, titled = stated_in(blocks)
-    reader, remarks = _rows_read(blocks, truss, names, {name.strip().casefold() for name in others})
+    reader, remarks = _rows_read(blocks, truss, mapped, {name.strip().casefold() for name in others})
     values, unit_name, notes, problems = values_of(reader.found, truss, decimal=decimal, unit=theirs, titled=titled)
     problems = [*reader.problems, *problems]
     values, means, *told = signed(values, convention, stated)
@@ -203,11 +216,20 @@ def read_submitted(
         raise FileFormatError(capped(problems), source=source.name)
     records = _records(kept)
     notes = [*blocks.notes, *remarks, *reader.notes(), *notes]
-    return Submitted(source.name, source.digest, *records, means, unit_name, tuple(notes))
+    reading = Reading(
+        columns=tuple(named.items()),
+        names=None if mapped is None else tuple(mapped.items()),
+        convention=convention,
+        unit=unit,
+        case=case,
+        decimal=decimal,
+        others=tuple(others),
+    )
+    return Submitted(source.name, source.digest, *records, means, unit_name, tuple(notes), source, reading)
 
 
 def _rows_read(
-    blocks: Blocks, truss: Truss, names: Names | None, others: Collection[str]
+    blocks: Blocks, truss: Truss, names: Mapping[str, str] | None, others: Collection[str]
 ) -> tuple[RowReader, list[str]]:
     """Return the rows read under the name map, or under our own names where the map fits none of theirs."""
     match = NameMatch(truss, names)
@@ -231,11 +253,13 @@ def _records(
     for item in values:
         raw, value, half = item.raw, rational(item.value), halves[item.half]
         if raw.kind == "force":
-            rows.append(SubmittedForce(raw.name, raw.case, value, half, raw.row, raw.theirs))
+            rows.append(SubmittedForce(raw.name, raw.case, value, half, raw.row, raw.theirs, raw.printed.text))
         elif raw.kind == "reaction":
-            reactions.append(SubmittedReaction(raw.what, raw.name, raw.axis, raw.case, value, half, raw.row))
+            of = (raw.what, raw.name, raw.axis, raw.case)
+            reactions.append(SubmittedReaction(*of, value, half, raw.row, raw.printed.text))
         else:
-            displacements.append(SubmittedDisplacement(raw.name, raw.axis, raw.case, value, half, raw.row))
+            at = (raw.name, raw.axis, raw.case)
+            displacements.append(SubmittedDisplacement(*at, value, half, raw.row, raw.printed.text))
     return tuple(rows), tuple(reactions), tuple(displacements)
 
 

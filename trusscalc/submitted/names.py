@@ -38,8 +38,8 @@ class NameMatch:
     ----------
     truss : Truss
         Our truss.
-    names : mapping, path or None
-        Our joint or member name to theirs, as ``[project.names]``, or a table of two columns.
+    names : mapping or None
+        Our joint or member name to theirs, see ``name_map``.
 
     Raises
     ------
@@ -47,10 +47,10 @@ class NameMatch:
         When the map names what is not in the truss, or one thing twice.
     """
 
-    def __init__(self, truss: Truss, names: Names | None = None) -> None:
+    def __init__(self, truss: Truss, names: Mapping[str, str] | None = None) -> None:
         self._members = {frozenset((m.start, m.end)): m.name for m in truss.members}
         joints = [joint.name for joint in truss.joints]
-        given = dict(names) if isinstance(names, Mapping) else _two_columns(names, truss) if names is not None else {}
+        given = names or {}
         self._joint_of_theirs: dict[str, str] = {}
         self._member_of_theirs: dict[str, str] = {}
         self._read(given, set(joints))
@@ -201,6 +201,13 @@ def _run_together(names: Iterable[str]) -> dict[str, set[str]]:
 
 
 # --- a map from a file ------------------------------------------------------------------------------------
+
+
+def name_map(names: Names | None, truss: Truss) -> dict[str, str] | None:
+    """Return our joint or member name to theirs, from a mapping as ``[project.names]``, or a table of two columns."""
+    if names is None or isinstance(names, Mapping):
+        return None if names is None else dict(names)
+    return _two_columns(names, truss)
 
 
 def _two_columns(given: str | os.PathLike[str], truss: Truss) -> dict[str, str]:

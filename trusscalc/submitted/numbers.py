@@ -10,6 +10,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterable
 from dataclasses import dataclass
+from decimal import Context, Decimal
 from fractions import Fraction
 from functools import lru_cache
 from typing import Final, Literal
@@ -20,6 +21,7 @@ DecimalSign = Literal[".", ","]
 Letter = Literal["T", "C", ""]
 
 LONGEST_TEXT: Final = 120
+WIDE: Final = Context(prec=2000)
 MOST_DIGITS: Final = 60
 LARGEST_POWER_OF_TEN: Final = 60
 GROUP: Final = 3
@@ -93,6 +95,13 @@ class Printed:
     unit: str = ""
     in_parentheses: bool = False
 
+    @property
+    def text(self) -> str:
+        """The number as it stands in the table, with its letter and its unit."""
+        power = f"e{self.power:+d}" if self.power else ""
+        number = f"({self.digits}{power})" if self.in_parentheses else f"{'-' * self.negative}{self.digits}{power}"
+        return " ".join(part for part in (number, self.letter, self.unit) if part)
+
 
 @dataclass(frozen=True, slots=True)
 class Amount:
@@ -100,6 +109,17 @@ class Amount:
 
     value: Fraction
     half: Fraction
+
+    @property
+    def text(self) -> str:
+        """The number with the digits it has, or as a fraction."""
+        places = 0
+        while places < LONGEST_TEXT and self.half * 2 * 10**places < 1:
+            places += 1
+        scaled = self.value * 10**places
+        if not self.half or scaled.denominator != 1:
+            return str(self.value)
+        return f"{Decimal(scaled.numerator).scaleb(-places, WIDE):f}"
 
 
 def taken_apart(text: str) -> Printed | str:

@@ -72,6 +72,8 @@ class Source:
         Of a table, its head (number 0) first; () for a file.
     notes : tuple of str
         What was noticed on the way.
+    content : bytes
+        Of a file, as it is; empty for a table.
     """
 
     name: str
@@ -79,6 +81,7 @@ class Source:
     text: str = ""
     table: tuple[Row, ...] = ()
     notes: tuple[str, ...] = ()
+    content: bytes = b""
 
 
 def opened(given: object) -> Source:
@@ -86,25 +89,27 @@ def opened(given: object) -> Source:
 
     Parameters
     ----------
-    given : path, str, bytes, or table
+    given : path, str, bytes, table or Source
         A str without line break is a path; with one, or bytes, the content of a file. A table is a mapping of
         names to columns, a mapping of members to forces, a sequence of mappings, or a data frame: anything with
-        ``columns`` and ``rows``, or with ``to_dict("records")``.
+        ``columns`` and ``rows``, or with ``to_dict("records")``. A source is taken as it is.
 
     Raises
     ------
     FileFormatError
         When it cannot be read, is no text, or is too large.
     """
+    if isinstance(given, Source):
+        return given
     if isinstance(given, str) and "\n" not in given:
         given = Path(given)
     if isinstance(given, os.PathLike):
         path = Path(given)
-        return _of_bytes(_content(path), one_line(path.name))
+        return of_bytes(_content(path), one_line(path.name))
     if isinstance(given, str):
         given = given.encode("utf-8", errors="surrogatepass")
     if isinstance(given, (bytes, bytearray, memoryview)):
-        return _of_bytes(bytes(given), "the table handed over")
+        return of_bytes(bytes(given), "the table handed over")
     return _of_table(given)
 
 
@@ -123,7 +128,8 @@ def _content(path: Path) -> bytes:
     raise FileFormatError(message, source=one_line(os.fspath(path)))
 
 
-def _of_bytes(content: bytes, name: str) -> Source:
+def of_bytes(content: bytes, name: str) -> Source:
+    """Return the content of a file as a source (FileFormatError when it is no text, or too large)."""
     digest = hashlib.sha256(content).hexdigest()
     if len(content) > LARGEST_FILE:
         message = f"too large: more than {LARGEST_FILE:,} bytes"
@@ -133,7 +139,7 @@ def _of_bytes(content: bytes, name: str) -> Source:
         message = "is no text; save the table as comma-separated values (CSV)"
         raise FileFormatError(message, source=name)
     lines = text.replace("\r\n", "\n").replace("\r", "\n")
-    return Source(name, digest, text=lines, notes=(note,) if note else ())
+    return Source(name, digest, text=lines, notes=(note,) if note else (), content=content)
 
 
 MARKS: Final = (
@@ -237,8 +243,14 @@ def _of_table(given: object) -> Source:
         )
         if any(cell != "" for cell in cells):
             made.append(Row(number, cells))
-    canonical = "\n".join(repr([_written(cell) for cell in row.cells]) for row in made)
-    return Source(kind, hashlib.sha256(canonical.encode()).hexdigest(), table=tuple(made))
+    return of_rows(made, kind)
+
+
+def of_rows(rows: Sequence[Row], name: str) -> Source:
+    """Return rows of cells, the head first, as a source; the digest is of their cells written out."""
+    canonical = "\n".join(repr([_written(cell) for cell in row.cells]) for row in rows)
+    digest = hashlib.sha256(canonical.encode(errors="surrogatepass")).hexdigest()
+    return Source(name, digest, table=tuple(rows))
 
 
 def _records(given: object) -> tuple[str, list[str], list[Sequence[object]]]:
