@@ -896,7 +896,7 @@ def test_a_kept_file_is_read_the_same_again(name: str) -> None:
 @pytest.mark.parametrize(
     "given",
     [
-        {"L0-L1": "1,5", "L1-L2": "(2.50)"},
+        {"L0-L1": "1.5", "L1-L2": "(2.50)"},
         [{"member": 7.0, "force": -1e-20}, {"member": "L1-L2", "force": 3}],
         {"member": ["L0-L1"], "force": [Fraction(1, 3)]},
     ],
