@@ -19,8 +19,11 @@ from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
     from trusscalc import shapes
+    from trusscalc.envelopes import envelope
     from trusscalc.errors import TrusscalcError, TrusscalcWarning
     from trusscalc.files import read, reads, write
+    from trusscalc.governing import governing_checks
+    from trusscalc.influence import influence_line
     from trusscalc.loads import Combination, LoadCase, combine
     from trusscalc.membercheck import MemberCheck, check_members
     from trusscalc.project import Project
@@ -45,6 +48,9 @@ _HOME = {
     "TrusscalcWarning": "errors",
     "check_members": "membercheck",
     "combine": "loads",
+    "envelope": "envelopes",
+    "governing_checks": "governing",
+    "influence_line": "influence",
     "explore": "widgets",
     "read": "files",
     "reads": "files",
@@ -65,6 +71,9 @@ __all__ = [
     "TrusscalcWarning",
     "check_members",
     "combine",
+    "envelope",
+    "governing_checks",
+    "influence_line",
     "explore",
     "read",
     "reads",

@@ -7,13 +7,16 @@ that the records themselves need to know nothing of sheets and renderers.
 from __future__ import annotations
 
 import os
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from pathlib import Path
 from typing import Any, Final
 
+from trusscalc.envelopes import Envelope
 from trusscalc.errors import RenderError, UnstableTrussError
 from trusscalc.exact import Exact
 from trusscalc.exacttext import to_text
+from trusscalc.governing import GoverningCheck, governing_checks
+from trusscalc.influence import InfluenceLine
 from trusscalc.membercheck import ForceCheck, MemberCheck
 from trusscalc.project import Project
 from trusscalc.render.html import html
@@ -25,13 +28,23 @@ from trusscalc.replacefile import replace_file
 from trusscalc.sheet import compose as composing
 from trusscalc.sheet.blocks import Derivation, Inline, Items, Picture, Run, Sheet, Value
 from trusscalc.sheet.detail import Detail
+from trusscalc.sheet.envelopeelevation import envelope_elevation
+from trusscalc.sheet.envelopefigure import envelope_diagrams
+from trusscalc.sheet.envelopefront import extremes_table
+from trusscalc.sheet.envelopesheet import compose_envelope
+from trusscalc.sheet.envelopetables import States
 from trusscalc.sheet.figures import Figure, cut_figure, mechanism_figure, truss_figure
+from trusscalc.sheet.influencefigure import influence_figure
+from trusscalc.sheet.influencesheet import compose_influence
+from trusscalc.sheet.traintables import ordinate_table
 from trusscalc.sheet.values import decimal_text
 from trusscalc.sheet.words import about_words, bar, listed
 from trusscalc.statics.cutreport import CutReport, cut_equation, cut_report
 from trusscalc.statics.cuts import Cut
 from trusscalc.statics.owncuts import OwnCut, own_cut
 from trusscalc.statics.steps import Equation, Step
+from trusscalc.trains import Train
+from trusscalc.travel import Extreme
 from trusscalc.truss import Truss
 from trusscalc.widgets import explore
 from trusscalc.widgets.cutblocks import equation_blocks, facts, kept_and_cut, possibility_table, why_nothing
@@ -123,6 +136,63 @@ def _sheet(
 def _derivation(check: MemberCheck, number: int, *, places: int = 3, drawings: bool = True) -> Derivation:
     """Return one step, written out with its free body; see ``trusscalc.sheet.compose.derivation``."""
     return composing.derivation(check, number, places=places, drawings=drawings)
+
+
+def _envelope_sheet(
+    found: Envelope,
+    project: Project | None = None,
+    *,
+    checks: Sequence[GoverningCheck] | None = None,
+    truss_text: str = "",
+    places: int = 3,
+    drawings: bool = True,
+    detail: Detail = "members",
+) -> Sheet:
+    """Return the calculation sheet of this envelope; see ``trusscalc.sheet.envelopesheet.compose_envelope``."""
+    return compose_envelope(
+        found,
+        governing_checks(found) if checks is None else checks,
+        project,
+        truss_text=truss_text,
+        places=places,
+        drawings=drawings,
+        detail=detail,
+    )
+
+
+def _influence_sheet(
+    line: InfluenceLine,
+    project: Project | None = None,
+    *,
+    trains: Sequence[Train] = (),
+    extremes: tuple[Extreme, Extreme] | None = None,
+    train: str = "",
+    truss_text: str = "",
+    places: int = 3,
+    drawings: bool = True,
+) -> Sheet:
+    """Return the calculation sheet of this line; see ``trusscalc.sheet.influencesheet.compose_influence``."""
+    return compose_influence(
+        line,
+        trains,
+        extremes,
+        project,
+        train=train,
+        truss_text=truss_text,
+        places=places,
+        drawings=drawings,
+    )
+
+
+def _envelope_bundle(found: Envelope, **_: Any) -> Bundle:
+    """Return the table of extremes and their diagram as a notebook shows them."""
+    figures = (*envelope_diagrams(found), envelope_elevation(found)) if found.members else ()
+    return bundle([extremes_table(States(found, ()), PLACES), *(Picture((figure,)) for figure in figures)])
+
+
+def _line_bundle(line: InfluenceLine, **_: Any) -> Bundle:
+    """Return an influence line drawn below its truss, and its ordinates."""
+    return bundle([Picture((influence_figure(line),)), ordinate_table(line, PLACES)])
 
 
 def _sheet_bundle(sheet: Sheet, **_: Any) -> Bundle:
@@ -223,6 +293,8 @@ def _mechanism_bundle(error: UnstableTrussError, **_: Any) -> dict[str, Any]:
 CONVENIENCES: Final[dict[type, dict[str, Any]]] = {
     Sheet: {"save": save, "_repr_mimebundle_": _sheet_bundle},
     MemberCheck: {"sheet": _sheet, "derivation": _derivation, "_repr_mimebundle_": _check_bundle},
+    Envelope: {"sheet": _envelope_sheet, "_repr_mimebundle_": _envelope_bundle},
+    InfluenceLine: {"sheet": _influence_sheet, "_repr_mimebundle_": _line_bundle},
     Derivation: {"_repr_mimebundle_": _derivation_bundle},
     Step: {"_repr_mimebundle_": _step_bundle},
     Equation: {"_repr_mimebundle_": _equation_bundle},

@@ -16,9 +16,12 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any, Final
 
+from trusscalc.envelopes import envelope
 from trusscalc.errors import FileFormatError, TrusscalcError, TrusscalcWarning
 from trusscalc.files import reads
 from trusscalc.filetext import one_line
+from trusscalc.governing import governing_checks
+from trusscalc.influence import influence_line
 from trusscalc.membercheck import check_members
 from trusscalc.project import Project
 from trusscalc.recheck import notebooks, pages
@@ -28,10 +31,19 @@ from trusscalc.render.notebook import notebook
 from trusscalc.sheet.blocks import Sheet
 from trusscalc.sheet.compose import compose
 from trusscalc.sheet.digest import FORMAT, record_of
+from trusscalc.sheet.envelopesheet import compose_envelope
+from trusscalc.sheet.influencesheet import compose_influence
 from trusscalc.statics.owncuts import own_cut
+from trusscalc.trussfile import TrussFile
 
 LARGEST_SHEET: Final = 100_000_000
 """Bytes of a filed sheet that are read."""
+ASKED: Final = {
+    "check": ("case", "members", "cuts", "prefer", "detail", "graphics"),
+    "envelope": ("members", "detail"),
+    "influence": ("target", "along", "train", "prefer"),
+}
+"""What the record of a sheet says of what was asked for; that of a check does not name its task."""
 PDF: Final = (
     "a PDF carries no input to derive it from again; give the truss file it was written from, with the same case and "
     "members (python -m trusscalc recheck sheet.pdf --against FILE.toml --case NAME --members A-B,C-D), or recheck "
@@ -266,6 +278,10 @@ def derive(record: Mapping[str, Any], truss_text: str) -> Sheet:
         When the record or the truss file states something that cannot be.
     """
     stated = reads(truss_text)
+    if record.get("task") == "envelope":
+        return _envelope(record, stated, truss_text)
+    if record.get("task") == "influence":
+        return _influence(record, stated, truss_text)
     cuts = {member: own_cut(stated.truss, keep=kept) for member, kept in record["cuts"].items()}
     case = stated.case(record["case"])
     check = check_members(stated.truss, case, record["members"], cuts=cuts, prefer=record["prefer"])
@@ -278,6 +294,33 @@ def derive(record: Mapping[str, Any], truss_text: str) -> Sheet:
         drawings=record["drawings"],
         detail=record["detail"],
         graphics=record["graphics"],
+    )
+
+
+def _envelope(record: Mapping[str, Any], stated: TrussFile, truss_text: str) -> Sheet:
+    found = envelope(stated, record["members"])
+    return compose_envelope(
+        found,
+        governing_checks(found),
+        Project(**record["project"], names=record["names"]),
+        truss_text=truss_text,
+        places=record["places"],
+        drawings=record["drawings"],
+        detail=record["detail"],
+    )
+
+
+def _influence(record: Mapping[str, Any], stated: TrussFile, truss_text: str) -> Sheet:
+    chain = stated.chain(record["along"])
+    return compose_influence(
+        influence_line(stated.truss, record["target"], chain, prefer=record["prefer"]),
+        stated.train(record["train"]) if record["train"] else (),
+        None,
+        Project(**record["project"], names=record["names"]),
+        train=record["train"],
+        truss_text=truss_text,
+        places=record["places"],
+        drawings=record["drawings"],
     )
 
 
@@ -296,9 +339,13 @@ def _must_be_known(record: Mapping[str, Any]) -> None:
     lines = {name for name in Project.__dataclass_fields__ if name != "names"}
     right: dict[str, Callable[[Any], bool]] = {
         "format": lambda item: type(item) is int and item == FORMAT,
+        "task": lambda item: text(item) and item in ASKED,
         "case": text,
         "members": lambda items: texts(items) and bool(items),
         "cuts": lambda items: entries(items, texts),
+        "target": text,
+        "along": text,
+        "train": text,
         "prefer": lambda item: item in ("", "sections", "joints"),
         "places": lambda item: type(item) is int,
         "drawings": lambda item: type(item) is bool,
@@ -307,7 +354,10 @@ def _must_be_known(record: Mapping[str, Any]) -> None:
         "project": lambda items: entries(items, text) and set(items) <= lines,
         "names": lambda items: entries(items, text),
     }
-    wrong = [name for name, fits in right.items() if name not in record or not fits(record[name])]
+    task = record.get("task", "check")
+    needed = {"format", "places", "drawings", "project", "names", *ASKED.get(task if text(task) else "", ())}
+    needed |= {"task"} if "task" in record else set()
+    wrong = [name for name in right if name in needed and (name not in record or not right[name](record[name]))]
     if wrong:
         raise FileFormatError([f"record, {name}: is not what this version writes there" for name in wrong])
 

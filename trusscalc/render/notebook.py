@@ -10,18 +10,16 @@ import base64
 import hashlib
 import html
 from collections.abc import Iterable
-from typing import Any, Final
+from typing import Any
 
+from trusscalc.render.codecells import PLACES, as_literal, file_source, proof_output, proof_source, result_source
 from trusscalc.render.draw import png, svg
 from trusscalc.render.markdown import Svg, image, markdown
 from trusscalc.render.text import blocks_text, step_text
-from trusscalc.sheet.blocks import Block, Derivation, Heading, Listing, Origin, Sheet
+from trusscalc.sheet.blocks import Block, Derivation, Heading, Listing, Sheet
 from trusscalc.sheet.digest import record_of
 from trusscalc.sheet.inputecho import INPUT
 from trusscalc.sheet.marks import Figure
-
-PLACES: Final = 3
-"""Decimal places of a check shown in a notebook without further words."""
 
 Bundle = dict[str, str]
 
@@ -45,7 +43,7 @@ def notebook(sheet: Sheet, *, draw: Svg = svg) -> str:
             cells.append(v4.new_markdown_cell(markdown(part, draw)))
         if part is holder:
             cells.append(_code(v4, file_source(sheet.origin), 1, []))
-            cells.append(_code(v4, check_source(sheet.origin), 2, [_result(v4, bundle(sheet.summary, draw), 2)]))
+            cells.append(_code(v4, result_source(sheet.origin), 2, [_result(v4, bundle(sheet.summary, draw), 2)]))
     cells.append(v4.new_markdown_cell("## Derived again\n\nRun all cells: the last one compares every value."))
     said = v4.new_output("stream", name="stdout", text=proof_output(sheet.origin) + "\n")
     cells.append(_code(v4, proof_source(sheet.origin), 3, [said]))
@@ -113,71 +111,6 @@ def _result(v4: Any, data: Bundle, count: int) -> Any:
     return v4.new_output("execute_result", data=data, execution_count=count, metadata={})
 
 
-def file_source(origin: Origin) -> str:
-    """Return the cell that holds the truss file."""
-    return f"from trusscalc import check_members, reads\n\ntruss_file = reads({as_literal(origin.truss_text)})"
-
-
-def check_source(origin: Origin) -> str:
-    """Return the cell that derives the members again and shows the summary."""
-    names = "".join(f"    {name!r},\n" for name in origin.members)
-    show = "check" if origin.places == PLACES else f"check.sheet(places={origin.places}, drawings=False)"
-    wishes = ""
-    if origin.cuts:
-        kept = ", ".join(f"{name!r}: truss_file.truss.cut(keep={list(joints)!r})" for name, joints in origin.cuts)
-        wishes += f", cuts={{{kept}}}"
-    if origin.prefer:
-        wishes += f", prefer={origin.prefer!r}"
-    return (
-        f"members = [\n{names}]\n"
-        f"case = truss_file.case({origin.case!r})\n"
-        f"check = check_members(truss_file.truss, case, members{wishes})\n"
-        f"{show}"
-    )
-
-
-def proof_source(origin: Origin) -> str:
-    """Return the cell that compares what was derived again with what the sheet states."""
-    rows = "".join(f"    {name!r}: {value!r},\n" for name, value in origin.stated)
-    return (
-        "from trusscalc.exacttext import to_text\n"
-        "from trusscalc.statics.matrix import solve\n\n"
-        f"stated = {{\n{rows}}}\n"
-        "# all joint equations at once, then the steps: the same values by either way\n"
-        "derived = {name: to_text(force) for name, force in solve(truss_file.truss, case).forces.items()}\n"
-        "derived |= {name: to_text(force) for step in check.steps for name, force in step.results.items()}\n"
-        "differing = [name for name in stated if derived.get(name) != stated[name]]\n"
-        'assert not differing, f"derived again, a value differs from what this sheet states: {differing}"\n'
-        f'assert check.agreed is {origin.agreed}, "derived again, the verdict differs from what this sheet states"\n'
-        f"print({proof_output(origin)!r})"
-    )
-
-
-def proof_output(origin: Origin) -> str:
-    """Return what the comparing cell prints when all is as stated."""
-    values = f"{len(origin.stated)} value{'s' * (len(origin.stated) != 1)}"
-    agreement = "the two routes agree" if origin.agreed else "the two routes do NOT agree, as the sheet says"
-    return f"{values} derived again, equal to what this sheet states; {agreement}"
-
-
-def as_literal(text: str) -> str:
-    r"""Return a Python literal of a text, readable where that is safe.
-
-    Examples
-    --------
-    >>> print(as_literal("format = 1\n"))
-    '''format = 1
-    '''
-    >>> as_literal("a = 'b'''c'")
-    '"a = \'b\'\'\'c\'"'
-    """
-    if "'''" not in text and "\\" not in text and "\r" not in text and not text.startswith("'") and text[-1:] != "'":
-        return f"'''{text}'''"
-    if text.count("\n") < 2:  # noqa: PLR2004 - one line reads best as one
-        return repr(text)
-    return "(\n" + "".join(f"    {line!r}\n" for line in text.splitlines(keepends=True)) + ")"
-
-
 def _metadata(sheet: Sheet) -> dict[str, Any]:
     origin = sheet.origin
     stated = {"truss": origin.truss_text, "stated": dict(origin.stated), "agreed": origin.agreed}
@@ -187,3 +120,6 @@ def _metadata(sheet: Sheet) -> dict[str, Any]:
         "title": sheet.title,
         "trusscalc": {**record_of(sheet), **stated},
     }
+
+
+__all__ = ["PLACES", "Bundle", "as_literal", "bundle", "figure_bundle", "notebook", "step_bundle"]

@@ -83,7 +83,9 @@ def extremes_table(states: States, places: int, *, derived: bool = True) -> Tabl
     )
     table = Table(columns, tuple(rows), strong_rows=tuple(strong))
     reversing = any(each.reversal for each in states.found.members.values())
-    return without_columns(table, lambda place, _: columns[place].head == "reverses" and not reversing)
+    idle = {"reverses"} if not reversing else set()
+    idle |= {"hand check"} if not states.checks else set()
+    return without_columns(table, lambda place, _: columns[place].head in idle)
 
 
 def _row(
