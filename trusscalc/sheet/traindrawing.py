@@ -275,5 +275,7 @@ def _without_place(line: InfluenceLine, stand: Stand) -> tuple[list[int], list[i
 
 
 def _numbered(numbers: Sequence[int]) -> str:
-    one = len(numbers) == 1
-    return f"Axle{'' if one else 's'} {words.listed(map(str, numbers))} {'is' if one else 'are'}"
+    if len(numbers) == 1:
+        return f"Axle {numbers[0]} is"
+    in_a_row = len(numbers) > 2 and numbers[-1] - numbers[0] == len(numbers) - 1  # noqa: PLR2004
+    return f"Axles {f'{numbers[0]} to {numbers[-1]}' if in_a_row else words.listed(map(str, numbers))} are"
