@@ -164,18 +164,21 @@ class WholeTruss:
         """Draw the reactions that are not zero, with their values."""
         for link in self.truss.links:
             item = check.reactions[link.name]
-            if item.exact is None or not item.exact or link.joint not in self.sketch.place:
-                continue
-            way = unit((0.0, 0.0), (float(link.dx), float(link.dy)))
-            sides, depth = self.depth[link.joint]
-            behind = (-way[0], -way[1])
-            side = next((side for side in sides if side[0] * behind[0] + side[1] * behind[1] > IN_LINE), None)
-            taken = self.sketch.taken[link.joint]
-            if side in taken:
-                taken.remove(side)  # the arrow stands behind the symbol, on the same side
-            gap = depth + 1.4 if side else 1.2
-            draw_force(self.sketch, Force(link.joint, way, amount(item.exact), reaction=True, small=True), gap=gap)
-            taken += [side] if side else []
+            if item.exact is not None and item.exact and link.joint in self.sketch.place:
+                way = unit((0.0, 0.0), (float(link.dx), float(link.dy)))
+                self.reaction(link.joint, way, amount(item.exact))
+
+    def reaction(self, joint: str, way: Point, value: str) -> None:
+        """Draw the arrow of a reaction at a supported joint, behind the support's symbol if it stands in its line."""
+        sides, depth = self.depth[joint]
+        behind = (-way[0], -way[1])
+        side = next((side for side in sides if side[0] * behind[0] + side[1] * behind[1] > IN_LINE), None)
+        taken = self.sketch.taken[joint]
+        if side in taken:
+            taken.remove(side)  # the arrow stands behind the symbol, on the same side
+        gap = depth + 1.4 if side else 1.2
+        draw_force(self.sketch, Force(joint, way, value, reaction=True, small=True), gap=gap)
+        taken += [side] if side else []
 
     def joints(self, *, named: Iterable[str] = ()) -> None:
         """Draw the joints and write their names; on a crowded drawing only those of members named."""
