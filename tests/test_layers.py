@@ -326,8 +326,9 @@ TOP_LEVEL = {"README.md", "DEVELOPERS.md", "pyproject.toml", "trusscalc", "workb
 def test_the_continuous_check_runs_the_command_that_readme_gives() -> None:
     """Word for word, so that what is promised to a reader is what is run."""
     script = (ROOT / ".ci" / "run").read_text(encoding="utf-8")
-    (command,) = [line for line in script.splitlines() if "pytest" in line]
+    command, in_browser = [line for line in script.splitlines() if "pytest" in line]
     assert command in (ROOT / "README.md").read_text(encoding="utf-8").splitlines()
+    assert in_browser.endswith("-m browser tests/browser")
     assert os.access(ROOT / ".ci" / "run", os.X_OK)
 
 

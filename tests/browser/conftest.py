@@ -26,7 +26,8 @@ import nbformat
 import pytest
 from parts import CELL_ERRORS, RUN_ALL, ready
 
-collect_ignore_glob = [] if find_spec("playwright") and find_spec("jupyterlab") else ["test_*.py"]
+NEEDED = ("playwright", "jupyterlab", "axe_playwright_python", "anywidget")
+collect_ignore_glob = [] if all(map(find_spec, NEEDED)) else ["test_*.py"]
 
 REPOSITORY = Path(__file__).parents[2]
 BROWSER = os.environ.get("CHROMIUM") or shutil.which("chromium")

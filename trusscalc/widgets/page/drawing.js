@@ -14,7 +14,7 @@ const KEYS = [
   ["Tab", "from members to joints, to the points of the section line, to the arrows that show the part kept"],
   ["Arrow keys", "to the next member or joint that way; on a point of the section line: move it, with Shift farther"],
   ["PageDown, PageUp, Home, End", "through all members or joints in their order"],
-  ["Space or Enter", "a member: check it or not; a joint: as chosen below; an arrow: keep the other part"],
+  ["Space or Enter", "a member: check it or not; a joint: as chosen above; an arrow: keep the other part"],
   ["S", "on a member: a straight section through it"],
   ["C", "on a member: cut through it or not"],
   ["K", "on a joint: keep it or not; the cut goes round the joints kept"],
