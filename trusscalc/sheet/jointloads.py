@@ -3,17 +3,21 @@
 from __future__ import annotations
 
 import itertools
-from collections.abc import Sequence
+from collections.abc import Iterable, Iterator, Sequence
+from typing import Final
 
 from trusscalc.exact import ZERO, Exact
 from trusscalc.loads import JointLoad, LoadCase
 from trusscalc.sheet.board import LIGHT, SMALL_SIZE, along, around
 from trusscalc.sheet.inscriptions import amount
-from trusscalc.sheet.lettering import Point, box_of, boxes_of, text_width
+from trusscalc.sheet.lettering import Box, Point, box_of, boxes_of, text_width
 from trusscalc.sheet.marks import Arrow, Label
 from trusscalc.sheet.ordinates import row_style
 from trusscalc.sheet.symbols import ASIDE, CLEAR_ANGLE, GAP, LOAD_LENGTH
 from trusscalc.sheet.wholetruss import WholeTruss
+
+HEIGHTS: Final = tuple(share * ASIDE for share in (1.0, 1.5, 2.0, -1.0, 2.5, 3.0, 3.5, -1.5, -2.0, -2.5, -3.0))
+"""Tried for a level load that has to stand beside the bars of its joint, mm."""
 
 
 def draw_joint_loads(whole: WholeTruss, case: LoadCase) -> None:
@@ -77,19 +81,32 @@ def _draw_over_bars(whole: WholeTruss, load: JointLoad) -> None:
     back = load.fx.reads_negative()
     best: tuple[tuple[int, int], Point, Point, Label] | None = None
     outwards = 1.0 if y >= whole.middle[1] else -1.0
-    for height, side in itertools.product((ASIDE, 1.5 * ASIDE, 2.0 * ASIDE, -ASIDE), (-1.0, 1.0)):
+    for height, side in itertools.product(HEIGHTS, (-1.0, 1.0)):
         level = y + outwards * height
         near, far = (x + side * GAP, level), (x + side * (GAP + LOAD_LENGTH), level)
         ends = (far, near) if (side < 0) != back else (near, far)
-        label = next(around(far, Label(far, amount(unsigned(load.fx)), SMALL_SIZE), 0.7, [(side, 0.0)]))
-        boxes = [*boxes_of(Arrow(*ends, LIGHT)), box_of(label)]
-        hits = [whole.board.obstacles.hits(box, 0.3) for box in boxes]
-        cost = (sum(letters for letters, _ in hits), sum(lines for _, lines in hits))
-        if best is None or cost < best[0]:
-            best = (cost, *ends, label)
+        arrow = _hits(whole, boxes_of(Arrow(*ends, LIGHT)))
+        for label in _beside(near, far, Label(far, amount(unsigned(load.fx)), SMALL_SIZE)):
+            lettering = _hits(whole, [box_of(label)])
+            cost = (arrow[0] + lettering[0], arrow[1] + lettering[1])
+            if best is None or cost < best[0]:
+                best = (cost, *ends, label)
     assert best is not None  # noqa: S101 - there are always trials
     whole.board.arrow(best[1], best[2], width=LIGHT, small=True)
     whole.board.put("lettering", best[3])
+
+
+def _beside(near: Point, far: Point, label: Label) -> Iterator[Label]:
+    """Yield a value at the free end of a level arrow, then over and under its shaft."""
+    side = 1.0 if far[0] > near[0] else -1.0
+    yield from around(far, label, 0.7, [(side, 0.0)])
+    yield from around(((near[0] + far[0]) / 2, far[1]), label, 0.9, [(0.0, 1.0), (0.0, -1.0)])
+
+
+def _hits(whole: WholeTruss, boxes: Iterable[Box]) -> tuple[int, int]:
+    """Return how many labels and how many lines some boxes meet."""
+    hits = [whole.board.obstacles.hits(box, 0.3) for box in boxes]
+    return sum(letters for letters, _ in hits), sum(lines for _, lines in hits)
 
 
 def unsigned(number: Exact) -> Exact:

@@ -26,7 +26,7 @@ from trusscalc.sheet.board import (
 from trusscalc.sheet.folding import Fold, break_line
 from trusscalc.sheet.inscriptions import MINUS, Scale, amount
 from trusscalc.sheet.lettering import Point, text_width
-from trusscalc.sheet.marks import Label
+from trusscalc.sheet.marks import Label, Ring
 from trusscalc.sheet.sections import section_line
 from trusscalc.sheet.symbols import (
     Force,
@@ -41,6 +41,7 @@ from trusscalc.statics.cuts import Cut, structure_of
 from trusscalc.truss import Truss
 
 SMALL_JOINT: Final = 1.3
+MARKED_JOINT: Final = 1.9
 MOST_SECTIONS: Final = 8
 MOST_NAMED: Final = 24
 MOST_TOLD: Final = 12
@@ -180,16 +181,22 @@ class WholeTruss:
         draw_force(self.sketch, Force(joint, way, value, reaction=True, small=True), gap=gap)
         taken += [side] if side else []
 
-    def joints(self, *, named: Iterable[str] = ()) -> None:
-        """Draw the joints and write their names; on a crowded drawing only those of members named."""
+    def joints(self, *, named: Iterable[str] = (), marked: Collection[str] = ()) -> None:
+        """Draw the joints, marked ones black, and write their names; on a crowded drawing only those of members named.
+
+        Marked joints are named on a crowded drawing too, as long as they are few.
+        """
         wanted = set(self.sketch.place)
         if self.crowded:
             ends = {end for name in named for end in (self.members[name].start, self.members[name].end)}
             wanted &= ends if len(ends) <= MOST_NAMED else set()
+            wanted |= set(marked) if len(marked) <= MOST_NAMED else set()
             wanted |= {support.joint for support in self.truss.supports}
             self.notes.append("Only some joints are named")
-        for place in self.sketch.place.values():
-            if not self.crowded:
+        for name, place in self.sketch.place.items():
+            if name in marked:
+                self.board.put("joint", Ring(place, MARKED_JOINT, LIGHT, fill="black"))
+            elif not self.crowded:
                 self.board.joint(place, diameter=SMALL_JOINT)
         for name in self.sketch.place:
             if name in wanted:
