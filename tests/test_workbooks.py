@@ -36,6 +36,7 @@ ROOT = Path(__file__).parents[1]
 FOLDER = ROOT / "workbooks"
 WORKBOOKS = sorted(FOLDER.glob("*.ipynb"))
 CAUTION = ("licensed engineer", "local codes")
+LIVE = "application/vnd.jupyter.widget-view+json"
 KERNEL = {
     "kernelspec": {"display_name": "Python 3", "language": "python", "name": "python3"},
     "language_info": {"name": "python"},
@@ -88,16 +89,18 @@ def stored_form(book: Any) -> str:
         cell["id"] = cell_id(place, cell.source)
         cell["metadata"] = {}
         if cell.cell_type == "code":
-            cell["outputs"] = streams_joined(cell.outputs)
+            cell["outputs"] = filed(cell.outputs)
     book["metadata"] = KERNEL
     nbformat.validate(book)
     return str(nbformat.writes(book)).rstrip("\n") + "\n"
 
 
-def streams_joined(outputs: list[Any]) -> list[Any]:
-    """Return outputs in which what was printed stands in one piece, however the kernel has cut it."""
+def filed(outputs: list[Any]) -> list[Any]:
+    """Return outputs as they stay on file: nothing live, and what was printed in one piece, however it was cut."""
     joined: list[Any] = []
     for output in outputs:
+        if LIVE in output.get("data", {}):
+            continue  # its static form stands beside it
         if joined and output.output_type == "stream" == joined[-1].output_type and output.name == joined[-1].name:
             joined[-1]["text"] += output.text
         else:
@@ -116,7 +119,7 @@ def cell_id(place: int, source: str) -> str:
 def shown(cell: Any) -> Shown:
     """Return everything a cell shows."""
     found: Shown = {}
-    for output in streams_joined(cell.get("outputs", [])):
+    for output in filed(cell.get("outputs", [])):
         if output.output_type == "stream":
             found[f"{len(found)} {output.name}"] = output.text
         elif output.output_type == "error":

@@ -47,7 +47,15 @@ from trusscalc.trains import Train
 from trusscalc.travel import Extreme
 from trusscalc.truss import Truss
 from trusscalc.widgets import explore
-from trusscalc.widgets.cutblocks import equation_blocks, facts, kept_and_cut, possibility_table, why_nothing
+from trusscalc.widgets.answers import Answer
+from trusscalc.widgets.cutblocks import (
+    answer_blocks,
+    equation_blocks,
+    facts,
+    kept_and_cut,
+    possibility_table,
+    why_nothing,
+)
 
 WRITERS: Final[dict[str, Callable[[Sheet], str | bytes]]] = {
     ".ipynb": notebook,
@@ -283,6 +291,11 @@ def _cut_report_bundle(report: CutReport, **_: Any) -> Bundle:
     return bundle([facts(items), possibility_table(report.possibilities)])
 
 
+def _answer_bundle(answer: Answer, **_: Any) -> Bundle:
+    """Return what a cut gives: what is cut, each equation and what it leaves, what is solved, with free bodies."""
+    return bundle(answer_blocks(answer, drawings=True))
+
+
 def _mechanism_bundle(error: UnstableTrussError, **_: Any) -> dict[str, Any]:
     """Return the mechanism of a caught error as a notebook shows it: the truss thin, its moving joints with arrows."""
     if not isinstance(error.truss, Truss):
@@ -304,6 +317,7 @@ CONVENIENCES: Final[dict[type, dict[str, Any]]] = {
     Cut: {"_repr_mimebundle_": _cut_bundle},
     Truss: {"cut": own_cut, "explore": explore, "_repr_mimebundle_": _truss_bundle},
     OwnCut: {"report": cut_report, "equation": cut_equation, "_repr_mimebundle_": _own_cut_bundle},
+    Answer: {"_repr_mimebundle_": _answer_bundle},
     CutReport: {"_repr_mimebundle_": _cut_report_bundle},
     UnstableTrussError: {"_repr_mimebundle_": _mechanism_bundle},
 }

@@ -9,6 +9,7 @@ from __future__ import annotations
 from collections.abc import Collection, Iterator, Mapping
 from dataclasses import dataclass, replace
 
+from trusscalc.convenience import Convenient
 from trusscalc.exact import ZERO, Exact
 from trusscalc.loads import LoadCase
 from trusscalc.membercheck import ForceCheck, MemberCheck, check_members
@@ -21,7 +22,7 @@ from trusscalc.statics.steps import Equation, Step, StepError, section_letter, w
 
 
 @dataclass(frozen=True, slots=True)
-class Answer:
+class Answer(Convenient):
     """What a cut gives under a load case.
 
     Attributes
