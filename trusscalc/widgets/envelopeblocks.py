@@ -1,39 +1,23 @@
-"""An envelope in short: largest tension and compression of each member, and what governs them."""
+"""An envelope in short: largest and least force of each member, what governs them, and what both routes say."""
 
 from __future__ import annotations
 
 from typing import Final
 
 from trusscalc.envelopes import Envelope
-from trusscalc.loads import LoadCase
-from trusscalc.sheet.blocks import Block, Column, Decimals, Heading, Inline, Paragraph, Run, Table
-from trusscalc.sheet.values import decimal_text, told
-from trusscalc.sheet.words import bar, listed
-from trusscalc.superposition import Choice
+from trusscalc.sheet.blocks import Block, Heading, Paragraph, Run
+from trusscalc.sheet.envelopefront import extremes_table
+from trusscalc.sheet.envelopetables import States
+from trusscalc.sheet.words import bar, counted, listed
 
 PLACES: Final = 3
-UNVALUED: Final = LoadCase("", {})
 
 
 def envelope_blocks(found: Envelope) -> list[Block]:
     """Return an envelope as a table, with what both routes say of it."""
-    rows = tuple(
-        (Run(bar(name)), *_extreme(each.max), *_extreme(each.min), Run("reverses" if each.reversal else ""))
-        for name, each in found.members.items()
-    )
-    extreme = (Column("exact", "right"), Column("decimal", "right"), Column("combination"))
-    columns = (Column("member"), *extreme, *extreme, Column(""))
-    force = found.stated.truss.force
-    words = f"Largest force, then least, tension positive, in {force}, over {len(found.combinations)} combinations. "
+    words = f"Over {counted(len(found.combinations), 'combination')}, in {found.stated.truss.force}. "
     words += "Both routes agree on every case." if not found.differing else f"The routes DIFFER: {_where(found)}."
-    if found.undecided:
-        words += f" Not decided by statics: {listed(map(bar, found.undecided))}."
-    return [Heading(4, "Envelope"), Paragraph((Run(words),)), Table(columns, rows)]
-
-
-def _extreme(choice: Choice) -> tuple[Inline, ...]:
-    decimal = Decimals(decimal_text(choice.value, PLACES))
-    return told(choice.value, UNVALUED), decimal, Run(choice.combination)
+    return [Heading(4, "Envelope"), Paragraph((Run(words),)), extremes_table(States(found, ()), PLACES)]
 
 
 def _where(found: Envelope) -> str:
