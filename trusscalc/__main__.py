@@ -17,8 +17,12 @@ from typing import TYPE_CHECKING, Any, Literal
 from trusscalc.errors import InputError, TrusscalcError, TrusscalcWarning
 
 if TYPE_CHECKING:
+    from trusscalc.chains import Chain
+    from trusscalc.envelopes import Envelope
+    from trusscalc.influence import InfluenceLine
     from trusscalc.membercheck import MemberCheck
     from trusscalc.sheet.blocks import Sheet
+    from trusscalc.trains import Train
     from trusscalc.trussfile import TrussFile
 
 AGREED, DISAGREED, REFUSED = 0, 1, 2
@@ -78,6 +82,9 @@ def _parser() -> argparse.ArgumentParser:
     recheck = commands.add_parser("recheck", help="derive a filed sheet again and compare it with what it shows")
     recheck.add_argument("file", metavar="SHEET", help="a filed notebook (.ipynb), page (.html) or PDF")
     recheck.add_argument("--against", metavar="FILE.toml", help="for a PDF: the truss file it was written from")
+    recheck.add_argument("--member", default="", help="for a PDF of an influence line: its force, with --along")
+    recheck.add_argument("--along", default="", help="for a PDF of an influence line: its chain")
+    recheck.add_argument("--train", default="", help="for a PDF of an influence line: the train on it")
     recheck.set_defaults(run=_recheck)
     _add_loads(commands)
     for command, needed in ((check, True), (sheet, True), (recheck, False)):
@@ -117,9 +124,17 @@ def _add_loads(commands: Any) -> None:
     envelope.add_argument("--members", required=True, help="A-B,C-D or all")
     envelope.add_argument("--combinations", metavar="TABLE", help="further combinations, a TOML or CSV table")
     envelope.set_defaults(run=_envelope)
+    envelope.add_argument(
+        "--detail",
+        choices=("members", "all", "summary"),
+        default="members",
+        help="of the sheet: derivations of more than twelve members those that govern first, all in one place, or none",
+    )
     for command in (influence, envelope):
         command.add_argument("file", metavar="FILE.toml", help="the truss file")
         command.add_argument("--json", action="store_true", help="print the whole result as JSON")
+        command.add_argument("--out", default="", help="write the calculation sheet too; its suffix says how")
+        command.add_argument("--paper", choices=("A4", "US Letter"), default="A4", help="of a PDF")
 
 
 def _names(text: str) -> list[str] | Literal["all"]:
@@ -176,8 +191,12 @@ def _composed(arguments: argparse.Namespace, stated: TrussFile, check: MemberChe
     """Return the sheet; it echoes the truss file as it stands, so that its digest on the sheet is the file's own."""
     from trusscalc.sheet.compose import compose  # noqa: PLC0415
 
-    text = Path(arguments.file).read_bytes().decode("utf-8-sig")
+    text = _text_of(arguments.file)
     return compose(check, stated.project, truss_text=text, detail=arguments.detail, graphics=arguments.graphics)
+
+
+def _text_of(path: str) -> str:
+    return Path(path).read_bytes().decode("utf-8-sig")
 
 
 def _recheck(arguments: argparse.Namespace) -> int:
@@ -186,59 +205,132 @@ def _recheck(arguments: argparse.Namespace) -> int:
     if arguments.against is None:
         report = recheck(arguments.file)
     else:
-        if not (arguments.file.lower().endswith(".pdf") and arguments.case and arguments.members):
+        if not (arguments.file.lower().endswith(".pdf") and (arguments.members or arguments.member)):
             message = (
-                "--against is for a PDF, together with its --case and --members; other sheets hold their own input"
+                "--against is for a PDF, together with its --case and --members (an envelope has no case; an influence "
+                "line has --member, --along and --train); other sheets hold their own input"
             )
             raise InputError(message)
         filed, arguments.file = arguments.file, arguments.against
-        stated, check = _checked(arguments)
-        report = recheck_pdf(filed, _composed(arguments, stated, check))
+        report = recheck_pdf(filed, _written_again(arguments))
     _print("\n".join(report.lines()))
     return AGREED if report.matches else DISAGREED
 
 
+def _written_again(arguments: argparse.Namespace) -> Sheet:
+    """Return the sheet that a PDF should hold."""
+    if arguments.member:
+        return _influence_sheet(arguments, *_found_line(arguments))
+    if arguments.case:
+        return _composed(arguments, *_checked(arguments))
+    arguments.combinations = None
+    return _envelope_sheet(arguments, _found_envelope(arguments))
+
+
+# --- loads that move and combinations that vary -----------------------------------------------------------
+
+
 def _influence(arguments: argparse.Namespace) -> int:
-    from trusscalc.files import read  # noqa: PLC0415
-    from trusscalc.influence import UndecidedError, influence_line  # noqa: PLC0415
+    from trusscalc.display import refuse_unwritable, save  # noqa: PLC0415
+    from trusscalc.influence import UndecidedError  # noqa: PLC0415
     from trusscalc.loadreport import influence_data, influence_text, undecided_influence_data  # noqa: PLC0415
     from trusscalc.travel import extremes  # noqa: PLC0415
 
-    stated = read(arguments.file)
-    chain = stated.chain(arguments.along)
-    trains = stated.train(arguments.train) if arguments.train else ()
+    if arguments.out:
+        refuse_unwritable(arguments.out)
     try:
-        line = influence_line(stated.truss, arguments.member, chain)
+        stated, line, trains = _found_line(arguments)
     except UndecidedError as problem:
         reason = str(problem)
-        data = undecided_influence_data(problem.name, chain.joints, reason, arguments.train)
+        joints = _stated_chain(arguments).joints
+        data = undecided_influence_data(problem.name, joints, reason, arguments.train)
         _result(arguments, lambda: data, lambda: [reason])
         return DISAGREED
     found = extremes(line, trains) if trains else None
+    agreed = line.agreed
+    lines: list[str] = []
+    if arguments.out:
+        sheet = _influence_sheet(arguments, stated, line, trains)
+        agreed = sheet.origin.agreed
+        lines.append(_told_of(save(sheet, arguments.out, paper=arguments.paper), sheet))
     units = (stated.truss.force, stated.truss.length)
     _result(
         arguments,
         lambda: influence_data(line, arguments.train, found),
-        lambda: influence_text(line, units, arguments.train, found),
+        lambda: lines or influence_text(line, units, arguments.train, found),
     )
-    return AGREED if line.agreed else DISAGREED
+    return AGREED if agreed else DISAGREED
+
+
+def _stated_chain(arguments: argparse.Namespace) -> Chain:
+    from trusscalc.files import read  # noqa: PLC0415
+
+    return read(arguments.file).chain(arguments.along)
+
+
+def _found_line(arguments: argparse.Namespace) -> tuple[TrussFile, InfluenceLine, tuple[Train, ...]]:
+    from trusscalc.files import read  # noqa: PLC0415
+    from trusscalc.influence import influence_line  # noqa: PLC0415
+
+    stated = read(arguments.file)
+    chain = stated.chain(arguments.along)
+    trains = stated.train(arguments.train) if arguments.train else ()
+    return stated, influence_line(stated.truss, arguments.member, chain), trains
+
+
+def _influence_sheet(
+    arguments: argparse.Namespace, stated: TrussFile, line: InfluenceLine, trains: tuple[Train, ...]
+) -> Sheet:
+    from trusscalc.sheet.influencesheet import compose_influence  # noqa: PLC0415
+
+    text = _text_of(arguments.file)
+    return compose_influence(line, trains, None, stated.project, train=arguments.train, truss_text=text)
 
 
 def _envelope(arguments: argparse.Namespace) -> int:
+    from trusscalc.display import refuse_unwritable, save  # noqa: PLC0415
+    from trusscalc.loadreport import envelope_data, envelope_text  # noqa: PLC0415
+
+    if arguments.out:
+        refuse_unwritable(arguments.out)
+    found = _found_envelope(arguments)
+    agreed = found.agreed
+    lines: list[str] = []
+    if arguments.out:
+        sheet = _envelope_sheet(arguments, found)
+        agreed = sheet.origin.agreed
+        lines.append(_told_of(save(sheet, arguments.out, paper=arguments.paper), sheet))
+    _result(arguments, lambda: envelope_data(found), lambda: lines or envelope_text(found))
+    return AGREED if agreed else DISAGREED
+
+
+def _found_envelope(arguments: argparse.Namespace) -> Envelope:
     from dataclasses import replace  # noqa: PLC0415
 
     from trusscalc.combinationfiles import read_combinations  # noqa: PLC0415
     from trusscalc.envelopes import envelope  # noqa: PLC0415
     from trusscalc.files import read  # noqa: PLC0415
-    from trusscalc.loadreport import envelope_data, envelope_text  # noqa: PLC0415
 
     stated = read(arguments.file)
     if arguments.combinations:
         further = read_combinations(arguments.combinations)
         stated = replace(stated, combinations=(*stated.combinations, *further))
-    found = envelope(stated, _names(arguments.members))
-    _result(arguments, lambda: envelope_data(found), lambda: envelope_text(found))
-    return AGREED if found.agreed else DISAGREED
+    return envelope(stated, _names(arguments.members))
+
+
+def _envelope_sheet(arguments: argparse.Namespace, found: Envelope) -> Sheet:
+    """Return the sheet; with further combinations it echoes a truss file that holds them too."""
+    from trusscalc.governing import governing_checks  # noqa: PLC0415
+    from trusscalc.sheet.envelopesheet import compose_envelope  # noqa: PLC0415
+
+    text = "" if arguments.combinations else _text_of(arguments.file)
+    project = found.stated.project
+    return compose_envelope(found, governing_checks(found), project, truss_text=text, detail=arguments.detail)
+
+
+def _told_of(place: Path, sheet: Sheet) -> str:
+    told = "all agree" if sheet.origin.agreed else "not all agree: see its first lines"
+    return f"{place}: {told}"
 
 
 if __name__ == "__main__":

@@ -21,6 +21,8 @@ MOST_CASES: Final = 6
 """Load cases that have a column of their own in the table of combinations."""
 MOST_RIVALS: Final = 6
 """Combinations told for each member in the main part; the others stand in the appendix."""
+LONGEST_NAME: Final = 24
+"""Characters of a combination's name beyond which tables that compare many give its number."""
 OWN: Final = "the user's own"
 EXTREMES: Final[Mapping[Sense, str]] = {"max": "largest", "min": "least"}
 PAIRS: Final = (
@@ -86,14 +88,25 @@ def combination_blocks(found: Envelope) -> list[Block]:
         text = "No combinations are stated: every load case is looked at alone, with factor 1."
         return [Heading(2, "Combinations"), Paragraph((Run(text),))]
     names = list(dict.fromkeys(case for each in found.combinations for case, _ in each.factors))
-    blocks: list[Block] = [Heading(2, "Combinations"), combination_table(found.combinations, names)]
+    table = stated.published.table if stated.published else ""
+    blocks: list[Block] = [Heading(2, "Combinations"), combination_table(found.combinations, names, table)]
     if stated.published is not None:
         blocks += published_words(stated)
     return blocks
 
 
-def combination_table(combinations: Sequence[Combination], names: Sequence[str]) -> Table:
-    """Return the combinations: a column for each case while they are few, else all factors in one."""
+def combination_table(combinations: Sequence[Combination], names: Sequence[str], table: str = "") -> Table:
+    """Return the combinations: a column for each case while they are few, else all factors in one.
+
+    Parameters
+    ----------
+    combinations : sequence of Combination
+        In their order.
+    names : sequence of str
+        The cases.
+    table : str
+        The published table's name, which stands below.
+    """
     own = not any(each.source for each in combinations)
     few = len(names) <= MOST_CASES
     rows = []
@@ -103,11 +116,14 @@ def combination_table(combinations: Sequence[Combination], names: Sequence[str])
             cells: list[Inline | None] = [Run(factors[name]) if name in factors else None for name in names]
         else:
             cells = [Run("; ".join(f"{factor} {case}" for case, factor in factors.items()))]
-        rows.append((Run(f"({number})"), Run(each.name), *cells, Run(each.source or OWN)))
+        source = each.source.removeprefix(f"{table}, ") or OWN
+        rows.append((Run(f"({number})"), Run(each.name), *cells, Run(source)))
     heads = [Column(name, "right") for name in names] if few else [Column("factors")]
     caption = f"{PAIRS} All factors are the user's own." if own else PAIRS
-    table = Table((Column("no."), Column("combination"), *heads, Column("source")), tuple(rows), caption)
-    return without_columns(table, lambda place, _: own and table.columns[place].head == "source")
+    columns = (Column("no."), Column("combination"), *heads, Column("source"))
+    return without_columns(
+        Table(columns, tuple(rows), caption), lambda place, _: own and columns[place].head == "source"
+    )
 
 
 def _factors(combination: Combination, case: str, pair: Sequence[Exact]) -> str:
@@ -253,6 +269,13 @@ def rival_table(found: Envelope, names: Sequence[str], places: int, most: int | 
     most : int or None
         Combinations told for each member; None for all.
     """
+    numbers = {each.name: number for number, each in enumerate(found.combinations, 1)}
+    long = max(map(len, numbers)) > LONGEST_NAME
+
+    def cells(choice: Choice) -> Row:
+        name = f"({numbers[choice.combination]})" if long else choice.combination
+        return Run(name), Decimals(decimal_text(choice.value, places)), Run(sense(choice.value))
+
     rows: list[Row] = []
     for name in names:
         each = found.members[name]
@@ -262,7 +285,7 @@ def rival_table(found: Envelope, names: Sequence[str], places: int, most: int | 
                 break
             first = Run(bar(name)) if place == 0 else None
             word = Run("governs" if place == 0 else str(place + 1))
-            rows.append((first, word, *_of_combination(largest, places), *_of_combination(least, places)))
+            rows.append((first, word, *cells(largest), *cells(least)))
     force = found.stated.truss.force
     columns = (
         Column("member"),
@@ -276,16 +299,13 @@ def rival_table(found: Envelope, names: Sequence[str], places: int, most: int | 
     )
     count = counted(len(found.combinations), "combination")
     caption = f"Largest and least of each of {count}, tension positive, the nearest to the governing one first."
+    caption += " Numbers as under Combinations." if long else ""
     if most is not None and len(found.combinations) > most:
         caption += f" The first {most}; all stand in the appendix “{ALL_COMBINATIONS}”."
     return Table(columns, tuple(rows), caption)
 
 
 ALL_COMBINATIONS: Final = "All combinations"
-
-
-def _of_combination(choice: Choice, places: int) -> Row:
-    return Run(choice.combination), Decimals(decimal_text(choice.value, places)), Run(sense(choice.value))
 
 
 def reaction_table(found: Envelope, places: int) -> Table:

@@ -23,6 +23,7 @@ MOST_RULES: Final = 7
 """Columns of a table that shows joint by joint what each rule gives."""
 EXACT_PLACES: Final = 6
 """Decimal places up to which a sum is read without being rounded."""
+DIRECTION_PLACES: Final = 3
 MOST_LISTED: Final = 4
 """Panels in a row that are named one by one."""
 BY_STATICS: Final = "What is stated and the joint loads have the same sums and the same moment, exactly."
@@ -129,6 +130,8 @@ def _spread_table(stated: TrussFile, case: LoadCase, spreads: Sequence[Spread]) 
     if len(rows) < sum(len(spread.lines) for spread in spreads):
         caption += " Lines that differ in nothing but their place are told once."
     caption += " All act downwards." if down else ""
+    ways = {part for spread in spreads for line in spread.lines for part in line.direction}
+    caption += "" if all(ends_within(way, DIRECTION_PLACES) for way in ways) else " Directions to three decimals."
 
     def idle(place: int, cells: Sequence[Inline | None]) -> bool:
         return (down and columns[place].head == "acts along") or all(cell is None for cell in cells)
@@ -188,7 +191,7 @@ def _joint_tables(
     for axis, way in (("x", "to the right"), ("y", "upwards")):
         own = [(name, loads) for name, loads in sources if any(along(load, axis) for load in loads)]
         if own or any(along(load, axis) for load in case.loads):
-            columns = own if len(own) <= MOST_RULES else []
+            columns = own if 1 < len(own) <= MOST_RULES else []
             whole = f"together, {stated.truss.force}" if columns else f"F{axis}, {stated.truss.force}"
             caption = f"Joint loads of {case.name} in {axis}, positive {way}."
             blocks.append(by_joint(stated.truss, [*columns, (whole, case.loads)], axis, case, places, caption))
