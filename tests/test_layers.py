@@ -86,10 +86,11 @@ LAYERS = (
         "comparereport",
         "sheet",
         "render",
+        "verifying",
         "recheck",
         "widgets",
     ),
-    *("display", "__init__", "__main__"),
+    *("display", "__init__", "comparecommand", "__main__"),
 )
 AT_CALL_TIME = {("exact", "exacttext"), ("exact", "decimals"), ("exact", "roots")}
 """Upward all the same, inside a function: how a number shows itself to people."""

@@ -104,7 +104,7 @@ def our_forces(truss: Truss, cases: Sequence[LoadCase]) -> tuple[OurForces, ...]
     if faults:
         raise InputError(faults)
     at_values = truss.at_values()
-    loads = [_without_symbols(case, dict(truss.symbols)) for case in cases]
+    loads = [without_symbols(case, dict(truss.symbols)) for case in cases]
     equilibria = matrix.solve_all(at_values, loads)
     runs = stiffness.solve_all(at_values, loads)
     lengths = {bar.name: bar.length for equilibrium in equilibria[:1] for bar in equilibrium.bars}
@@ -117,7 +117,7 @@ def our_forces(truss: Truss, cases: Sequence[LoadCase]) -> tuple[OurForces, ...]
 
 def of_check(check: MemberCheck) -> OurForces:
     """Return the forces of a check that has been made: the members asked for, by hand, and all reactions."""
-    truss, case = check.truss.at_values(), _without_symbols(check.case, dict(check.truss.symbols))
+    truss, case = check.truss.at_values(), without_symbols(check.case, dict(check.truss.symbols))
     (ours,) = our_forces(check.truss, [check.case])
     checked = {**check.members, **check.reactions}
     exact = {name: check.value(item.exact) for name, item in checked.items() if item.exact is not None}
@@ -142,7 +142,7 @@ def of_check(check: MemberCheck) -> OurForces:
     )
 
 
-def _without_symbols(case: LoadCase, values: Mapping[str, Exact]) -> LoadCase:
+def without_symbols(case: LoadCase, values: Mapping[str, Exact]) -> LoadCase:
     """Return a case with the symbols of its loads and of the dimensions at their values."""
     if not case.symbols and not values:
         return case

@@ -235,6 +235,57 @@ Block = Heading | Paragraph | Items | Lines | Table | TitleBlock | Seal | Pictur
 
 
 @dataclass(frozen=True, slots=True)
+class SubmittedTable:
+    """A table of submitted results on a sheet, and how it was read and compared: enough to do it again.
+
+    Attributes
+    ----------
+    name : str
+        The file's name.
+    kind, content : str
+        The table as ``submitted.kept.kept`` writes it.
+    columns : tuple of (str, str)
+        Columns as named by the user: what they are, and their head or place.
+    renamed : tuple of (str, str) or None
+        Our joint or member to its name in the table; None for no map.
+    convention, unit, case, decimal : str
+        Options of ``read_submitted``.
+    others : tuple of str
+        Names of other structures.
+    theirs : str
+        What the table was said to call the case.
+    relative, absolute : str
+        The criterion as exact text.
+    blind : str
+        ``no``; else whether ours were frozen before the table was read, ``in order``, or after, ``read before``.
+    written_down : bool
+        Whether their digest had been written down.
+    frozen_members : tuple of str
+        In blind mode: the members that were checked, where not all were.
+    derived : tuple of str
+        Members derived on the sheet.
+    """
+
+    name: str
+    kind: Literal["text", "base64", "cells"]
+    content: str
+    columns: tuple[tuple[str, str], ...]
+    renamed: tuple[tuple[str, str], ...] | None
+    convention: str
+    unit: str
+    case: str
+    decimal: str
+    others: tuple[str, ...]
+    theirs: str
+    relative: str
+    absolute: str
+    blind: Literal["no", "in order", "read before"]
+    written_down: bool
+    frozen_members: tuple[str, ...]
+    derived: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True)
 class Origin:
     """What a sheet was derived from, enough to derive it again.
 
@@ -269,13 +320,15 @@ class Origin:
     graphics : bool
         Whether it has the appendix of graphic statics.
     task : str
-        What it is of: ``check``, ``envelope`` or ``influence``.
+        What it is of: ``check``, ``envelope``, ``influence`` or ``comparison``.
     target : str
         Of an influence line: the force.
     along : str
         Its chain, a name of the file or the joints.
     train : str
         The name of the train that stands on it, '' for none.
+    submitted : SubmittedTable or None
+        Of a comparison: the submitted table.
     """
 
     truss_text: str
@@ -292,10 +345,11 @@ class Origin:
     drawings: bool = True
     detail: Literal["members", "all", "summary"] = "members"
     graphics: bool = False
-    task: Literal["check", "envelope", "influence"] = field(default="check", metadata=ADDED)
+    task: Literal["check", "envelope", "influence", "comparison"] = field(default="check", metadata=ADDED)
     target: str = field(default="", metadata=ADDED)
     along: str = field(default="", metadata=ADDED)
     train: str = field(default="", metadata=ADDED)
+    submitted: SubmittedTable | None = field(default=None, metadata=ADDED)
 
 
 @dataclass(frozen=True, slots=True)

@@ -13,7 +13,7 @@ from typing import Any, Final
 
 from trusscalc.exact import Exact
 from trusscalc.exacttext import to_text
-from trusscalc.sheet.blocks import Origin, Sheet
+from trusscalc.sheet.blocks import Origin, Sheet, SubmittedTable
 
 FORMAT: Final = 1
 FINENESS: Final = 2
@@ -48,9 +48,36 @@ def _asked(origin: Origin) -> dict[str, Any]:
     if origin.task == "influence":
         asked = {"target": origin.target, "along": origin.along, "train": origin.train}
         return {"task": origin.task, **asked, "prefer": origin.prefer}
+    if origin.submitted is not None:
+        return {"task": origin.task, **_compared(origin, origin.submitted)}
     return {
         "case": origin.case,
         "members": list(origin.members),
+        "cuts": {name: list(kept) for name, kept in origin.cuts},
+        "prefer": origin.prefer,
+    }
+
+
+def _compared(origin: Origin, table: SubmittedTable) -> dict[str, Any]:
+    return {
+        "case": origin.case,
+        "members": list(origin.members),
+        "submitted": {"name": table.name, table.kind: table.content},
+        "reading": {
+            "columns": dict(table.columns),
+            "names": None if table.renamed is None else dict(table.renamed),
+            "convention": table.convention,
+            "unit": table.unit,
+            "case": table.case,
+            "decimal": table.decimal,
+            "others": list(table.others),
+        },
+        "theirs": table.theirs,
+        "criterion": {"relative": table.relative, "absolute": table.absolute},
+        "blind": table.blind,
+        "written_down": table.written_down,
+        "checked": list(table.frozen_members),
+        "derived": list(table.derived),
         "cuts": {name: list(kept) for name, kept in origin.cuts},
         "prefer": origin.prefer,
     }

@@ -34,6 +34,7 @@ LIMIT = (
     "both routes use the same geometry, supports and loads: an error there passes both. Compare the input with the "
     "drawings."
 )
+NOT_COVERED = "strength, buckling, connections, fatigue, bracing, foundations, deflection"
 NOT_DERIVED = (
     "none on this sheet: forces and verdicts are stated, and how they were derived is not shown. By itself it is no "
     "hand check that can be followed; a sheet with derivations comes from the same truss file"
@@ -331,7 +332,7 @@ def scope(check: MemberCheck, detail: Detail = "members") -> list[Block]:
             "Not checked",
             f"{counted(len(rest), 'member')}{told}; other load cases",
         ),
-        ("Not covered", "strength, buckling, connections, fatigue, bracing, foundations, deflection"),
+        ("Not covered", NOT_COVERED),
         *_derived(check, detail),
         ("Limit", LIMIT),
     ]
