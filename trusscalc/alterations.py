@@ -330,22 +330,40 @@ def displaced(joint: str, spot: Pair, words: str, *, strain: int, fitted: int = 
 
 
 def of_mirrors(what: Compared) -> Iterator[Alteration]:
-    """Yield the truss mirrored under its loads and supports, and where it is its own image, loads or supports alone."""
+    """Yield mirrored models: the truss alone, with its loads or its supports, and on joints that mirror each other."""
     places = {joint.name: (float(joint.x), float(joint.y)) for joint in what.truss.joints}
+    loads, held = what.case.as_floats(), {support.joint: directions(support) for support in what.truss.supports}
     for axis, way in enumerate(("left to right", "upside down")):
         level = [place[axis] for place in places.values()]
         middle = (min(level) + max(level)) / 2
         image = {joint: _mirrored(place, axis, middle) for joint, place in places.items()}
-        yield Alteration(
-            explanation="mirrored",
-            where=(),
-            words=f"the truss mirrored {way} under the same loads",
-            places=tuple((joint, *place) for joint, place in image.items()),
-            strain=3,
-        )
+        listed = tuple((joint, *place) for joint, place in image.items())
+        turned_loads = {joint: _mirrored(load, axis, 0.0) for joint, load in loads.items()}
+        turned = {joint: tuple(_mirrored(link, axis, 0.0) for link in links) for joint, links in held.items()}
+        change = _sum(turned_loads, _times(-1, loads))
+        yield _mirror(f"the truss mirrored {way} under the same loads", places=listed)
+        yield _mirror(f"the truss and its supports mirrored {way} under the same loads", change)
+        yield _mirror(f"the truss and its loads mirrored {way}, the directions of the supports not", {}, turned)
         partners = _partners(places, image)
         if partners:
-            yield from _loads_mirrored(what, partners, axis, way)
+            yield from _onto_partners(loads, held, partners, axis, way)
+
+
+def _mirror(
+    words: str,
+    loads: Mapping[str, Pair] | None = None,
+    supports: Mapping[str, tuple[Pair, ...]] | None = None,
+    places: tuple[tuple[str, float, float], ...] = (),
+) -> Alteration:
+    return Alteration(
+        explanation="mirrored",
+        where=(),
+        words=words,
+        loads=tuple((joint, fx, fy) for joint, (fx, fy) in (loads or {}).items() if fx or fy),
+        supports=tuple((supports or {}).items()),
+        places=places,
+        strain=3,
+    )
 
 
 def _mirrored(place: Pair, axis: int, middle: float) -> Pair:
@@ -365,29 +383,24 @@ def _partners(places: Mapping[str, Pair], image: Mapping[str, Pair]) -> dict[str
     return found
 
 
-def _loads_mirrored(what: Compared, partners: Mapping[str, str], axis: int, way: str) -> Iterator[Alteration]:
-    loads = what.case.as_floats()
+def _onto_partners(
+    loads: Mapping[str, Pair], held: Mapping[str, tuple[Pair, ...]], partners: Mapping[str, str], axis: int, way: str
+) -> Iterator[Alteration]:
+    """Yield loads and supports put on the joints that mirror theirs."""
 
     def turned(vector: Pair) -> Pair:
         return _mirrored(vector, axis, 0.0)
 
-    held = {support.joint: directions(support) for support in what.truss.supports}
-    everywhere = dict.fromkeys((*held, *(partners[joint] for joint in held)), ())
-    supports = tuple(
-        (everywhere | {partners[joint]: tuple(map(turned, links)) for joint, links in held.items()}).items()
-    )
+    everywhere: dict[str, tuple[Pair, ...]] = dict.fromkeys((*held, *(partners[joint] for joint in held)), ())
+    supports = everywhere | {partners[joint]: tuple(map(turned, links)) for joint, links in held.items()}
     away = _times(-1, loads)
     mirrored = _sum({partners[joint]: turned(load) for joint, load in loads.items()}, away)
     carried = _sum({partners[joint]: load for joint, load in loads.items()}, away)
-    for change, moved, words in (
-        (mirrored, supports, f"the values of the truss mirrored {way}: each member has its mirror partner's"),
-        (mirrored, (), f"the loads mirrored {way}"),
-        (carried, (), f"the loads put on the joints mirrored {way}"),
-        (carried, supports, f"the loads put on the joints mirrored {way}, the supports mirrored"),
-        ({}, supports, f"the supports mirrored {way}"),
-    ):
-        listed = tuple((joint, fx, fy) for joint, (fx, fy) in change.items() if fx or fy)
-        yield Alteration(explanation="mirrored", where=(), words=words, loads=listed, supports=moved, strain=3)
+    yield _mirror(f"the values of the truss mirrored {way}: each member has its partner's", mirrored, supports)
+    yield _mirror(f"the loads mirrored {way}", mirrored)
+    yield _mirror(f"the loads put on the joints mirrored {way}", carried)
+    yield _mirror(f"the loads put on the joints mirrored {way}, the supports mirrored", carried, supports)
+    yield _mirror(f"the supports mirrored {way}", {}, supports)
 
 
 # --- words ------------------------------------------------------------------------------------------------

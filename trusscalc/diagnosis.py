@@ -107,7 +107,8 @@ def explain(stated: TrussFile, case: str | LoadCase, printed: Printed) -> tuple[
     look = screening.screen(what, printed)
     if look is None:
         return (_unexplained(what, None, before),)
-    ratios = known_ratios(float(f) for each in stated.all_combinations for _, given in each.factors for f in given)
+    factors = [float(f) for each in stated.all_combinations for _, given in each.factors for f in given]
+    ratios = known_ratios(factors, what.truss.force, what.truss.length)
     trials = _single(what, printed, look, ratios)
     if not any(convincing(trial, before) for trial in trials):
         trials += _double(what, printed, look, ratios)
@@ -216,7 +217,9 @@ def _unexplained(what: Compared, look: Screen | None, before: Fit) -> Explanatio
     if look is not None:
         rows = screening.rows_off(look, look.forces)
         joints = fitting.implied_otherwise(look)
-        if len(rows) <= PAIR:
+        if not rows:
+            text += "; all member forces agree, reactions do not"
+        elif len(rows) <= PAIR:
             where = tuple(rows)
             text += f"; all values agree but {_listed(where)}"
         elif 0 < len(joints) <= MOST_TOLD:

@@ -7,6 +7,7 @@ and the second is looked for in the altered model.
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from dataclasses import replace
 from typing import Final
@@ -34,7 +35,8 @@ BEST_PAIRS: Final = 12
 FIRST_PLACES: Final = 10
 FIRST_OTHERS: Final = 14
 FIRST_LOADS: Final = 6
-"""How many of each kind are taken for the first of two."""
+"""How many of each kind are taken for the first of two, in a truss of up to ``USUAL`` joints; else fewer."""
+USUAL: Final = 60
 
 Pair = tuple[Alteration, Alteration]
 
@@ -95,9 +97,10 @@ def first_blunders(look: Screen, tried: Sequence[Alteration], forces: Floats) ->
     others = sorted(set(range(len(tried))) - set(places) - set(loads))
     astray = unbalanced_joints(look, [tried[place] for place in places])
     by_balance = sorted(range(len(places)), key=lambda n: (astray[n], apart[places[n]]))
-    found = [places[n] for n in by_balance[:FIRST_PLACES]]
-    found += sorted(others, key=lambda place: (tried[place].strain, apart[place]))[:FIRST_OTHERS]
-    found += sorted(loads, key=lambda place: apart[place])[:FIRST_LOADS]
+    part = min(1.0, USUAL / len(look.index))
+    found = [places[n] for n in by_balance[: math.ceil(part * FIRST_PLACES)]]
+    found += sorted(others, key=lambda place: (tried[place].strain, apart[place]))[: math.ceil(part * FIRST_OTHERS)]
+    found += sorted(loads, key=lambda place: apart[place])[: math.ceil(part * FIRST_LOADS)]
     return [tried[place] for place in found]
 
 

@@ -22,6 +22,8 @@ from trusscalc.screening import Flags, Floats, Screen
 
 SLENDERNESS: Final = (300.0, 150.0, 80.0, 40.0, 20.0, 10.0, 5.0)
 """Mean length of the members over the radius of gyration, as starts of the fit."""
+SLIMMEST, STOUTEST = 400.0, 2.0
+"""Beyond these no fitted radius is one of a member; a hinge, or rounding elsewhere, is the better explanation."""
 STEPS_APART: Final = (0.0, -1.2)
 """Logarithms of the ratios of several radii, as starts."""
 MOST_GROUPS: Final = 4
@@ -45,6 +47,9 @@ def of_stiff_joints(look: Screen, what: Compared) -> Iterator[Alteration]:
     model = frame(look.truss, what.case)
     for rule in _rules(look, what, model):
         radii = _radii(look, model, rule.patterns)
+        mean = float(model.lengths.mean())
+        if radii.min() < mean / SLIMMEST or radii.max() > mean / STOUTEST:
+            continue
         bending = (radii**2) @ rule.patterns
         listed = [(name, float(size)) for name, size in zip(look.members, bending.tolist(), strict=True) if size]
         told = [f"{plain(radius)} {what.truss.length}" for radius in radii.tolist()]
