@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import threading
 from collections.abc import Iterator
 from typing import Any
 
@@ -316,6 +317,33 @@ def test_the_page_is_sent_plain_data(screen: Any, trial: Exploration) -> None:
     screen.form.side.click()
     assert screen.drawing.state["turn"] > first
     assert screen.drawing.state["line"]["keptLeft"] is False
+
+
+def test_moves_of_several_threads_follow_one_another(screen: Any, trial: Exploration) -> None:
+    """A notebook may run callbacks beside its cells: of twelve joints kept at once none is lost."""
+    joints = [joint.name for joint in KHOO.truss.joints][:12]
+    threads = [threading.Thread(target=screen.received, args=({"event": "keep", "joint": joint},)) for joint in joints]
+    for thread in threads:
+        thread.start()
+    trial.members = ["b-c"]
+    for thread in threads:
+        thread.join()
+    assert set(trial.choices.kept) == set(joints)
+    assert trial.members == ("b-c",)
+    assert set(screen.drawing.state["kept"]) == set(joints)
+
+
+def test_of_lines_that_overtake_each_other_the_last_counts(screen: Any, trial: Exploration) -> None:
+    """Numbered by the view that sends them; other moves are never left out, nor are those of another view."""
+    later = {"event": "section", "points": [[10, -1], [7, 2], [10, 5]], "closed": False, "view": "v", "number": 2}
+    screen.received(later)
+    drawn = trial.cut
+    screen.received({**later, "points": [[10, -1], [10, 5]], "number": 1})
+    assert trial.cut == drawn
+    screen.received({"event": "member", "member": "a-b", "view": "v", "number": 1})
+    assert trial.members == ("a-b",)
+    screen.received({**later, "points": [[10, -1], [10, 5]], "view": "w", "number": 1})
+    assert trial.cut != drawn
 
 
 def test_a_page_loaded_again_says_that_the_form_on_file_is_old(screen: Any) -> None:

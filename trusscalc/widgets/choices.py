@@ -151,6 +151,11 @@ class Choices:
         names = members_named(truss, members, also=True)
         return replace(self, members=tuple(dict.fromkeys((*names, *dict(self.cuts)))))
 
+    def checking_only(self, truss: Truss, members: Iterable[str]) -> Choices:
+        """Return the choices with just these members to check; cuts kept for others go."""
+        names = members_named(truss, members, also=True)
+        return replace(self, members=names, cuts=tuple((name, kept) for name, kept in self.cuts if name in names))
+
     def with_member(self, truss: Truss, member: str) -> Choices:
         """Return the choices with a member added to those checked, or taken from them with its cut."""
         name = truss.member(member).name

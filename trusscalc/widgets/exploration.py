@@ -7,6 +7,7 @@ interruption leaves the state before it.
 
 from __future__ import annotations
 
+import threading
 from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import replace
 from typing import TYPE_CHECKING, Any, Literal
@@ -85,6 +86,7 @@ class Exploration:
         self._train_screen_of = train_screen_of
         self._work_screen_of = work_screen_of
         self.watchers: list[Callable[[], None]] = []
+        self.lock = threading.RLock()
         self._enveloped: Envelope | None = None
         self._screen: Any = None
         self._checks: dict[tuple[str, tuple[str, ...], Kept], MemberCheck] = {}
@@ -105,8 +107,16 @@ class Exploration:
 
     @choices.setter
     def choices(self, choices: Choices) -> None:
-        self._take(choices)
-        self._tell_watchers()
+        self.change(lambda _: choices)
+
+    def change(self, move: Callable[[Choices], Choices]) -> None:
+        """Make a move: from the present choices to others, with everything that follows from them.
+
+        A notebook may run its callbacks in another thread than its cells, so moves wait for each other here.
+        """
+        with self.lock:
+            self._take(move(self._present.choices))
+            self._tell_watchers()
 
     @property
     def present(self) -> Present:
@@ -142,7 +152,7 @@ class Exploration:
 
     @case.setter
     def case(self, name: str) -> None:
-        self.choices = self.choices.with_case(name)
+        self.change(lambda choices: choices.with_case(name))
 
     @property
     def members(self) -> tuple[str, ...]:
@@ -151,9 +161,8 @@ class Exploration:
 
     @members.setter
     def members(self, names: Iterable[str]) -> None:
-        asked = self.choices.checking(self.truss, names)
-        gone = [name for name, _ in self.choices.cuts if name not in self._named(names)]
-        self.choices = asked.without(gone)
+        names = tuple(names)
+        self.change(lambda choices: choices.checking_only(self.truss, names))
 
     @property
     def cut(self) -> OwnCut | None:
@@ -163,7 +172,7 @@ class Exploration:
     @cut.setter
     def cut(self, cut: OwnCut | Iterable[str] | None) -> None:
         joints = cut.kept if isinstance(cut, OwnCut) else (cut,) if isinstance(cut, str) else tuple(cut or ())
-        self.choices = self.choices.keeping(self.truss, joints)
+        self.change(lambda choices: choices.keeping(self.truss, joints))
 
     @property
     def section(self) -> tuple[Point, ...]:
@@ -181,7 +190,7 @@ class Exploration:
 
     @about.setter
     def about(self, about: About | None) -> None:
-        self.choices = self.choices.with_about(about)
+        self.change(lambda choices: choices.with_about(about))
 
     @property
     def centre(self) -> str | Point | None:
@@ -219,7 +228,7 @@ class Exploration:
 
     @detail.setter
     def detail(self, detail: str) -> None:
-        self.choices = self.choices.with_detail(detail)
+        self.change(lambda choices: choices.with_detail(detail))
 
     # --- moves --------------------------------------------------------------------------------------------
 
@@ -239,23 +248,24 @@ class Exploration:
             For points that are none, or too few or too many.
         """
         line = [_point(point) for point in points]
-        self.choices = self.choices.drawn(self.truss, line, closed=closed) if line else self.choices.cleared()
+        self.change(lambda now: now.drawn(self.truss, line, closed=closed) if line else now.cleared())
 
     def other_side(self) -> None:
         """Keep the other part (InputError when there is none)."""
-        self.choices = self.choices.other_side(self.truss)
+        self.change(lambda choices: choices.other_side(self.truss))
 
     def take_nearest(self) -> None:
         """Take the nearest cut that gives something (InputError when none was named)."""
-        nearest = self.answer.nearest if self.answer else ()
-        if not nearest:
-            message = "no nearer cut was named: the present one gives something, or there is none"
-            raise InputError(message)
-        self.cut = nearest
+        with self.lock:
+            nearest = self.answer.nearest if self.answer else ()
+            if not nearest:
+                message = "no nearer cut was named: the present one gives something, or there is none"
+                raise InputError(message)
+            self.cut = nearest
 
     def clear(self) -> None:
         """Give up the cut being tried; cuts kept stay."""
-        self.choices = self.choices.cleared()
+        self.change(Choices.cleared)
 
     def keep(self, *members: str) -> None:
         """Keep the present cut: derive members from it in the check.
@@ -272,20 +282,21 @@ class Exploration:
         NoCutError
             When it cannot give a member named.
         """
-        if self.answer is None:
-            message = "there is no cut to keep; draw one, or set .cut"
-            raise InputError(message)
-        found = [name for name in self.answer.solved if name in self.answer.members]
-        names = [self.truss.member(name).name for name in members] or found
-        if not names:
-            message = f"this cut gives no member force to keep: {self.answer.reason or 'it gives reactions only'}"
-            raise InputError(message)
-        self.choices = self.choices.keeping_cut(names)
+        with self.lock:
+            if self.answer is None:
+                message = "there is no cut to keep; draw one, or set .cut"
+                raise InputError(message)
+            found = [name for name in self.answer.solved if name in self.answer.members]
+            names = [self.truss.member(name).name for name in members] or found
+            if not names:
+                message = f"this cut gives no member force to keep: {self.answer.reason or 'it gives reactions only'}"
+                raise InputError(message)
+            self.change(lambda choices: choices.keeping_cut(names))
 
     def forget(self, *members: str) -> None:
         """Take members, and the cuts kept for them, out of the check; without names, all of them."""
-        names = [self.truss.member(name).name for name in members] or list(self.members)
-        self.choices = self.choices.without(names)
+        names = [self.truss.member(name).name for name in members]
+        self.change(lambda choices: choices.without(names or choices.members))
 
     # --- moving loads -------------------------------------------------------------------------------------
 
@@ -347,8 +358,9 @@ class Exploration:
         self._enveloped = found
 
     def _tell_watchers(self) -> None:
-        for watcher in self.watchers:
-            watcher()
+        with self.lock:
+            for watcher in self.watchers:
+                watcher()
 
     # --- on file ------------------------------------------------------------------------------------------
 
@@ -396,9 +408,6 @@ class Exploration:
 
     def _rest(self, joints: set[str]) -> set[str]:
         return {joint.name for joint in self.truss.joints} - joints
-
-    def _named(self, members: Iterable[str]) -> set[str]:
-        return {self.truss.member(name).name for name in members}
 
 
 class Unseen:

@@ -120,7 +120,8 @@ class Form:
 
     def set_through(self, members: tuple[str, ...]) -> None:
         """Choose the members cut."""
-        self.exploration.choices = self.exploration.choices.going_through(self.exploration.truss, members)
+        truss = self.exploration.truss
+        self.exploration.change(lambda choices: choices.going_through(truss, members))
 
     def set_line(self, text: str) -> None:
         """Draw the section whose points were typed."""

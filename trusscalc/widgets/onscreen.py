@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import secrets
 from collections.abc import Callable
+from contextlib import AbstractContextManager
 from typing import Any, Final
 
 import ipywidgets
@@ -12,6 +13,8 @@ from IPython.display import display, update_display
 from trusscalc.errors import TrusscalcError
 from trusscalc.render.notebook import Bundle
 
+REPLACING: Final = frozenset({"section", "place", "over"})
+"""Moves of which a later one takes the place of an earlier one."""
 LOADED_AGAIN: Final = " This page was loaded again: run the cell again to renew the form on file below."
 
 
@@ -27,10 +30,14 @@ class OnScreen:
         The view; it sends messages, and has a trait ``state``.
     frozen : callable
         Returns the static form of now.
+    lock : context manager
+        Held while a move is made and shown: callbacks may come in several threads.
     """
 
-    def __init__(self, drawing: Any, frozen: Callable[[], Bundle]) -> None:
+    def __init__(self, drawing: Any, frozen: Callable[[], Bundle], lock: AbstractContextManager[Any]) -> None:
         self.drawing = drawing
+        self.lock = lock
+        self.told: dict[str, int] = {}
         self.frozen = frozen
         self.problem = ""
         self.turn = 0
@@ -86,12 +93,13 @@ class OnScreen:
 
     def act(self, move: Callable[[], None]) -> None:
         """Make a move; what goes wrong is told in the drawing, and the state stays what it was."""
-        try:
-            move()
-        except TrusscalcError as problem:
-            self.tell(str(problem))
-        except Exception as problem:  # noqa: BLE001 - shown nowhere else in a notebook
-            self.tell(f"An error in this program ({type(problem).__name__}: {problem}). Nothing was changed.")
+        with self.lock:
+            try:
+                move()
+            except TrusscalcError as problem:
+                self.tell(str(problem))
+            except Exception as problem:  # noqa: BLE001 - shown nowhere else in a notebook
+                self.tell(f"An error in this program ({type(problem).__name__}: {problem}). Nothing was changed.")
 
     def tell(self, problem: str) -> None:
         """Show what went wrong beside the state as it is."""
@@ -105,11 +113,20 @@ class OnScreen:
 
     def received(self, content: Any) -> None:
         """Make the move that the page reports; the first word of a view is that it is there."""
-        if content == {"event": "shown"}:
+        if isinstance(content, dict) and content.get("event") == "shown":
             self.views += 1
             self.act(self.show if self.views > self.displays else self.show_now)
         else:
-            self.act(lambda: self.move(content))
+            self.act(lambda: None if self.is_late(content) else self.move(content))
+
+    def is_late(self, content: Any) -> bool:
+        """Return whether a place of line or train arrives after a later one of the same view; only the last counts."""
+        match content:
+            case {"event": str(event), "view": str(view), "number": int(number)}:
+                late = event in REPLACING and number < self.told.get(view, 0)
+                self.told[view] = max(number, self.told.get(view, 0))
+                return late
+        return False
 
 
 # --- controls ---------------------------------------------------------------------------------------------

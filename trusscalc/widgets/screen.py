@@ -27,7 +27,8 @@ class Screen(OnScreen):
 
     def __init__(self, exploration: Exploration) -> None:
         self.exploration = exploration
-        super().__init__(TrussDrawing(truss=truss_data(exploration.truss)), exploration.frozen)
+        drawing = TrussDrawing(truss=truss_data(exploration.truss))
+        super().__init__(drawing, exploration.frozen, exploration.lock)
         self.form = Form(exploration, self.act, self.changed)
         self.box.children = (self.drawing, self.form.box)
         exploration.watchers.append(self.show)
@@ -50,19 +51,18 @@ class Screen(OnScreen):
     def move(self, content: Any) -> None:
         """Make the move that the page reports, or raise InputError for a message that is none."""
         exploration, truss = self.exploration, self.exploration.truss
-        choices = exploration.choices
         match content:
             case {"event": "section", "points": list(points), "closed": bool(closed)}:
                 line = [(number(x), number(y)) for x, y in points]
-                exploration.choices = choices.drawn(truss, line, closed=closed)
+                exploration.change(lambda choices: choices.drawn(truss, line, closed=closed))
             case {"event": "member", "member": str(member)}:
-                exploration.choices = choices.with_member(truss, member)
+                exploration.change(lambda choices: choices.with_member(truss, member))
             case {"event": "through", "member": str(member)}:
-                exploration.choices = choices.with_member_cut(truss, member)
+                exploration.change(lambda choices: choices.with_member_cut(truss, member))
             case {"event": "keep", "joint": str(joint)}:
-                exploration.choices = choices.with_joint(truss, joint)
+                exploration.change(lambda choices: choices.with_joint(truss, joint))
             case {"event": "centre", "joint": str(joint)}:
-                exploration.choices = choices.about_joint(truss, joint)
+                exploration.change(lambda choices: choices.about_joint(truss, joint))
             case {"event": "side"}:
                 exploration.other_side()
             case {"event": "nearest"}:

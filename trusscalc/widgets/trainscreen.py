@@ -29,7 +29,8 @@ class TrainScreen(OnScreen):
 
     def __init__(self, travel: Travel) -> None:
         self.travel = travel
-        super().__init__(TrainDrawing(truss=truss_data(travel.line.truss), line=line_data(travel.line)), travel.frozen)
+        drawing = TrainDrawing(truss=truss_data(travel.line.truss), line=line_data(travel.line))
+        super().__init__(drawing, travel.frozen, travel.lock)
         self.train = self.control(
             ipywidgets.Dropdown, "Train", self.set_train, options=[train.name for train in travel.trains]
         )

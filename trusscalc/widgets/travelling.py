@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import threading
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from typing import Any, Final
@@ -77,6 +78,7 @@ class Travel:
         self.trains = tuple(trains)
         self.largest, self.least = extremes(line, self.trains)
         self.watchers: list[Callable[[], None]] = []
+        self.lock = threading.RLock()
         self._screen_of = screen_of
         self._screen: Any = None
         self._take(self._of(self.largest) or self._of(self.least) or _start(self.trains[0]))
@@ -90,9 +92,14 @@ class Travel:
 
     @place.setter
     def place(self, place: Place) -> None:
-        self._take(place)
-        for watcher in self.watchers:
-            watcher()
+        self.change(lambda _: place)
+
+    def change(self, move: Callable[[Place], Place]) -> None:
+        """Move the train: from the present place to another; moves wait for each other."""
+        with self.lock:
+            self._take(move(self._place))
+            for watcher in self.watchers:
+                watcher()
 
     @property
     def here(self) -> tuple[Extreme, Extreme]:
@@ -107,7 +114,8 @@ class Travel:
     @train.setter
     def train(self, name: str) -> None:
         chosen = self._named(name)
-        self.place = replace(self.place, train=chosen.name, spacing=tuple(low for low, _ in chosen.spacing))
+        spacing = tuple(low for low, _ in chosen.spacing)
+        self.change(lambda place: replace(place, train=chosen.name, spacing=spacing))
 
     @property
     def direction(self) -> Direction:
@@ -116,12 +124,11 @@ class Travel:
 
     @direction.setter
     def direction(self, direction: str) -> None:
-        for known in DIRECTIONS:
-            if direction == known:
-                self.place = replace(self.place, direction=known)
-                return
-        message = f"direction {direction!r}: choose forward or backward"
-        raise InputError(message)
+        if direction not in DIRECTIONS:
+            message = f"direction {direction!r}: choose forward or backward"
+            raise InputError(message)
+        way = DIRECTIONS[direction == "backward"]
+        self.change(lambda place: replace(place, direction=way))
 
     @property
     def lead_axle_at(self) -> Exact:
@@ -130,7 +137,8 @@ class Travel:
 
     @lead_axle_at.setter
     def lead_axle_at(self, position: object) -> None:
-        self.place = replace(self.place, lead_axle_at=number(position))
+        at = number(position)
+        self.change(lambda place: replace(place, lead_axle_at=at))
 
     @property
     def spacing(self) -> tuple[Exact, ...]:
@@ -139,7 +147,8 @@ class Travel:
 
     @spacing.setter
     def spacing(self, spacing: Sequence[object]) -> None:
-        self.place = replace(self.place, spacing=tuple(number(each) for each in spacing))
+        taken = tuple(number(each) for each in spacing)
+        self.change(lambda place: replace(place, spacing=taken))
 
     # --- moves --------------------------------------------------------------------------------------------
 

@@ -5,7 +5,7 @@ import { Elevation } from "./elevation.js";
 import { Layout } from "./layout.js";
 import { Roving } from "./roving.js";
 import { SectionLine } from "./section.js";
-import { html, make } from "./svg.js";
+import { html, make, viewName } from "./svg.js";
 
 const STARTS = 5;
 const QUIET = 250;
@@ -32,6 +32,8 @@ class Drawing {
     this.root = root;
     count += 1;
     this.id = `tc-${count}`;
+    this.view = viewName();
+    this.number = 0;
     root.classList.add("tc-drawing");
     html("p", { class: "tc-lost" }, root, LOST);
     this.problem = html("p", { class: "tc-problem", role: "alert" }, root);
@@ -136,7 +138,8 @@ class Drawing {
     this.root.classList.add("tc-waiting");
     clearTimeout(this.patience);
     this.patience = setTimeout(() => say(this.status, "Waiting for the answer from Python."), PATIENCE);
-    this.model.send({ event, ...content });
+    this.number += 1;
+    this.model.send({ event, view: this.view, number: this.number, ...content });
   }
 
   /** Tells of a line moved by keys once the keys are quiet. */

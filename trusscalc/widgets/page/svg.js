@@ -75,3 +75,8 @@ export function simplified(points, slack) {
   if (worst <= slack) return [first, last];
   return [...simplified(points.slice(0, place + 1), slack), ...simplified(points.slice(place), slack).slice(1)];
 }
+
+/** A name for a view, told with everything it sends, so that of its messages the last counts. */
+export function viewName() {
+  return `${Date.now().toString(36)}-${Math.random().toString(36).slice(2)}`;
+}

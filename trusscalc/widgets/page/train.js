@@ -2,7 +2,7 @@
 // once; every force that is told comes from Python.
 
 import { Layout } from "./layout.js";
-import { arrowhead, assign, html, listed, make, printed } from "./svg.js";
+import { arrowhead, assign, html, listed, make, printed, viewName } from "./svg.js";
 
 const LINE_HEIGHT = 150;
 const LINE_GAP = 46;
@@ -27,6 +27,8 @@ class TrainView {
     this.model = model;
     this.root = root;
     root.classList.add("tc-drawing", "tc-train");
+    this.view = viewName();
+    this.number = 0;
     html("p", { class: "tc-lost" }, root, CUT_OFF);
     this.problem = html("p", { class: "tc-problem", role: "alert" }, root);
     this.svg = make("svg", { role: "group", class: "tc-sheet" }, root);
@@ -228,7 +230,8 @@ class TrainView {
       this.root.classList.remove("tc-waiting");
       this.say(this.status, "Waiting for the answer from Python.");
     }, LATE);
-    this.model.send({ event, ...content });
+    this.number += 1;
+    this.model.send({ event, view: this.view, number: this.number, ...content });
   }
 
   /** Asks what a place gives; while an answer is awaited, only the last place is remembered. */
