@@ -19,6 +19,8 @@ from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
     from trusscalc import shapes
+    from trusscalc.compare import compare_submitted
+    from trusscalc.diagnosis import diagnose
     from trusscalc.envelopes import envelope
     from trusscalc.errors import TrusscalcError, TrusscalcWarning
     from trusscalc.files import read, reads, write
@@ -29,6 +31,7 @@ if TYPE_CHECKING:
     from trusscalc.project import Project
     from trusscalc.sheet.blocks import Sheet
     from trusscalc.statics.owncuts import OwnCut
+    from trusscalc.submitted import read_submitted
     from trusscalc.truss import Truss
     from trusscalc.trussfile import TrussFile
     from trusscalc.widgets import explore
@@ -48,11 +51,14 @@ _HOME = {
     "TrusscalcWarning": "errors",
     "check_members": "membercheck",
     "combine": "loads",
+    "compare_submitted": "compare",
+    "diagnose": "diagnosis",
     "envelope": "envelopes",
     "governing_checks": "governing",
     "influence_line": "influence",
     "explore": "widgets",
     "read": "files",
+    "read_submitted": "submitted",
     "reads": "files",
     "shapes": "",
     "write": "files",
@@ -71,11 +77,14 @@ __all__ = [
     "TrusscalcWarning",
     "check_members",
     "combine",
+    "compare_submitted",
+    "diagnose",
     "envelope",
+    "explore",
     "governing_checks",
     "influence_line",
-    "explore",
     "read",
+    "read_submitted",
     "reads",
     "shapes",
     "write",

@@ -14,6 +14,7 @@ from collections.abc import Callable, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, Literal
 
+from trusscalc.comparecommand import add_compare
 from trusscalc.errors import InputError, TrusscalcError, TrusscalcWarning
 
 if TYPE_CHECKING:
@@ -87,6 +88,7 @@ def _parser() -> argparse.ArgumentParser:
     recheck.add_argument("--train", default="", help="for a PDF of an influence line: the train on it")
     recheck.set_defaults(run=_recheck)
     _add_loads(commands)
+    add_compare(commands, _result, _tell)
     for command, needed in ((check, True), (sheet, True), (recheck, False)):
         command.add_argument("--case", required=needed, help="a load case or a combination")
         command.add_argument("--members", required=needed, help="A-B,C-D or all")

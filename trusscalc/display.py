@@ -7,10 +7,11 @@ that the records themselves need to know nothing of sheets and renderers.
 from __future__ import annotations
 
 import os
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from pathlib import Path
-from typing import Any, Final
+from typing import Any, Final, Literal
 
+from trusscalc.comparison import Comparison
 from trusscalc.envelopes import Envelope
 from trusscalc.errors import RenderError, UnstableTrussError
 from trusscalc.exact import Exact
@@ -42,6 +43,7 @@ from trusscalc.sheet.words import about_words, bar, listed
 from trusscalc.statics.cutreport import CutReport, cut_equation, cut_report
 from trusscalc.statics.cuts import Cut
 from trusscalc.statics.owncuts import OwnCut, own_cut
+from trusscalc.statics.prices import Preference
 from trusscalc.statics.steps import Equation, Step
 from trusscalc.trains import Train
 from trusscalc.travel import Extreme
@@ -192,6 +194,41 @@ def _influence_sheet(
     )
 
 
+def _comparison_sheet(
+    comparison: Comparison,
+    project: Project | None = None,
+    *,
+    derive: Iterable[str] | Literal["all", "differing"] = (),
+    cuts: Mapping[str, OwnCut] | None = None,
+    prefer: Preference = "",
+    truss_text: str = "",
+    places: int = 3,
+    drawings: bool = True,
+    verbatim: bool = False,
+) -> Sheet:
+    """Return the verification sheet of this comparison; see ``trusscalc.verifying.verification``."""
+    from trusscalc.verifying import verification  # noqa: PLC0415 - the diagnosis costs as much as all of this
+
+    return verification(
+        comparison,
+        project,
+        derive=derive,
+        cuts=cuts,
+        prefer=prefer,
+        truss_text=truss_text,
+        places=places,
+        drawings=drawings,
+        verbatim=verbatim,
+    )
+
+
+def _comparison_bundle(comparison: Comparison, **_: Any) -> Bundle:
+    """Return conclusion, table, joint loads drawn and the diagnosis as a notebook shows them."""
+    from trusscalc.verifying import short_blocks  # noqa: PLC0415
+
+    return bundle(short_blocks(comparison))
+
+
 def _envelope_bundle(found: Envelope, **_: Any) -> Bundle:
     """Return the table of extremes and their diagram as a notebook shows them."""
     figures = (*envelope_diagrams(found), envelope_elevation(found)) if found.members else ()
@@ -307,6 +344,7 @@ CONVENIENCES: Final[dict[type, dict[str, Any]]] = {
     Sheet: {"save": save, "_repr_mimebundle_": _sheet_bundle},
     MemberCheck: {"sheet": _sheet, "derivation": _derivation, "_repr_mimebundle_": _check_bundle},
     Envelope: {"sheet": _envelope_sheet, "_repr_mimebundle_": _envelope_bundle},
+    Comparison: {"sheet": _comparison_sheet, "_repr_mimebundle_": _comparison_bundle},
     InfluenceLine: {"sheet": _influence_sheet, "_repr_mimebundle_": _line_bundle},
     Derivation: {"_repr_mimebundle_": _derivation_bundle},
     Step: {"_repr_mimebundle_": _step_bundle},

@@ -2,18 +2,21 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Mapping, Sequence
 from typing import Literal
 
 from trusscalc.comparison import Comparison
 from trusscalc.diagnosis import diagnose
 from trusscalc.explanations import Explanation
 from trusscalc.loads import LoadCase
-from trusscalc.membercheck import MemberCheck, check_members, check_reactions
+from trusscalc.membercheck import check_members, check_reactions
 from trusscalc.ourforces import without_symbols
 from trusscalc.project import Project
-from trusscalc.sheet.blocks import Sheet
+from trusscalc.sheet.blocks import Block, Picture, Sheet
+from trusscalc.sheet.comparisonfront import Verification, summary
 from trusscalc.sheet.comparisonsheet import compose_comparison
+from trusscalc.sheet.diagnosisblocks import diagnosis
+from trusscalc.sheet.impliedfigure import implied_figure
 from trusscalc.sheet.sameinput import same_loads
 from trusscalc.statics.owncuts import OwnCut
 from trusscalc.statics.prices import Preference
@@ -28,7 +31,8 @@ def verification(
     comparison: Comparison,
     project: Project | None = None,
     *,
-    derive: Iterable[str] | Literal["differing"] = (),
+    explanations: Sequence[Explanation] | None = None,
+    derive: Iterable[str] | Literal["all", "differing"] = (),
     cuts: Mapping[str, OwnCut] | None = None,
     prefer: Preference = "",
     truss_text: str = "",
@@ -44,7 +48,9 @@ def verification(
         Submitted results beside ours.
     project : Project, optional
         The title block; without it, that of the truss file.
-    derive : iterable of str, or "differing"
+    explanations : sequence of Explanation, optional
+        What ``explained`` found before; without it, it is looked for.
+    derive : iterable of str, "all" or "differing"
         Members whose derivation by sections and joints is put on the sheet.
     cuts, prefer
         As for ``check_members``.
@@ -57,16 +63,18 @@ def verification(
         As ``check_members`` and ``compose_comparison``.
     """
     truss, case = comparison.stated.truss, _stated_case(comparison)
-    names = [name for name in comparison.differing if name in comparison.members] if derive == "differing" else derive
-    wanted = [names] if isinstance(names, str) else list(names)
-    check: MemberCheck
+    wanted = derive if derive in ("all", "differing") or not isinstance(derive, str) else [derive]
+    if wanted == "differing":
+        wanted = [name for name in comparison.differing if name in comparison.members]
+    elif wanted != "all":
+        wanted = list(wanted)
     if wanted or cuts:
         check = check_members(truss, case, wanted, cuts=cuts, prefer=prefer)
     else:
         check = check_reactions(truss, case, prefer=prefer)
     return compose_comparison(
         comparison,
-        explained(comparison),
+        explained(comparison) if explanations is None else explanations,
         check,
         project,
         truss_text=truss_text,
@@ -74,6 +82,14 @@ def verification(
         drawings=drawings,
         verbatim=verbatim,
     )
+
+
+def short_blocks(comparison: Comparison, places: int = 3) -> list[Block]:
+    """Return conclusion, table, joint loads drawn and the diagnosis: the sheet in short."""
+    check = check_reactions(comparison.stated.truss, _stated_case(comparison), own_checks=False)
+    found = Verification(comparison, explained(comparison), check)
+    blocks = [*summary(found, places), Picture((implied_figure(comparison),))]
+    return [*blocks, *diagnosis(comparison, found.explanations, own_faults=bool(found.own_faults))]
 
 
 def _stated_case(comparison: Comparison) -> LoadCase:

@@ -16,34 +16,18 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any, Final
 
-from trusscalc.envelopes import envelope
 from trusscalc.errors import FileFormatError, TrusscalcError, TrusscalcWarning
-from trusscalc.files import reads
 from trusscalc.filetext import one_line
-from trusscalc.governing import governing_checks
-from trusscalc.influence import influence_line
-from trusscalc.membercheck import check_members
-from trusscalc.project import Project
 from trusscalc.recheck import notebooks, pages
+from trusscalc.recheck.deriving import derive, must_be_known
 from trusscalc.recheck.differences import Difference
 from trusscalc.render.html import INPUT_ID, RECORD_ID, html
 from trusscalc.render.notebook import notebook
 from trusscalc.sheet.blocks import Sheet
-from trusscalc.sheet.compose import compose
-from trusscalc.sheet.digest import FORMAT, record_of
-from trusscalc.sheet.envelopesheet import compose_envelope
-from trusscalc.sheet.influencesheet import compose_influence
-from trusscalc.statics.owncuts import own_cut
-from trusscalc.trussfile import TrussFile
+from trusscalc.sheet.digest import record_of
 
 LARGEST_SHEET: Final = 100_000_000
 """Bytes of a filed sheet that are read."""
-ASKED: Final = {
-    "check": ("case", "members", "cuts", "prefer", "detail", "graphics"),
-    "envelope": ("members", "detail"),
-    "influence": ("target", "along", "train", "prefer"),
-}
-"""What the record of a sheet says of what was asked for; that of a check does not name its task."""
 PDF: Final = (
     "a PDF carries no input to derive it from again; give the truss file it was written from, with the same case and "
     "members (python -m trusscalc recheck sheet.pdf --against FILE.toml --case NAME --members A-B,C-D), or recheck "
@@ -248,7 +232,7 @@ class _Again:
         with warnings.catch_warnings(record=True) as caught:
             warnings.simplefilter("always", TrusscalcWarning)
             try:
-                _must_be_known(record)
+                must_be_known(record)
                 self.sheet = derive(record, truss_text)
             except TrusscalcError as problem:
                 self.problem = Difference("input", "a sheet", f"nothing, for this input cannot be right: {problem}")
@@ -260,106 +244,6 @@ class _Again:
         differences = (*([self.problem] if self.problem else []), *found)
         written_by = one_line(str(self.written_by)) or "an unnamed program"
         return RecheckReport(source, differences, dict(compared), written_by, record["program"], record["content"])
-
-
-def derive(record: Mapping[str, Any], truss_text: str) -> Sheet:
-    """Return the sheet of a record.
-
-    Parameters
-    ----------
-    record : mapping
-        As ``sheet.digest.record_of`` gives it.
-    truss_text : str
-        The truss file.
-
-    Raises
-    ------
-    TrusscalcError
-        When the record or the truss file states something that cannot be.
-    """
-    stated = reads(truss_text)
-    if record.get("task") == "envelope":
-        return _envelope(record, stated, truss_text)
-    if record.get("task") == "influence":
-        return _influence(record, stated, truss_text)
-    cuts = {member: own_cut(stated.truss, keep=kept) for member, kept in record["cuts"].items()}
-    case = stated.case(record["case"])
-    check = check_members(stated.truss, case, record["members"], cuts=cuts, prefer=record["prefer"])
-    project = Project(**record["project"], names=record["names"])
-    return compose(
-        check,
-        project,
-        truss_text=truss_text,
-        places=record["places"],
-        drawings=record["drawings"],
-        detail=record["detail"],
-        graphics=record["graphics"],
-    )
-
-
-def _envelope(record: Mapping[str, Any], stated: TrussFile, truss_text: str) -> Sheet:
-    found = envelope(stated, record["members"])
-    return compose_envelope(
-        found,
-        governing_checks(found),
-        Project(**record["project"], names=record["names"]),
-        truss_text=truss_text,
-        places=record["places"],
-        drawings=record["drawings"],
-        detail=record["detail"],
-    )
-
-
-def _influence(record: Mapping[str, Any], stated: TrussFile, truss_text: str) -> Sheet:
-    chain = stated.chain(record["along"])
-    return compose_influence(
-        influence_line(stated.truss, record["target"], chain, prefer=record["prefer"]),
-        stated.train(record["train"]) if record["train"] else (),
-        None,
-        Project(**record["project"], names=record["names"]),
-        train=record["train"],
-        truss_text=truss_text,
-        places=record["places"],
-        drawings=record["drawings"],
-    )
-
-
-def _must_be_known(record: Mapping[str, Any]) -> None:
-    """Raise a FileFormatError for a record that holds anything but what ``record_of`` puts there."""
-
-    def texts(items: Any) -> bool:
-        return isinstance(items, list) and all(isinstance(item, str) for item in items)
-
-    def entries(items: Any, fits: Callable[[Any], bool]) -> bool:
-        return isinstance(items, dict) and all(map(fits, items.values()))
-
-    def text(item: Any) -> bool:
-        return isinstance(item, str)
-
-    lines = {name for name in Project.__dataclass_fields__ if name != "names"}
-    right: dict[str, Callable[[Any], bool]] = {
-        "format": lambda item: type(item) is int and item == FORMAT,
-        "task": lambda item: text(item) and item in ASKED,
-        "case": text,
-        "members": lambda items: texts(items) and bool(items),
-        "cuts": lambda items: entries(items, texts),
-        "target": text,
-        "along": text,
-        "train": text,
-        "prefer": lambda item: item in ("", "sections", "joints"),
-        "places": lambda item: type(item) is int,
-        "drawings": lambda item: type(item) is bool,
-        "detail": lambda item: item in ("members", "all", "summary"),
-        "graphics": lambda item: type(item) is bool,
-        "project": lambda items: entries(items, text) and set(items) <= lines,
-        "names": lambda items: entries(items, text),
-    }
-    task = record.get("task", "check")
-    needed = {"format", "places", "drawings", "project", "names", *ASKED.get(task if text(task) else "", ())}
-    needed |= {"task"} if "task" in record else set()
-    wrong = [name for name in right if name in needed and (name not in record or not right[name](record[name]))]
-    if wrong:
-        raise FileFormatError([f"record, {name}: is not what this version writes there" for name in wrong])
 
 
 __all__ = ["Difference", "RecheckReport", "derive", "recheck", "recheck_pdf"]

@@ -10,12 +10,12 @@ from trusscalc.comparison import ComparedForce, Comparison
 from trusscalc.explanations import Explanation
 from trusscalc.membercheck import MemberCheck
 from trusscalc.project import Project
-from trusscalc.sheet.blocks import Block, Decimals, Heading, Inline, Items, Paragraph, Run, Seal
+from trusscalc.sheet.blocks import Block, Heading, Inline, Items, Paragraph, Run, Seal
 from trusscalc.sheet.comparisontables import difference_cell, force_table, given_text, ours_text
 from trusscalc.sheet.diagnosisblocks import clean
 from trusscalc.sheet.front import MOST_NAMED, NOT_COVERED, loads_words
 from trusscalc.sheet.values import decimal_text
-from trusscalc.sheet.words import bar, capital, counted, listed
+from trusscalc.sheet.words import bar, capital, counted, listed, number_word
 
 TITLE: Final = "Verification of submitted member forces"
 MOST_ROWS: Final = 12
@@ -171,7 +171,9 @@ def _counts(comparison: Comparison) -> list[str]:
         if differing:
             whole = counted(len(items), what)
             verb = "differs" if len(differing) == 1 else "differ"
-            told.append(f"{counted(len(differing), '', '').strip()} of {whole} {verb}")
+            told.append(
+                f"{number_word(len(differing))} of {whole} {verb}" if len(items) > 1 else f"the one {what} differs"
+            )
     if comparison.missing:
         count = len(comparison.missing)
         told.append(f"{counted(count, 'member')} {'is' if count == 1 else 'are'} missing from the table")
@@ -186,9 +188,9 @@ def _particulars(comparison: Comparison, places: int) -> list[str]:
     if differing:
         most = max(differing, key=lambda item: abs(item.difference or 0.0))
         apart = difference_cell(most, places)
-        size = apart.text.replace("-", "−") if isinstance(apart, Decimals) else "less than the last decimal"
+        size = f"{apart.text} {force}" if isinstance(apart, Run) else "less than the last decimal printed"
         values = f"submitted {_signed(given_text(most, places))}, ours {_signed(ours_text(comparison, most, places))}"
-        told.append(f"Largest difference: {bar(most.name)} by {size} {force} ({values}).")
+        told.append(f"Largest difference: {bar(most.name)} by {size} ({values}).")
     flipped = [bar(item.name) for item in differing if item.flipped]
     if flipped:
         told.append(f"Of reversed sense: {some(flipped)}.")
@@ -243,7 +245,7 @@ def _note(comparison: Comparison, shown: Sequence[str]) -> list[Block]:
     rest = len(comparison.members) - len(shown)
     if rest:
         urgent = [name for name, item in comparison.members.items() if item.verdict != "agrees"]
-        which = "that differ most or are missing" if urgent else "nearest to what is allowed"
+        which = "furthest from what is allowed, or missing" if urgent else "nearest to what is allowed"
         text += f" Shown: the members {which}; all {len(comparison.members)} stand under Members compared."
     return [Paragraph((Run(text),), "note")]
 

@@ -11,14 +11,17 @@ from trusscalc.comparereport import loaded
 from trusscalc.comparison import ComparedForce, Comparison, ImpliedLoad
 from trusscalc.decimals import rounded
 from trusscalc.exact import Exact, exact
+from trusscalc.loads import factor_text
 from trusscalc.sheet.blocks import Column, Decimals, Inline, Power, Run, Table
-from trusscalc.sheet.compact import is_blank, without_columns
+from trusscalc.sheet.compact import ends_within, is_blank, without_columns
 from trusscalc.sheet.values import decimal_text, float_text, in_a_row
 from trusscalc.sheet.words import bar, capital, counted
 
 MOST_PLACES: Final = 12
 SIGNIFICANT: Final = 2
 """Digits of what is allowed."""
+SOON: Final = 4
+"""Decimal places up to which a decimal is written as one."""
 BY_STIFFNESS: Final = "by stiffness"
 
 
@@ -131,7 +134,7 @@ def _forces(comparison: Comparison, items: Sequence[ComparedForce], columns: tup
         rows.append(
             (
                 Run(bar(item.name)),
-                Run(BY_STIFFNESS) if item.exact is None else in_a_row(item.exact),
+                Run(BY_STIFFNESS) if item.exact is None else _exact(item.exact),
                 Decimals(ours_text(comparison, item, places)),
                 Run(item.our_sense or ""),
                 Decimals(given) if given else None,
@@ -144,6 +147,11 @@ def _forces(comparison: Comparison, items: Sequence[ComparedForce], columns: tup
         if item.verdict != "agrees":
             strong.append(place)
     return Table(columns, tuple(rows), strong_rows=tuple(strong))
+
+
+def _exact(value: Exact) -> Inline:
+    """Return an exact value for a long table: a decimal that ends soon, else on one line."""
+    return Decimals(factor_text(value)) if ends_within(value, SOON) else in_a_row(value)
 
 
 def reading_table(comparison: Comparison, places: int) -> Table:

@@ -53,6 +53,7 @@ ONLY_MISSING: Final = "No value that is there differs, so no explanation was loo
 NOT_DIAGNOSED: Final = (
     "Not diagnosed: our own two routes do not agree with each other, so ours cannot be the measure of theirs."
 )
+_KIND: Final = re.compile("|".join(rf"\b{kind}\b(?= \()" for kind in KINDS if "-" in kind))
 _MINUS: Final = re.compile(r"(?<![^\s(])-(?=\d)")
 
 
@@ -124,8 +125,8 @@ def _fit(one: Explanation) -> str:
 
 
 def clean(one: Explanation, truss: Truss) -> str:
-    """Return an explanation's text as it is printed: true minus signs, members with their dash."""
-    text = _MINUS.sub("−", one.text)
+    """Return an explanation's text as it is printed: kinds in words, true minus signs, members with their dash."""
+    text = _KIND.sub(lambda found: KINDS[found[0]], _MINUS.sub("−", one.text))
     members = {member.name for member in truss.members}
     for name in {*one.where, *(one.second[1] if one.second else ())} & members:
         text = text.replace(name, bar(name))

@@ -23,7 +23,7 @@ from trusscalc.sheet.compact import without_columns
 from trusscalc.sheet.derivation import RESULT_COLUMNS, Writer, sense, tension_of
 from trusscalc.sheet.detail import Detail, shown
 from trusscalc.sheet.values import DIGITS, bound, decimal_text, difference, is_readable, printed, scientific
-from trusscalc.sheet.words import bar, capital, counted, listed
+from trusscalc.sheet.words import bar, capital, counted, listed, number_word
 from trusscalc.truss import Truss
 
 TITLE = "Independent check of truss member forces"
@@ -208,7 +208,7 @@ def _one_verdict(check: MemberCheck, what: str, verdict: str, names: list[str], 
     count = capital(counted(len(names), what))
     whole = f" of {counted(len(items), what)}" if len(items) > 1 else ""
     if whole:
-        count = capital(counted(len(names), "", "").strip())
+        count = capital(number_word(len(names)))
         whole = f" of {counted(len(items), what)}"
     return f"{count}{whole} {verb[verdict]}: {listed(details)}."
 

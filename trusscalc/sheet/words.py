@@ -30,8 +30,12 @@ def bar(name: str) -> str:
 
 def counted(count: int, one: str, several: str = "") -> str:
     """Return ``one member``, ``two members``, ``12 members``."""
-    word = NUMBERS[count] if count < len(NUMBERS) else str(count)
-    return f"{word} {one if count == 1 else several or one + 's'}"
+    return f"{number_word(count)} {one if count == 1 else several or one + 's'}"
+
+
+def number_word(count: int) -> str:
+    """Return ``one``, ``two``, ``12``."""
+    return NUMBERS[count] if count < len(NUMBERS) else str(count)
 
 
 def listed(items: Iterable[str]) -> str:
