@@ -96,7 +96,7 @@ def _row(
     verdict = states.verdict(each.member, which) or SUPERPOSED
     first = which == "max"
     return (
-        Run(bar(each.member)) if first else None,
+        Run(bar(each.member)),
         Run("yes") if first and each.reversal else None,
         Run(extreme_words(each, which)),
         told(choice.value, NO_CASE),
@@ -126,12 +126,16 @@ def _conclusion(states: States, places: int) -> list[Inline]:
         which = "the member below" if len(found.asked) == 1 else f"{counted(len(good), 'member')} below"
         which = f"the {which}" if len(good) == len(found.asked) > 1 else which
         text = f"The largest and the least force of {which} are found by superposition of exact case forces. "
-        if states.checks:
-            count = counted(len(states.checks), "governing state")
+        sound = [check for check in states.checks if check.agreed]
+        if sound:
+            count = counted(len(sound), "governing state")
+            several = len(sound) > 1
+            if len(sound) < len(states.checks):
+                count = f"the {counted(len(sound), 'other governing state')}"
             text += (
-                f"{capital(count)} {'is' if len(states.checks) == 1 else 'are'} derived by sections and joints: the "
-                "hand checks give the same values exactly, and agree with a separate stiffness solution of the whole "
-                "truss. "
+                f"{capital(count)} {'are' if several else 'is'} derived by sections and joints: the hand "
+                f"check{'s' if several else ''} {'give' if several else 'gives'} the same values exactly, and "
+                f"{'agree' if several else 'agrees'} with a separate stiffness solution of the whole truss. "
             )
         content.append(Run(text))
         content.append(Run(_largest(states, good, places)))

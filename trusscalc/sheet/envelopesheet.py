@@ -130,7 +130,7 @@ def compose_envelope(
         *combination_blocks(found),
         *_trains(found),
         *main,
-        *_cross_check(states, numbered),
+        *_cross_check(states, numbered, places),
         *record.cautions(CAUTIONS),
         *record.revisions(project),
         *_further_parts(states, numbered, shown, places, drawings=drawings),
@@ -207,7 +207,6 @@ def _main_parts(
     for name in shown.members:
         each = found.members[name]
         blocks += [superposition_table(found, each, which, places) for which in each.senses]
-    blocks.append(reaction_table(found, places))
     if detail == "summary":
         return blocks
     parts = moving_parts(states, shown.members, places, drawings=drawings)
@@ -245,7 +244,7 @@ def _further_parts(
     return blocks
 
 
-def _cross_check(states: States, numbered: Sequence[MemberCheck]) -> list[Block]:
+def _cross_check(states: States, numbered: Sequence[MemberCheck], places: int) -> list[Block]:
     """Return what the independent route says, case by case and state by state."""
     found = states.found
     items: list[tuple[str, tuple[Inline, ...]]] = []
@@ -274,7 +273,7 @@ def _cross_check(states: States, numbered: Sequence[MemberCheck]) -> list[Block]
     if len(rest) > MOST_NAMED:
         items.append(("Members not checked", (Run(listed(map(bar, rest))),)))
     items.append(("Independence", (Run(record.INDEPENDENCE),)))
-    return [Heading(2, "Cross-check"), Items(tuple(items))]
+    return [Heading(2, "Cross-check"), reaction_table(found, places), Items(tuple(items))]
 
 
 def _joints(numbered: Sequence[MemberCheck]) -> str:

@@ -25,10 +25,8 @@ LONGEST_NAME: Final = 24
 """Characters of a combination's name beyond which tables that compare many give its number."""
 OWN: Final = "the user's own"
 EXTREMES: Final[Mapping[Sense, str]] = {"max": "largest", "min": "least"}
-PAIRS: Final = (
-    "Of two factors each member takes the adverse one, in either sense; a case in brackets is tried absent too; a load "
-    "that moves stays away where it helps."
-)
+PAIR: Final = "Of two factors each member takes the adverse one, in either sense."
+ABSENT: Final = "A case in brackets is tried absent too."
 NO_CASE: Final = LoadCase("", {})
 
 Row = tuple[Inline | None, ...]
@@ -119,7 +117,9 @@ def combination_table(combinations: Sequence[Combination], names: Sequence[str],
         source = each.source.removeprefix(f"{table}, ") or OWN
         rows.append((Run(f"({number})"), Run(each.name), *cells, Run(source)))
     heads = [Column(name, "right") for name in names] if few else [Column("factors")]
-    caption = f"{PAIRS} All factors are the user's own." if own else PAIRS
+    pairs = [PAIR] if any(len(pair) > 1 for each in combinations for _, pair in each.factors) else []
+    absent = [ABSENT] if any(each.optional for each in combinations) else []
+    caption = " ".join([*pairs, *absent, *(["All factors are the user's own."] if own else [])])
     columns = (Column("no."), Column("combination"), *heads, Column("source"))
     return without_columns(
         Table(columns, tuple(rows), caption), lambda place, _: own and columns[place].head == "source"
@@ -156,28 +156,21 @@ def case_force_table(found: Envelope, names: Sequence[str], places: int) -> Tabl
     rows: list[Row] = []
     strong = []
     for name in names:
-        first: Inline | None = Run(bar(name))
+        first = Run(bar(name))
         for case in found.cases.values():
             value, numeric = case.exact[name], Decimals(float_text(case.numeric[name], places, case.bound))
             wrong = name in case.differing
             strong += [len(rows)] if wrong else []
             rows.append((first, Run(case.name), *_force(value, places), numeric, Run("differs" if wrong else "agrees")))
-            first = None
         for moving in found.moving.values():
             for word, extreme in zip(("largest", "least"), moving.extremes[name], strict=True):
+                if not extreme.value:
+                    continue
                 wrong = name in moving.differing
                 strong += [len(rows)] if wrong else []
                 cells = _force(extreme.value, places)
-                rows.append(
-                    (
-                        first,
-                        Run(f"{moving.name}, {word}"),
-                        *cells,
-                        None,
-                        Run("line differs" if wrong else "line agrees"),
-                    )
-                )
-                first = None
+                verdict = Run("line differs" if wrong else "line agrees")
+                rows.append((first, Run(f"{moving.name}, {word}"), *cells, None, verdict))
     columns = (
         Column("member"),
         Column("case"),
@@ -189,7 +182,7 @@ def case_force_table(found: Envelope, names: Sequence[str], places: int) -> Tabl
     )
     caption = f"Forces in {found.stated.truss.force} under each case with factor 1, from the equilibrium of all joints."
     if found.moving:
-        caption += " Of a load that moves: its influence line by both routes, see below."
+        caption += " Of a load that moves, where it is adverse: its influence line by both routes, see below."
     return Table(columns, tuple(rows), caption, tuple(strong))
 
 
@@ -283,7 +276,7 @@ def rival_table(found: Envelope, names: Sequence[str], places: int, most: int | 
         for place, (largest, least) in enumerate(zip(*sides, strict=True)):
             if most is not None and place >= most:
                 break
-            first = Run(bar(name)) if place == 0 else None
+            first = Run(bar(name))
             word = Run("governs" if place == 0 else str(place + 1))
             rows.append((first, word, *cells(largest), *cells(least)))
     force = found.stated.truss.force

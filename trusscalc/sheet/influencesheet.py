@@ -41,7 +41,7 @@ from trusscalc.sheet.inputecho import input_echo
 from trusscalc.sheet.marks import Figure
 from trusscalc.sheet.numbering import numbered_through
 from trusscalc.sheet.sameinput import same_truss
-from trusscalc.sheet.traintables import RULES, effect_table, share_table, sources, train_table
+from trusscalc.sheet.traintables import RULES, effect_table, rules, share_table, train_table
 from trusscalc.sheet.values import decimal_text, formula, in_a_row
 from trusscalc.sheet.words import bar, counted, listed
 from trusscalc.statics.cuts import SUM_Y
@@ -280,9 +280,9 @@ def _with_train(
     truss = study.line.truss
     blocks: list[Block] = [
         Heading(2, f"{study.name} on the line"),
+        *([Items(tuple(told))] if (told := rules(stated, study.trains)) else []),
         train_table(study.trains, truss.force, truss.length),
         Paragraph((Run(RULES),), "note"),
-        *sources(stated, study.trains),
     ]
     idle = [influencefront.extreme_sentence(study, extreme, places) for extreme in study.extremes if not extreme.value]
     blocks += [Paragraph((Run(sentence),)) for sentence in idle]

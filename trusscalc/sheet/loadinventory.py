@@ -11,7 +11,7 @@ from trusscalc.loads import JointLoad, LoadCase, factor_text
 from trusscalc.panelloads import HALVED, SHARED, Spread
 from trusscalc.panelshares import FIXED_DIRECTIONS, SpreadLine, Sums, moved, total
 from trusscalc.sheet.blocks import Block, Column, Decimals, Heading, Inline, Items, Paragraph, Picture, Run, Table
-from trusscalc.sheet.compact import ends_within, without_columns
+from trusscalc.sheet.compact import ends_within, together, without_columns
 from trusscalc.sheet.inscriptions import arm
 from trusscalc.sheet.loadfigure import load_figure, rule_words
 from trusscalc.sheet.values import decimal_text, in_table
@@ -58,7 +58,8 @@ def load_inventory(stated: TrussFile, used: Iterable[str], places: int, *, drawi
         if case.name in chosen:
             own = [each for each in spreads if each.rule.case == case.name]
             blocks += _of_case(stated, case, own, places, drawings=drawings)
-    return blocks
+    remarks = [remark for remark in (SHARED, HALVED) if any(spread.note.startswith(remark) for spread in spreads)]
+    return [*blocks, *([Paragraph((Run(" ".join(remarks)),), "note")] if remarks else [])]
 
 
 def _of_case(
@@ -73,7 +74,7 @@ def _of_case(
         words = [f"{capital(rule_words(spread, stated.truss))}.", *_factors(spread, stated.truss)]
         items.append((f"({number})", (Run(" ".join(words)),)))
     blocks += [Items(tuple(items))] if items else []
-    blocks += _spread_table(stated, case, spreads) if spreads else []
+    blocks += [_spread_table(stated, case, spreads)] if spreads else []
     blocks += [Picture((load_figure(stated.truss, case, spreads),))] if drawings else []
     blocks += _joint_tables(stated, case, spreads, at_joints, places)
     return [*blocks, *(_totals(stated, case, spreads, at_joints) if spreads else [])]
@@ -102,7 +103,7 @@ def _unit(text: str) -> str:
 # --- what stands where ------------------------------------------------------------------------------------
 
 
-def _spread_table(stated: TrussFile, case: LoadCase, spreads: Sequence[Spread]) -> list[Block]:
+def _spread_table(stated: TrussFile, case: LoadCase, spreads: Sequence[Spread]) -> Table:
     """Return what stands on each panel or member with its shares, lines of equal numbers together."""
     truss = stated.truss
     rows: list[Row] = []
@@ -136,9 +137,7 @@ def _spread_table(stated: TrussFile, case: LoadCase, spreads: Sequence[Spread]) 
     def idle(place: int, cells: Sequence[Inline | None]) -> bool:
         return (down and columns[place].head == "acts along") or all(cell is None for cell in cells)
 
-    table = without_columns(Table(columns, tuple(rows), caption), idle)
-    remarks = [remark for remark in (SHARED, HALVED) if any(spread.note.startswith(remark) for spread in spreads)]
-    return [table, *([Paragraph((Run(" ".join(remarks)),), "note")] if remarks else [])]
+    return without_columns(Table(columns, tuple(rows), caption), idle)
 
 
 def _numbers(line: SpreadLine) -> object:
@@ -239,7 +238,8 @@ def by_joint(  # noqa: PLR0917 - a table's parts in their order
     heads = (Column("joint"), *(Column(head, "right") for head, _ in columns))
     if not exact:
         caption += " Each decimal is rounded once, from its exact value."
-    return Table(heads, tuple(rows), caption, totals=1)
+    *each, total_row = rows
+    return Table(heads, (*together(each), total_row), caption, totals=1)
 
 
 def _amount(amount: Exact, case: LoadCase, places: int, *, exact: bool) -> Inline | None:

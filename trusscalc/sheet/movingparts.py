@@ -2,17 +2,23 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
+from functools import partial
 
 from trusscalc.envelopes import MemberEnvelope, MovingForces, Sense
 from trusscalc.sheet.blocks import Block, Heading, Paragraph, Picture, Run
 from trusscalc.sheet.envelopetables import States, extreme_words
 from trusscalc.sheet.influencefigure import influence_figure
+from trusscalc.sheet.marks import Figure
 from trusscalc.sheet.traintables import effect_table, ordinate_table
 from trusscalc.sheet.words import bar
 from trusscalc.standing import train_of
 from trusscalc.travel import Extreme
 
+WIDTH = 140.0
+"""Of a line's figure, mm, so that two stand on one sheet."""
+TOGETHER = 3
+"""Members up to which all tables come first, then all figures."""
 WITHOUT_STEPS = (
     "Ordinates from the equilibrium of all joints under a unit load at each in turn, exact, and beside them by the "
     "stiffness route. The steps of a single line are written out on a sheet of its own."
@@ -34,13 +40,18 @@ def moving_parts(states: States, members: Sequence[str], places: int, *, drawing
         Whether lines are drawn.
     """
     blocks: list[Block] = []
+    pictures: list[Block] = []
     for name in members:
         each = states.found.members[name]
         for moving in states.found.moving.values():
             wanted = [which for which in each.senses if _stand(each, which, moving.name) is not None]
             if wanted:
-                blocks += _of_member(states, each, moving, wanted, places, drawings=drawings)
-    return [Paragraph((Run(WITHOUT_STEPS),), "note"), *blocks] if blocks else []
+                tables, figures = _of_member(states, each, moving, wanted, places)
+                blocks += tables
+                pictures += [Picture((figure(),)) for figure in figures] if drawings else []
+                if len(members) > TOGETHER:
+                    blocks, pictures = [*blocks, *pictures], []
+    return [Paragraph((Run(WITHOUT_STEPS),), "note"), *blocks, *pictures] if blocks else []
 
 
 def _stand(each: MemberEnvelope, which: Sense, case: str) -> Extreme | None:
@@ -50,20 +61,16 @@ def _stand(each: MemberEnvelope, which: Sense, case: str) -> Extreme | None:
 
 
 def _of_member(
-    states: States,
-    each: MemberEnvelope,
-    moving: MovingForces,
-    wanted: Sequence[Sense],
-    places: int,
-    *,
-    drawings: bool,
-) -> list[Block]:
+    states: States, each: MemberEnvelope, moving: MovingForces, wanted: Sequence[Sense], places: int
+) -> tuple[list[Block], list[Callable[[], Figure]]]:
+    """Return the tables of one member, and what draws its line with each train."""
     line = moving.lines[each.member]
     load = next(load for load in states.found.stated.moving if load.name == moving.name)
     blocks: list[Block] = [
         Heading(3, f"{bar(each.member)} under {moving.name}"),
         ordinate_table(line, places),
     ]
+    figures: list[Callable[[], Figure]] = []
     for which in wanted:
         extreme = _stand(each, which, moving.name)
         train = train_of(extreme, load.trains) if extreme is not None else None
@@ -71,5 +78,5 @@ def _of_member(
             continue
         what = f"{bar(each.member)}, {extreme_words(each, which)}"
         blocks.append(effect_table(line, extreme, train, places, what))
-        blocks += [Picture((influence_figure(line, extreme, train),))] if drawings else []
-    return blocks
+        figures.append(partial(influence_figure, line, extreme, train, width=WIDTH))
+    return blocks, figures

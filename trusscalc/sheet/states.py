@@ -59,8 +59,8 @@ def state_blocks(
         Heading(2, heading(states, number)),
         Paragraph((Run(words(found, check.choice)),)),
         *joint_loads(states, number, numbered.case, places),
-        *record.balance(writer),
         *derivations(writer, steps, drawings=drawings, each_drawn=each_drawn, headed=False),
+        *record.balance(writer),
         _equal(states, number, places),
     ]
 
@@ -69,7 +69,7 @@ def state_writer(states: States, number: int, numbered: MemberCheck, places: int
     """Return the writer of a state's steps: loads on the whole truss by case, decimals for long fractions."""
     cases = factored_cases(states.found.stated, states.checks[number - 1].choice)
     by_case = tuple((f"{factor_text(factor)} {name}", loads) for name, factor, loads in cases)
-    return replace(writer_of(numbered, places, brief=True, by_case=by_case), sums="the sums above")
+    return replace(writer_of(numbered, places, brief=True, by_case=by_case), sums="the sums at the end of this state")
 
 
 def heading(states: States, number: int) -> str:
@@ -89,7 +89,7 @@ def words(found: Envelope, choice: Choice) -> str:
         train = train_of(extreme, loads[case].trains)
         if train is not None:
             line = next(iter(found.moving[case].lines.values()))
-            text += f" {case} is {train.name}{stand_words(line, extreme, train)}."
+            text += f" As {case} acts {train.name}{stand_words(line, extreme, train)}."
     return text
 
 

@@ -26,11 +26,11 @@ MOST_AXLES: Final = 5
 MORE_PLACES: Final = 3
 """Decimal places of ordinates and areas beyond those of forces, so that products come out right."""
 RULES: Final = (
-    "A train travels in both directions. Axles off the chain count nothing; an axle between joints is shared to them "
-    "as by a simple beam. Impact is on the axles alone, the share on everything. Lane load stands on adverse lengths "
-    "only. Positions are exact: an axle stands over a corner of the influence line."
+    "Trains travel in both directions. Axles off the chain count nothing; one between joints is shared to them as by a "
+    "simple beam. Impact is on the axles alone, the share on everything, lane load on adverse lengths only."
 )
 NO_CASE: Final = LoadCase("", {})
+RAISED: Final = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
 BACKTICKS: Final = re.compile("`([^`]*)`")
 
 Row = tuple[Inline | None, ...]
@@ -44,22 +44,18 @@ def moving_loads(stated: TrussFile, loads: Sequence[MovingLoad]) -> list[Block]:
     if not loads:
         return []
     truss = stated.truss
-    paths = tuple(
+    trains = tuple(dict.fromkeys(train for load in loads for train in load.trains))
+    paths = [
         (
-            Run(load.name),
-            Run(model_of(stated, load.trains)),
-            Run(load.along.name),
-            Run(f"{', '.join(load.along.joints)}"),
+            load.name,
+            (Run(f"{model_of(stated, load.trains)} on the chain {load.along.name}: {', '.join(load.along.joints)}"),),
         )
         for load in loads
-    )
-    columns = (Column("moving load"), Column("train"), Column("chain"), Column("joints, in the direction forward"))
-    trains = tuple(dict.fromkeys(train for load in loads for train in load.trains))
+    ]
     return [
-        Table(columns, paths),
+        Items((*paths, *rules(stated, trains))),
         train_table(trains, truss.force, truss.length),
         Paragraph((Run(RULES),), "note"),
-        *sources(stated, trains),
     ]
 
 
@@ -113,19 +109,10 @@ def _of_train(train: Train, force: str, length: str) -> Row:
     )
 
 
-def sources(stated: TrussFile, trains: Sequence[Train]) -> list[Block]:
-    """Return where the trains are from: edition, how well it is known, rule of application; or the user's own."""
+def rules(stated: TrussFile, trains: Sequence[Train]) -> list[tuple[str, tuple[Inline, ...]]]:
+    """Return how load models of the file are applied; where trains are from stands under Basis."""
     models = [each for each in stated.trains if isinstance(each, LoadModel) and set(each.trains) & set(trains)]
-    items: list[tuple[str, tuple[Inline, ...]]] = [
-        (each.name, (Run(f"{each.source}. {_quoted(each.rule)}"),)) for each in models
-    ]
-    of_models = {train for model in models for train in model.trains}
-    own: dict[str, list[str]] = {}
-    for train in trains:
-        if train not in of_models:
-            own.setdefault(train.source or "the user's own", []).append(train.name)
-    items += [(listed(names), (Run(source),)) for source, names in own.items()]
-    return [Items(tuple(items))]
+    return [(each.name, (Run(_quoted(each.rule)),)) for each in models if each.rule]
 
 
 def _quoted(rule: str) -> str:
@@ -177,8 +164,8 @@ def ordinate_words(line: InfluenceLine, places: int) -> str:
 
 
 def bound_words(tolerance: float) -> str:
-    """Return a tolerance in running text."""
-    return f"10^{bound(tolerance).exponent}".replace("-", "−")
+    """Return a tolerance in running text: the power of ten not above it."""
+    return "10" + str(bound(tolerance).exponent).translate(RAISED)
 
 
 def verdict(reason: str) -> str:
@@ -321,9 +308,9 @@ __all__ = [
     "model_of",
     "moving_loads",
     "ordinate_table",
+    "rules",
     "share_columns",
     "share_table",
-    "sources",
     "stand_words",
     "train_table",
 ]

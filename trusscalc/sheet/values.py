@@ -81,7 +81,9 @@ def told(value: Exact, case: LoadCase) -> Number | Formula:
 
 
 def in_a_row(value: Exact) -> Run | Formula | Number:
-    """Return a result's exact value for a table of many rows: its fraction written with a solidus, as in captions."""
+    """Return a result's exact value for a table of many rows: a short decimal, or a fraction with a solidus."""
+    if value.is_rational and (value.as_fraction() * 10**BRIEF_PLACES).denominator == 1:
+        return Run(factor_text(value).replace("-", "−"))
     return Run(exact_text(value)) if is_readable(value) else told(value, LoadCase("", {}))
 
 
