@@ -7,12 +7,13 @@ import math
 import pytest
 import trade_trusses as trade
 
-from trusscalc.alterations import compared, neighbours, of_loads, of_mirrors, of_places, of_supports, plain
+from trusscalc.alterations import compared, neighbours, of_loads, of_places, of_supports, plain
 from trusscalc.altered import Alteration, altered, in_turn, tabulated
 from trusscalc.errors import InputError
 from trusscalc.exact import rational
 from trusscalc.fits import ALLOWED, APART, PRINTED, SHARP, Printed, fit, reactions_by_name
 from trusscalc.loads import Combination, LoadCase
+from trusscalc.mirrors import of_mirrors
 from trusscalc.ratios import known_ratios
 from trusscalc.slips import slips
 from trusscalc.truss import Truss

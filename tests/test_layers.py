@@ -76,6 +76,7 @@ LAYERS = (
         "ratios",
         "altered",
         "alterations",
+        "mirrors",
         "screening",
         "fitting",
         "stiffjoints",

@@ -83,10 +83,10 @@ def compared(stated: TrussFile, case: str | LoadCase) -> Compared:
     factors = {loads.name: 1.0} if combination is None else {each: float(f[0]) for each, f in combination.factors}
     parts: dict[str, Part] = {}
     if all(part in by_name for part in factors):
-        parts = {part: _case(part, _times(factor, by_name[part])) for part, factor in factors.items()}
+        parts = {part: _case(part, times(factor, by_name[part])) for part, factor in factors.items()}
     total: dict[str, Pair] = {}
     for part in parts.values():
-        total = _sum(total, part.loads)
+        total = added_up(total, part.loads)
     rules = tuple(_rules(stated, factors, parts))
     if not _equal(total, loads.as_floats()):
         parts, rules = {loads.name: _case(loads.name, loads.as_floats())}, ()
@@ -99,7 +99,7 @@ def _case(name: str, loads: Mapping[str, Pair]) -> Part:
 
 
 def _equal(one: Mapping[str, Pair], other: Mapping[str, Pair]) -> bool:
-    apart = [abs(part) for pair in _sum(one, _times(-1, other)).values() for part in pair]
+    apart = [abs(part) for pair in added_up(one, times(-1, other)).values() for part in pair]
     return max(apart, default=0.0) <= SAME * max((abs(part) for pair in other.values() for part in pair), default=0.0)
 
 
@@ -110,13 +110,14 @@ def _rules(stated: TrussFile, factors: Mapping[str, float], parts: Mapping[str, 
         case = spread.rule.case
         if case in parts:
             loads = LoadCase(case, spread.loads, symbols=symbols[case]).as_floats()
-            loads = _times(factors[case], loads)
+            loads = times(factors[case], loads)
             if loads != parts[case].loads:
                 kind = RULES[type(spread.rule).__name__]
                 yield Part((case, kind), f"the {kind} in the case {case}", loads)
 
 
-def _times(factor: float, loads: Mapping[str, Pair]) -> dict[str, Pair]:
+def times(factor: float, loads: Mapping[str, Pair]) -> dict[str, Pair]:
+    """Return joint loads multiplied."""
     return {joint: (factor * fx, factor * fy) for joint, (fx, fy) in loads.items()}
 
 
@@ -158,11 +159,11 @@ def of_cases(what: Compared) -> Iterator[Alteration]:
     """Yield cases and rules left out or taken twice, and other load states in place of the one compared."""
     for part in (*what.parts, *what.rules):
         strain = 1 if part in what.parts else 2
-        yield _added("case-missing", part.where, f"{part.words} left out", _times(-1, part.loads), strain)
+        yield _added("case-missing", part.where, f"{part.words} left out", times(-1, part.loads), strain)
         yield _added("case-doubled", part.where, f"{part.words} taken twice", part.loads, strain)
     now = what.case.as_floats()
     for other in what.others:
-        change = _sum(other.loads, _times(-1, now))
+        change = added_up(other.loads, times(-1, now))
         yield _added("wrong-combination", other.where, f"the results of {other.words}", change, 1)
     present = {part.where for part in what.parts}
     for other in what.others:
@@ -200,7 +201,7 @@ def _of_components(joint: str, load: Pair, named: str, strain: int) -> Iterator[
     fx, fy = load
     if fx and fy:
         for part, axis in (((fx, 0.0), "x"), ((0.0, fy), "y")):
-            less, twice = _times(-1, {joint: part}), _times(-2, {joint: part})
+            less, twice = times(-1, {joint: part}), times(-2, {joint: part})
             yield _added("load-missing", (joint,), f"the {axis} part of {named} left out", less, strain)
             yield _added("load-doubled", (joint,), f"the {axis} part of {named} taken twice", {joint: part}, strain)
             yield _added("load-reversed", (joint,), f"the {axis} part of {named} reversed", twice, strain)
@@ -211,7 +212,8 @@ def _added(explanation: str, where: tuple[str, ...], words: str, loads: Mapping[
     return Alteration(explanation=explanation, where=where, words=words, loads=listed, strain=strain)
 
 
-def _sum(one: Mapping[str, Pair], other: Mapping[str, Pair]) -> dict[str, Pair]:
+def added_up(one: Mapping[str, Pair], other: Mapping[str, Pair]) -> dict[str, Pair]:
+    """Return two sets of joint loads as one."""
     total = dict(one)
     for joint, (fx, fy) in other.items():
         x, y = total.get(joint, (0.0, 0.0))
@@ -327,80 +329,6 @@ def displaced(joint: str, spot: Pair, words: str, *, strain: int, fitted: int = 
         strain=strain,
         fitted=fitted,
     )
-
-
-def of_mirrors(what: Compared) -> Iterator[Alteration]:
-    """Yield mirrored models: the truss alone, with its loads or its supports, and on joints that mirror each other."""
-    places = {joint.name: (float(joint.x), float(joint.y)) for joint in what.truss.joints}
-    loads, held = what.case.as_floats(), {support.joint: directions(support) for support in what.truss.supports}
-    for axis, way in enumerate(("left to right", "upside down")):
-        level = [place[axis] for place in places.values()]
-        middle = (min(level) + max(level)) / 2
-        image = {joint: _mirrored(place, axis, middle) for joint, place in places.items()}
-        listed = tuple((joint, *place) for joint, place in image.items())
-        turned_loads = {joint: _mirrored(load, axis, 0.0) for joint, load in loads.items()}
-        turned = {joint: tuple(_mirrored(link, axis, 0.0) for link in links) for joint, links in held.items()}
-        change = _sum(turned_loads, _times(-1, loads))
-        yield _mirror(f"the truss mirrored {way} under the same loads", places=listed)
-        yield _mirror(f"the truss and its supports mirrored {way} under the same loads", change)
-        yield _mirror(f"the truss and its loads mirrored {way}, the directions of the supports not", {}, turned)
-        partners = _partners(places, image)
-        if partners:
-            yield from _onto_partners(loads, held, partners, axis, way)
-
-
-def _mirror(
-    words: str,
-    loads: Mapping[str, Pair] | None = None,
-    supports: Mapping[str, tuple[Pair, ...]] | None = None,
-    places: tuple[tuple[str, float, float], ...] = (),
-) -> Alteration:
-    return Alteration(
-        explanation="mirrored",
-        where=(),
-        words=words,
-        loads=tuple((joint, fx, fy) for joint, (fx, fy) in (loads or {}).items() if fx or fy),
-        supports=tuple((supports or {}).items()),
-        places=places,
-        strain=3,
-    )
-
-
-def _mirrored(place: Pair, axis: int, middle: float) -> Pair:
-    x, y = place
-    return (2 * middle - x, y) if axis == 0 else (x, 2 * middle - y)
-
-
-def _partners(places: Mapping[str, Pair], image: Mapping[str, Pair]) -> dict[str, str]:
-    """Return the joint that stands where each joint is mirrored to; nothing if one has no partner."""
-    size = max(math.dist(one, next(iter(places.values()))) for one in places.values())
-    found = {}
-    for joint, spot in image.items():
-        partner = min(places, key=lambda name: math.dist(places[name], spot))
-        if math.dist(places[partner], spot) > SAME * size:
-            return {}
-        found[joint] = partner
-    return found
-
-
-def _onto_partners(
-    loads: Mapping[str, Pair], held: Mapping[str, tuple[Pair, ...]], partners: Mapping[str, str], axis: int, way: str
-) -> Iterator[Alteration]:
-    """Yield loads and supports put on the joints that mirror theirs."""
-
-    def turned(vector: Pair) -> Pair:
-        return _mirrored(vector, axis, 0.0)
-
-    everywhere: dict[str, tuple[Pair, ...]] = dict.fromkeys((*held, *(partners[joint] for joint in held)), ())
-    supports = everywhere | {partners[joint]: tuple(map(turned, links)) for joint, links in held.items()}
-    away = _times(-1, loads)
-    mirrored = _sum({partners[joint]: turned(load) for joint, load in loads.items()}, away)
-    carried = _sum({partners[joint]: load for joint, load in loads.items()}, away)
-    yield _mirror(f"the values of the truss mirrored {way}: each member has its partner's", mirrored, supports)
-    yield _mirror(f"the loads mirrored {way}", mirrored)
-    yield _mirror(f"the loads put on the joints mirrored {way}", carried)
-    yield _mirror(f"the loads put on the joints mirrored {way}, the supports mirrored", carried, supports)
-    yield _mirror(f"the supports mirrored {way}", {}, supports)
 
 
 # --- words ------------------------------------------------------------------------------------------------

@@ -18,6 +18,7 @@ from trusscalc.errors import InputError
 from trusscalc.explanations import Explanation, Trial, convincing, explanations
 from trusscalc.fits import ALLOWED, APART, SHARP, Fit, Printed, fit, reactions_by_name
 from trusscalc.loads import LoadCase
+from trusscalc.mirrors import of_mirrors
 from trusscalc.ratios import known_ratios
 from trusscalc.screening import MOST_EXCHANGED, PAIR, Screen
 from trusscalc.trussfile import TrussFile
@@ -110,7 +111,7 @@ def explain(stated: TrussFile, case: str | LoadCase, printed: Printed) -> tuple[
     factors = [float(f) for each in stated.all_combinations for _, given in each.factors for f in given]
     ratios = known_ratios(factors, what.truss.force, what.truss.length)
     trials = _single(what, printed, look, ratios)
-    if not any(convincing(trial, before) for trial in trials):
+    if not any(trial.fit.closeness <= ALLOWED and convincing(trial, before) for trial in trials):
         trials += _double(what, printed, look, ratios)
     return explanations(trials, before, _unexplained(what, look, before))
 
@@ -152,7 +153,7 @@ def plain_blunders(what: Compared, printed: Printed) -> list[Alteration]:
         *alterations.of_cases(what),
         *alterations.of_loads(what),
         *alterations.of_supports(what.truss),
-        *alterations.of_mirrors(what),
+        *of_mirrors(what),
         *alterations.of_members(gone),
         *alterations.of_places(what.truss),
     ]
