@@ -545,6 +545,22 @@ def test_hostile_names_survive_every_renderer(tmp_path: Path) -> None:
     assert "<b>" not in page
 
 
+def test_two_moving_loads_in_one_combination() -> None:
+    """Each where it is adverse; the table of joint loads then has their sums alone."""
+    second = '[moving.crowd]\ntrain = "sweeper"\nalong = "deck"\n[combinations.heavy]\ncrowd = "0.5"\n'
+    sheet = sheet_of(FOOTWAY.replace("[combinations.heavy]\n", second), ["U1-L2"])
+    (table,) = [t for t in tables(part(sheet, "Governing state 1")) if t.columns[0].head == "joint"]
+    assert [column.head for column in table.columns] == ["joint", "1.35 dead", "0.5 crowd", "1.5 live", "together, kN"]
+    assert sheet.origin.agreed
+
+
+def test_a_load_that_is_nowhere_adverse_stays_away() -> None:
+    """The least force of a lower chord: no position of the train presses it."""
+    found = found_in(FOOTWAY, ["L1-L2"])
+    assert found.members["L1-L2"].min.value == number("0.9*90")
+    assert "no position of its axles adverse" in text(sheet_of(FOOTWAY.replace("line = 10", "line = -10"), ["L1-L2"]))
+
+
 def test_the_record_says_what_was_asked_for() -> None:
     """Task and members; that of a check stays without a task."""
     record = record_of(sheet_of(FOOTWAY, ["U1-U2"]))

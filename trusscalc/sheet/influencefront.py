@@ -111,9 +111,7 @@ def extreme_sentence(study: Study, extreme: Extreme, places: int) -> str:
     """Return what the trains cause at most in one sense, and where they stand."""
     line = study.line
     if not extreme.value:
-        return (
-            f"{study.name}: no position is adverse in {'one' if line.kind != 'member' else 'the other'} sense, value 0."
-        )
+        return f"With {study.name} in the other sense no position is adverse, value 0."
     train = next(train for train in study.trains if train.name == extreme.train)
     size = decimal_text(extreme.value, places).replace("-", "−")
     where = f"{train.name}{stand_words(line, extreme, train)}"
