@@ -12,20 +12,22 @@ from trusscalc.membercheck import MemberCheck
 from trusscalc.project import Project
 from trusscalc.sheet.blocks import Block, Heading, Inline, Items, Paragraph, Run, Seal
 from trusscalc.sheet.comparisontables import difference_cell, force_table, given_text, ours_text
-from trusscalc.sheet.diagnosisblocks import clean
+from trusscalc.sheet.diagnosisblocks import clean, with_dashes
 from trusscalc.sheet.front import MOST_NAMED, NOT_COVERED, loads_words
-from trusscalc.sheet.values import decimal_text
+from trusscalc.sheet.inscriptions import amount
 from trusscalc.sheet.words import bar, capital, counted, listed, number_word
 
 TITLE: Final = "Verification of submitted member forces"
 MOST_ROWS: Final = 12
 """Members in the table of the first sheet; all of them stand further back."""
+FEW: Final = ("the one", "both")
 MOST_TOLD: Final = 6
 """Names in a sentence of the conclusion."""
 LIMIT: Final = (
     "agreement shows that both analyses carried the same loads over the same geometry and supports. An error that both "
     "share passes; compare the input with the drawings"
 )
+OTHERS: Final = "the other forces are exact solutions of the equilibrium of all joints"
 NO_DERIVATION: Final = (
     "none on this sheet: ours are exact solutions of the equilibrium of all joints, and how a force follows by "
     "sections and joints is not shown"
@@ -86,7 +88,7 @@ def opening(found: Verification, project: Project) -> list[Block]:
 def _symbol_values(check: MemberCheck) -> list[Block]:
     used = {name for load in check.case.loads for part in (load.fx, load.fy) for name in part.symbols}
     used |= {name for name, _ in check.truss.symbols}
-    told = [f"{name} = {decimal_text(value, 6)}" for name, value in check.case.symbols if name in used]
+    told = [f"{name} = {amount(value)}" for name, value in check.case.symbols if name in used]
     return [Paragraph((Run(f"Everything is compared at {listed(told)}."),))] if told else []
 
 
@@ -146,7 +148,7 @@ def _own(found: Verification) -> list[str]:
     faults = found.own_faults
     if not faults:
         return []
-    told = "; ".join(bar(fault) if ":" not in fault else fault for fault in faults[:MOST_TOLD])
+    told = "; ".join(with_dashes(fault, found.comparison.truss) for fault in faults[:MOST_TOLD])
     more = f"; and {len(faults) - MOST_TOLD} more" if len(faults) > MOST_TOLD else ""
     return [f"Our own two routes do not agree: {told}{more}. Until that is settled this sheet verifies nothing."]
 
@@ -156,11 +158,14 @@ def _agreeing(comparison: Comparison) -> str:
     if comparison.reactions:
         text += f" and {counted(len(comparison.reactions), 'reaction')}"
     several = len(comparison.members) + len(comparison.reactions) > 1
-    return f"{text} of the submitted table {'are' if several else 'is'} within the criterion of ours, and in sense."
+    text += f" of the submitted table {'are' if several else 'is'} within the criterion of ours, and of the same sense."
+    return f"{text} Ours agree with our own second route."
 
 
 def _which(count: int, what: str) -> str:
-    return f"the one {what}" if count == 1 else f"all {counted(count, what)}"
+    if count <= len(FEW):
+        return f"{FEW[count - 1]} {what}{'s' * (count > 1)}"
+    return f"all {counted(count, what)}"
 
 
 def _counts(comparison: Comparison) -> list[str]:
@@ -286,9 +291,7 @@ def _not_compared(comparison: Comparison, there: Sequence[str]) -> str:
 
 
 def _derived(found: Verification) -> str:
-    if not found.check.members:
-        return NO_DERIVATION
-    return (
-        f"of {listed(map(bar, found.check.members))}, by sections and joints; the other forces are exact solutions of "
-        "the equilibrium of all joints"
-    )
+    derived = [name for name, item in found.check.members.items() if item.exact is not None]
+    left = [name for name in found.check.members if name not in derived]
+    told = f"of {listed(map(bar, derived))}, by sections and joints; {OTHERS}" if derived else NO_DERIVATION
+    return f"{told}. Not decided by statics, so not derived: {listed(map(bar, left))}" if left else told

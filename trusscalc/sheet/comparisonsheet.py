@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import replace
 from typing import Final
 
-from trusscalc.comparison import Comparison
+from trusscalc.comparison import ComparedForce, Comparison
 from trusscalc.errors import InputError
 from trusscalc.exacttext import to_text
 from trusscalc.explanations import Explanation
@@ -37,7 +37,7 @@ from trusscalc.sheet.comparisontables import (
 )
 from trusscalc.sheet.compose import derivations, proven_options, read_again
 from trusscalc.sheet.derivation import writer_of
-from trusscalc.sheet.diagnosisblocks import diagnosis
+from trusscalc.sheet.diagnosisblocks import diagnosis, with_dashes
 from trusscalc.sheet.impliedfigure import implied_figure
 from trusscalc.sheet.inputecho import input_echo
 from trusscalc.sheet.sameinput import differences, same_loads
@@ -65,6 +65,10 @@ ONE_CASE: Final = (
     "This sheet compares axial forces of one load case with those of an ideal truss. It says nothing about the "
     "strength, stability, connections, fatigue or serviceability of any member, nor about anything else in the "
     "submitted analysis."
+)
+NOT_DECIDED: Final = (
+    "statics alone does not decide them; ours are from the stiffness route with the same EA in all members. Other "
+    "areas give other forces there, so that a difference need be no error"
 )
 CAUTIONS: Final = (ONE_CASE, *record.CAUTIONS[1:])
 
@@ -179,7 +183,8 @@ def _submitted(comparison: Comparison, places: int) -> list[Block]:
     ]
     items += [("How it was read", capital(note)) for note in table.notes[:1]]
     items += [("", capital(note)) for note in table.notes[1:]]
-    items += [("Noted" if place == 0 else "", capital(note)) for place, note in enumerate(comparison.notes)]
+    noted = [with_dashes(note, comparison.truss) for note in comparison.notes]
+    items += [("Noted" if place == 0 else "", capital(note)) for place, note in enumerate(noted)]
     if comparison.order:
         items += [("Blind", capital(comparison.order)), ("Digest of ours", f"SHA-256 {comparison.frozen}")]
     criterion = comparison.criterion.text(comparison.largest, comparison.truss.force)
@@ -199,15 +204,21 @@ def _members(comparison: Comparison, places: int) -> list[Block]:
         items.append(("Missing from the table", (Run(listed(map(bar, comparison.missing)), "strong"),)))
     if beyond:
         items.append(("Given, not asked for", (Run(listed(map(bar, beyond))),)))
-    items += [(bar(name), (Run(item.note),)) for name, item in comparison.members.items() if item.note]
+    items += _by_stiffness(comparison.members)
     blocks += [Items(tuple(items))] if items else []
     if comparison.reactions:
         blocks += [Heading(2, "Reactions compared"), reaction_table(comparison, places)]
-        notes = [(bar(name), (Run(item.note),)) for name, item in comparison.reactions.items() if item.note]
-        blocks += [Items(tuple(notes))] if notes else []
+        items = _by_stiffness(comparison.reactions)
+        blocks += [Items(tuple(items))] if items else []
     if comparison.displacements:
         blocks += [Heading(2, "Displacements compared"), displacement_table(comparison)]
     return blocks
+
+
+def _by_stiffness(items: Mapping[str, ComparedForce]) -> list[tuple[str, tuple[Inline, ...]]]:
+    """Return which of ours are not exact, and what a difference there need not be."""
+    names = [bar(name) for name, item in items.items() if item.exact is None]
+    return [("By stiffness", (Run(f"{listed(names)}: {NOT_DECIDED}"),))] if names else []
 
 
 def _joints(comparison: Comparison, places: int) -> list[Block]:
@@ -324,8 +335,8 @@ def _table(found: Verification) -> SubmittedTable:
         name=comparison.submitted.source,
         kind=kind,
         content=content,
-        columns=tuple((role, str(column)) for role, column in reading.columns),
-        renamed=reading.names,
+        columns=tuple(sorted((role, str(column)) for role, column in reading.columns)),
+        renamed=None if reading.names is None else tuple(sorted(reading.names)),
         convention=reading.convention,
         unit=reading.unit,
         case=reading.case,

@@ -173,7 +173,7 @@ def reading_table(comparison: Comparison, places: int) -> Table:
         for row in reactions
     ]
     columns = (
-        Column("member"),
+        Column("member or reaction" if reactions else "member"),
         Column("called there"),
         Column("row", "right"),
         Column("as printed", "right"),
@@ -209,7 +209,7 @@ def displacement_table(comparison: Comparison) -> Table:
                 Run(f"{item.joint},{item.axis}"),
                 Decimals(float_text(item.ours, places + 1, 0.0)),
                 Decimals(as_given(item.theirs, given.digits, 6)),
-                Run(f"{item.difference:+.{places + 1}f}".replace("-", "−")),
+                signed(exact(float_decimal(item.difference)), places + 1),
                 Run("in proportion" if item.in_proportion else "out of proportion"),
             )
         )

@@ -9,6 +9,7 @@ from typing import Final
 from trusscalc.comparison import Comparison
 from trusscalc.explanations import Explanation, share
 from trusscalc.sheet.blocks import Block, Column, Heading, Inline, Items, Paragraph, Run, Table
+from trusscalc.sheet.compact import is_blank, without_columns
 from trusscalc.sheet.words import bar, capital, listed
 from trusscalc.truss import Truss
 
@@ -54,6 +55,7 @@ NOT_DIAGNOSED: Final = (
     "Not diagnosed: our own two routes do not agree with each other, so ours cannot be the measure of theirs."
 )
 _KIND: Final = re.compile("|".join(rf"\b{kind}\b(?= \()" for kind in KINDS if "-" in kind))
+_WORD: Final = re.compile(r"[^\s,;:()]+-[^\s,;:()]+")
 _MINUS: Final = re.compile(r"(?<![^\s(])-(?=\d)")
 
 
@@ -102,7 +104,7 @@ def _table(found: Sequence[Explanation]) -> Table:
         "Explanations, the best first. Left: the largest difference between submitted and reproduced member forces, "
         "over the largest force."
     )
-    return Table(columns, tuple(rows), caption)
+    return without_columns(Table(columns, tuple(rows), caption), lambda _, cells: is_blank(cells))
 
 
 def _name(one: Explanation) -> tuple[str, tuple[str, ...]]:
@@ -126,8 +128,10 @@ def _fit(one: Explanation) -> str:
 
 def clean(one: Explanation, truss: Truss) -> str:
     """Return an explanation's text as it is printed: kinds in words, true minus signs, members with their dash."""
-    text = _KIND.sub(lambda found: KINDS[found[0]], _MINUS.sub("−", one.text))
+    return with_dashes(_KIND.sub(lambda found: KINDS[found[0]], _MINUS.sub("−", one.text)), truss)
+
+
+def with_dashes(text: str, truss: Truss) -> str:
+    """Return a text with the members it names as they are printed; names with blanks in them stay."""
     members = {member.name for member in truss.members}
-    for name in {*one.where, *(one.second[1] if one.second else ())} & members:
-        text = text.replace(name, bar(name))
-    return text
+    return _WORD.sub(lambda found: bar(found[0]) if found[0] in members else found[0], text)

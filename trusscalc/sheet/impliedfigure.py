@@ -25,7 +25,7 @@ from trusscalc.sheet.jointloads import draw_joint_loads
 from trusscalc.sheet.marks import Figure, Label
 from trusscalc.sheet.wholetruss import WholeTruss
 
-HIGHEST_TRUSS: Final = 60.0
+HIGHEST_TRUSS: Final = 45.0
 MOST_NAMED: Final = 12
 MOST_PLACES: Final = 3
 FIGURES: Final = 4
@@ -168,8 +168,8 @@ def _caption(comparison: Comparison, drawing: _Drawing, marked: Sequence[str], m
         text += " Heavy lines: members that differ."
     if missing:
         text += " Dashed: members that the table does not give; nothing is implied at their joints."
-    remarks = (drawing.above.remarks(), drawing.below.remarks())
-    return text + "".join(dict.fromkeys(remarks))
+    remarks = f"{drawing.above.remarks()} {drawing.below.remarks()}".split(". ")
+    return text + "".join(f" {remark}." for remark in dict.fromkeys(each.strip(" .") for each in remarks) if remark)
 
 
 def _alt(implied: Collection[ImpliedLoad], places: int) -> str:
