@@ -939,3 +939,19 @@ def test_numbers_as_they_stand_in_the_table() -> None:
     assert [row.printed for row in table.rows] == ["1,234.50 C", "(2.50)", "-1.5e+3", "3.0 kips"]
     table = read({"member": ["L0-L1", "L1-L2", "L0-U1"], "force": [-1.5, 3, Fraction(1, 3)]})
     assert [row.printed for row in table.rows] == ["-1.5", "3.0", "1/3"]
+
+
+def test_numbers_rounded_to_significant_figures() -> None:
+    """Zeros beyond the figures that any number has say nothing: 19420 stands for 19415 to 19425."""
+    rows = read("member,force\nL0-L1,19420.0\nL1-L2,-1423.0\nU1-L1,54.87\nL0-U1,3.21\nU1-L2,0\n").rows
+    assert [row.digits for row in rows] == [parse(half) for half in ("5", "1/2", "1/200", "1/200", "1/200")]
+    submitted = read("member,force\nL0-L1,19420.0\nL1-L2,-1423.0\n")
+    assert (
+        "no force has more than 4 significant figures: 2 larger numbers count as rounded to as many" in submitted.notes
+    )
+
+
+def test_round_numbers_are_taken_as_printed() -> None:
+    """A few zeros are chance, and nobody rounds results to one figure."""
+    rows = read("member,force\nL0-L1,300\nL1-L2,-1000\nU1-L1,40\n").rows
+    assert [row.digits for row in rows] == [parse("1/2")] * 3

@@ -19,6 +19,10 @@ Convention = Literal["tension positive", "compression positive", "detect", "lett
 """How the printed sign is meant; ``detect``: to be decided by comparing senses with our own solution."""
 
 ONE: Final = Fraction(1)
+FEWEST_FIGURES: Final = 4
+"""Significant figures that results are never taken to be rounded below."""
+FEWEST_ZEROS: Final = 3
+"""Zeros at the ends of numbers that tell such a rounding from chance."""
 TENSION: Final = "tension positive"
 COMPRESSION: Final = "compression positive"
 DETECT: Final = "detect"
@@ -79,6 +83,8 @@ def values_of(
             units[_unit_text(theirs)] = None
             times = _factor(theirs, truss.force)
         found.append(Value(raw, number.value * times, number.half * times) if times != 1 else _plain(raw, number))
+    found, significance = _to_significant_figures(found, raws)
+    notes += significance
     if overruled:
         notes.append(f"{numbered(overruled)} states another unit; read in {_unit_text(unit)} as the user states")
     if unstated and not (unit or titled):
@@ -88,6 +94,38 @@ def values_of(
 
 def _plain(raw: Raw, number: Amount) -> Value:
     return Value(raw, number.value, number.half)
+
+
+def _to_significant_figures(values: Sequence[Value], raws: Sequence[Raw]) -> tuple[list[Value], list[str]]:
+    """Return values with the rounding of numbers that were rounded to significant figures: 19420 of 19424.7.
+
+    Where no number of a kind has more significant figures than so many, and larger ones end in zeros instead, these
+    zeros say nothing. Never are fewer than FEWEST_FIGURES assumed: round numbers are often exact. A plain 0 is as fine
+    as the finest number.
+    """
+    if len(values) < len(raws):
+        return list(values), []  # something is wrong with a number, which is told instead
+    notes = []
+    kept = list(values)
+    for kind in ("force", "reaction"):
+        units = {
+            place: abs(int(value.value / (2 * value.half)))
+            for place, value in enumerate(values)
+            if value.raw.kind == kind and value.half
+        }
+        figures = max((len(str(size).rstrip("0")) for size in units.values() if size), default=0)
+        figures = max(figures, FEWEST_FIGURES)
+        surplus = {place: len(str(size)) - figures for place, size in units.items() if len(str(size)) > figures}
+        if sum(surplus.values()) >= FEWEST_ZEROS:
+            for place, zeros in surplus.items():
+                kept[place] = replace(kept[place], half=kept[place].half * 10**zeros)
+            told = f"no {kind} has more than {figures} significant figures"
+            notes.append(f"{told}: {len(surplus)} larger numbers count as rounded to as many")
+        finest = min((values[place].half for place in units), default=Fraction(0))
+        for place, size in units.items():
+            if not size:
+                kept[place] = replace(kept[place], half=finest)
+    return kept, notes
 
 
 @lru_cache
