@@ -46,8 +46,8 @@ def named(found: tuple[Explanation, ...]) -> list[str]:
 @pytest.mark.parametrize("family", FAMILIES)
 @pytest.mark.parametrize("kind", BLUNDERS)
 def test_a_planted_blunder_comes_first(kind: str, family: str) -> None:
-    """Or ties with the first; the place is among those told, and the fit is within the roundings."""
-    for number in range(2):
+    """Or ties with the first; its place is among those told, and it fits. Rates are in bench/DIAGNOSIS.md."""
+    for number in range(3):
         planted = plant(random.Random(f"{kind}, {family}, {number}"), kind, family)
         found = planted.explain()
         assert kind in named(found), planted.told
@@ -55,15 +55,6 @@ def test_a_planted_blunder_comes_first(kind: str, family: str) -> None:
         assert found[0].remainder < 2e-3
         places = [found[0].where, *(where for name, where in found[0].ties if name == kind)]
         assert kind == "scale" or {*planted.where[0]} in [{*where} for where in places]
-
-
-@pytest.mark.slow
-@pytest.mark.parametrize("family", FAMILIES)
-@pytest.mark.parametrize("kind", BLUNDERS)
-def test_rates(kind: str, family: str) -> None:
-    """At least 95 % of 50; see bench/DIAGNOSIS.md for what is reached."""
-    tried = [plant(random.Random(f"{kind} {family} {number}"), kind, family).explain() for number in range(50)]
-    assert sum(kind in named(found) for found in tried) >= 48
 
 
 @pytest.mark.parametrize(

@@ -16,7 +16,7 @@ from trusscalc.altered import Alteration, altered, in_turn, tabulated
 from trusscalc.comparison import Comparison
 from trusscalc.errors import InputError
 from trusscalc.explanations import Explanation, Trial, convincing, explanations
-from trusscalc.fits import ALLOWED, APART, SHARP, Fit, Printed, fit, reactions_by_name
+from trusscalc.fits import ALLOWED, SHARP, Fit, Printed, fit, reactions_by_name
 from trusscalc.loads import LoadCase
 from trusscalc.mirrors import of_mirrors
 from trusscalc.ratios import known_ratios
@@ -125,7 +125,7 @@ def _single(what: Compared, printed: Printed, look: Screen, ratios: Ratios) -> l
     near = screening.shortlist(look, listed, screening.forces_of(look, listed))
     near += of_table(look, look.forces, ratios)
     trials = _run(what, printed, ((one,) for one in near))
-    if min((trial.fit.closeness for trial in trials), default=APART) > SHARP:
+    if not any(trial.fit.closeness == SHARP and not trial.blunders[0].fitted for trial in trials):
         places = [one for one in near if one.explanation == "joint-displaced"]
         trials += _run(what, printed, ((one,) for one in fitted_blunders(look, what, places)))
     return trials
