@@ -72,19 +72,19 @@ class Sheet:
         (ax, ay), (bx, by) = places[first], places[second]
         return ax + (bx - ax) * part, ay + (by - ay) * part - up
 
-    def drag(self, *spots: Spot, shift: bool = False) -> None:
+    def drag(self, *spots: Spot) -> None:
         """Press at the first point, move through the others, let go at the last."""
         mouse = self.page.mouse
         mouse.move(*spots[0])
-        if shift:
-            self.page.keyboard.down("Shift")
         mouse.down()
         for spot in spots[1:]:
             mouse.move(*spot, steps=8)
         mouse.up()
-        if shift:
-            self.page.keyboard.up("Shift")
         self.settle()
+
+    def follow_the_pointer(self) -> None:
+        """Have a drag draw a line along the pointer's path."""
+        self.drawing.get_by_label("a section along the pointer's path").check()
 
 
 def in_kernel(page: Any, code: str) -> str:

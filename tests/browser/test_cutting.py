@@ -121,17 +121,18 @@ def test_a_bent_line_by_keys_alone(page: Any, book: Any, sheet: Sheet) -> None:
     expect(status).to_contain_text("goes through c–d, p–q, j–d and j–q")
 
 
-def test_with_shift_the_line_follows_the_pointer(book: Any, sheet: Sheet) -> None:
+def test_a_line_along_the_pointer_s_path(book: Any, sheet: Sheet) -> None:
     """Round joint j in one go; closed round a joint it cuts that joint out."""
+    sheet.follow_the_pointer()
     inner = sheet.between("p", "q", up=12), sheet.between("i", "j", 0.7), sheet.between("c", "d", up=-12)
-    sheet.drag(sheet.between("p", "q", up=-45), *inner, sheet.between("c", "d", up=45), shift=True)
+    sheet.drag(sheet.between("p", "q", up=-45), *inner, sheet.between("c", "d", up=45))
     status = book.get_by_role("status")
     expect(status).to_contain_text("goes through c–d, p–q, c–j and j–p.")
     book.get_by_role("button", name="No cut").click()
     expect(status).to_contain_text("Drag across members")
     x, y = sheet.joints()["j"]
     ring = [(x - 25, y - 25), (x + 25, y - 25), (x + 25, y + 25), (x - 25, y + 25), (x - 25, y - 24)]
-    sheet.drag(*ring, shift=True)
+    sheet.drag(*ring)
     expect(status).to_contain_text("The cut goes through c–j, j–p, j–d and j–q.")
     expect(sheet.svg.locator("[data-joint='j']")).to_have_attribute("aria-pressed", "true")
 

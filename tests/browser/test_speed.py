@@ -79,6 +79,7 @@ def test_from_the_end_of_a_drag_to_the_typeset_answer(page: Any, book: Any, shee
     """Median under half a second, on sections round a joint that give both chords."""
     answer = book.locator(".tc-answer").first
     page.evaluate(WATCH)
+    sheet.follow_the_pointer()
     times = []
     for panel in (2, 3, 4, 2, 3, 4, 2, 3, 4):
         low = sheet.between(f"L{panel}", f"L{panel + 1}", 0.3, up=-45)
@@ -86,7 +87,7 @@ def test_from_the_end_of_a_drag_to_the_typeset_answer(page: Any, book: Any, shee
         book.get_by_role("button", name="No cut").click()
         expect(answer).to_be_empty()
         inner = (low[0], low[1] - 60), sheet.between(f"M{panel - 1}", f"M{panel}", 0.7), (high[0], high[1] + 60)
-        sheet.drag(low, *inner, high, shift=True)
+        sheet.drag(low, *inner, high)
         page.wait_for_function("() => window.typesetAt > 0")
         expect(answer.locator("mjx-assistive-mml").filter(has_text=f"U{panel}–U{panel + 1}")).not_to_have_count(0)
         times.append(page.evaluate("() => window.typesetAt - window.releasedAt"))

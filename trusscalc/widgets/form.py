@@ -100,7 +100,7 @@ class Form:
             [self.kept, self.through],
             [self.line, self.equation, self.centre, self.direction],
         )
-        boxes = [ipywidgets.VBox(column, layout={"min_width": "22.5em"}) for column in columns]
+        boxes = [ipywidgets.VBox(column, layout={"min_width": "21.4em"}) for column in columns]
         controls = ipywidgets.HBox(boxes, layout={"flex_flow": "row wrap"})
         return ipywidgets.VBox([buttons, self.work, controls, self.answer, self.check])
 

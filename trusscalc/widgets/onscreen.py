@@ -134,7 +134,7 @@ class OnScreen:
 
 def control(kind: Any, description: str, changed: Callable[[Any], None], **options: Any) -> Any:
     """Return a control, and have its changes told."""
-    made = kind(description=description, style={"description_width": "9em"}, layout={"width": "22em"}, **options)
+    made = kind(description=description, style={"description_width": "8.6em"}, layout={"width": "21em"}, **options)
     made.observe(lambda event: changed(event["new"]), names="value")
     return made
 

@@ -39,13 +39,12 @@ def train_data(travel: Travel) -> Data:
     train, end = travel.train, float(travel.line.positions[-1])
     way = -1 if travel.direction == "forward" else 1
     offsets = [way * float(behind) for behind in accumulate(travel.spacing, initial=ZERO)]
-    high, low = travel.here
-    patches = {(float(a), float(b)) for extreme in (high, low) for a, b, _ in extreme.patches}
+    patches = [(float(a), float(b)) for a, b, _ in travel.shown.patches]
     return {
         "lead": float(travel.lead_axle_at),
         "offsets": offsets,
         "loads": [amount(load * (1 + train.impact) * train.share) for load in train.axles],
-        "patches": sorted(patches),
+        "patches": patches,
         "from": -max(offsets),
         "to": end - min(offsets),
         "step": _handy(end / STEPS),

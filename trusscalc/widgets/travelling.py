@@ -107,6 +107,12 @@ class Travel:
         return self._here
 
     @property
+    def shown(self) -> Extreme:
+        """The one of the two that is drawn: the one that governs where the train is, tension where they are equal."""
+        high, low = self._here
+        return high if abs(high.value) >= abs(low.value) else low
+
+    @property
     def train(self) -> Train:
         """The train shown; set by its name."""
         return self._named(self.place.train)
@@ -177,14 +183,14 @@ class Travel:
 
     def blocks(self, *, drawings: bool = True) -> list[Block]:
         """Return the train's place and force as blocks, with the positions that govern."""
-        shown = self._here[0] if self._here[0].value.sign() > 0 or not self._here[1].value else self._here[1]
         blocks: list[Block] = []
         if drawings:
             blocks += [
                 Heading(4, capital(target_words(self.line))),
-                Picture((influence_figure(self.line, shown, self.train),)),
+                Picture((influence_figure(self.line, self.shown, self.train),)),
+                Paragraph((Run(self.words()),)),
             ]
-        blocks += [Paragraph((Run(self.words()),)), self.table()]
+        blocks.append(self.table())
         agreed = "agree" if self.line.agreed else f"do not agree at {listed(self.line.differing)}"
         return [*blocks, note(f"Ordinates by hand method, by the equilibrium of all joints and by stiffness {agreed}.")]
 

@@ -24,6 +24,14 @@ const KEYS = [
   ["N", "take the nearest cut that gives something"],
   ["Escape", "no cut; while dragging: as it was"],
 ];
+const DRAGS = [
+  ["line", "a straight section"],
+  ["path", "a section along the pointer's path"],
+];
+const PICKS = [
+  ["centre", "takes moments about it"],
+  ["keep", "keeps it in the free body, or not"],
+];
 let count = 0;
 
 class Drawing {
@@ -43,8 +51,10 @@ class Drawing {
       root,
     );
     this.elevation = new Elevation(this.svg);
+    this.note = html("p", { class: "tc-note" }, root, NO_ROOM);
     this.status = html("p", { class: "tc-status", role: "status" }, root);
-    this.choice = this.picking();
+    this.drags = this.choiceOf("drags", "Dragging draws", DRAGS);
+    this.picks = this.choiceOf("picks", "Picking a joint", PICKS);
     this.help();
     this.walks = { member: new Roving(), joint: new Roving(), point: new Roving() };
     this.listen();
@@ -53,16 +63,13 @@ class Drawing {
     this.resize(true);
   }
 
-  picking() {
+  /** A set of radio buttons; returns what asks which is chosen. */
+  choiceOf(name, title, options) {
     const set = html("fieldset", { class: "tc-picking" }, this.root);
-    html("legend", {}, set, "Picking a joint");
-    const options = [
-      ["centre", "takes moments about it"],
-      ["keep", "keeps it in the free body, or not"],
-    ];
+    html("legend", {}, set, title);
     const inputs = options.map(([value, text], index) => {
       const label = html("label", {}, set);
-      const input = html("input", { type: "radio", name: `${this.id}-picking`, value }, label);
+      const input = html("input", { type: "radio", name: `${this.id}-${name}`, value }, label);
       input.checked = index === 0;
       label.append(text);
       return input;
@@ -74,8 +81,8 @@ class Drawing {
     const details = html("details", { class: "tc-help" }, this.root);
     html("summary", {}, details, "Pointer and keys");
     const text =
-      "Drag across members to draw a section; with Shift held the line follows the pointer. Pull the line, or one of " +
-      "its points, to lead it round a joint. Click a member to have it checked.";
+      "Drag across members to draw a section. Pull the line, or one of its points, to lead it round a joint. " +
+      "Click a member to have it checked.";
     html("p", { id: `${this.id}-keys` }, details, text);
     const list = html("dl", {}, details);
     for (const [key, does] of KEYS) {
@@ -97,6 +104,7 @@ class Drawing {
     const title = this.model.get("truss").title || "Truss";
     this.svg.setAttribute("aria-label", `${title}, elevation`);
     this.elevation.draw(this.layout);
+    this.note.hidden = !this.elevation.crowded;
     this.section ??= new SectionLine(this.svg, this.layout);
     this.walks.member.take(this.elevation.members, this.middles());
     this.walks.joint.take(this.elevation.joints, this.layout.spots);
@@ -152,7 +160,7 @@ class Drawing {
   pick(target) {
     const { member, joint, side } = target.dataset;
     if (member !== undefined) this.tell("member", { member });
-    else if (joint !== undefined) this.tell(this.choice(), { joint });
+    else if (joint !== undefined) this.tell(this.picks(), { joint });
     else if (side !== undefined) this.tell("side");
   }
 
@@ -179,7 +187,7 @@ class Drawing {
   down(event) {
     if (event.button !== 0 || this.press) return;
     const target = event.target.closest("[data-member], [data-joint], [data-point], [data-piece], [data-side]");
-    this.press = { spot: this.spot(event), target, follows: event.shiftKey, id: event.pointerId };
+    this.press = { spot: this.spot(event), target, follows: this.drags() === "path", id: event.pointerId };
   }
 
   move(event) {
@@ -270,6 +278,8 @@ class Drawing {
 
 const LOST =
   "Not connected: the kernel has stopped or was started again. Nothing here is current; run this cell again.";
+
+const NO_ROOM = "At this width there is no room for the names of joints and the sizes of loads.";
 
 /** Sets the text of a live region only when it changes, so that it is spoken once. */
 function say(node, text) {

@@ -147,6 +147,7 @@ export class Elevation {
       : [along(spot, way, -7 - LOAD), along(spot, way, -7)];
     this.layout.take(joint, leaves ? angle : angle + Math.PI);
     this.arrow(tail, tip, `tc-load${gone ? " tc-gone" : ""}`);
+    if (this.crowded) return;
     this.word(along(leaves ? tip : tail, way, leaves ? 10 : -10), text, `tc-amount${gone ? " tc-gone" : ""}`);
   }
 
