@@ -82,7 +82,7 @@ def _parser() -> argparse.ArgumentParser:
     sheet.set_defaults(run=_sheet)
     recheck = commands.add_parser("recheck", help="derive a filed sheet again and compare it with what it shows")
     recheck.add_argument("file", metavar="SHEET", help="a filed notebook (.ipynb), page (.html) or PDF")
-    recheck.add_argument("--against", metavar="FILE.toml", help="for a PDF: the truss file it was written from")
+    recheck.add_argument("--against", metavar="FILE.toml", help="for a PDF: the truss file or filed page it goes with")
     recheck.add_argument("--member", default="", help="for a PDF of an influence line: its force, with --along")
     recheck.add_argument("--along", default="", help="for a PDF of an influence line: its chain")
     recheck.add_argument("--train", default="", help="for a PDF of an influence line: the train on it")
@@ -202,19 +202,20 @@ def _text_of(path: str) -> str:
 
 
 def _recheck(arguments: argparse.Namespace) -> int:
-    from trusscalc.recheck import recheck, recheck_pdf  # noqa: PLC0415
+    from trusscalc.recheck import derived_again, recheck, recheck_pdf  # noqa: PLC0415
 
     if arguments.against is None:
         report = recheck(arguments.file)
     else:
-        if not (arguments.file.lower().endswith(".pdf") and (arguments.members or arguments.member)):
+        holds_input = arguments.against.lower().endswith((".html", ".htm", ".ipynb"))
+        if not (arguments.file.lower().endswith(".pdf") and (holds_input or arguments.members or arguments.member)):
             message = (
-                "--against is for a PDF, together with its --case and --members (an envelope has no case; an influence "
-                "line has --member, --along and --train); other sheets hold their own input"
+                "--against is for a PDF: the notebook or page filed with it; or its truss file, together with --case "
+                "and --members (an envelope has no case; an influence line has --member, --along and --train)"
             )
             raise InputError(message)
         filed, arguments.file = arguments.file, arguments.against
-        report = recheck_pdf(filed, _written_again(arguments))
+        report = recheck_pdf(filed, derived_again(arguments.file) if holds_input else _written_again(arguments))
     _print("\n".join(report.lines()))
     return AGREED if report.matches else DISAGREED
 

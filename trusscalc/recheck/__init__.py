@@ -30,8 +30,8 @@ LARGEST_SHEET: Final = 100_000_000
 """Bytes of a filed sheet that are read."""
 PDF: Final = (
     "a PDF carries no input to derive it from again; give the truss file it was written from, with the same case and "
-    "members (python -m trusscalc recheck sheet.pdf --against FILE.toml --case NAME --members A-B,C-D), or recheck "
-    "the notebook or page filed with it"
+    "members (python -m trusscalc recheck sheet.pdf --against FILE.toml --case NAME --members A-B,C-D), or the "
+    "notebook or page filed with it (--against sheet.html)"
 )
 
 
@@ -101,12 +101,38 @@ def recheck(path: str | os.PathLike[str]) -> RecheckReport:
     """
     source = one_line(os.fspath(path))
     place = Path(path)
-    kinds: dict[str, Callable[[str, str], RecheckReport]] = {".ipynb": _notebook, ".html": _page, ".htm": _page}
-    kind = kinds.get(place.suffix.lower())
-    if kind is None:
-        message = PDF if place.suffix.lower() == ".pdf" else "only a filed .ipynb or .html can be derived again"
+    kind = place.suffix.lower()
+    if kind not in RECORDS:
+        message = PDF if kind == ".pdf" else "only a filed .ipynb or .html can be derived again"
         raise FileFormatError(message, source=source)
-    return kind(_text(place, source), source)
+    text = _text(place, source)
+    again = _Again(*RECORDS[kind](text, source))
+    if again.sheet is None:
+        return again.report(source, {}, [])
+    if kind == ".ipynb":
+        book = json.loads(notebook(again.sheet))
+        found = notebooks.notebook_differences(_data(text, source), book, again.warned)
+        return again.report(source, notebooks.counts(book), found)
+    page = html(again.sheet)
+    return again.report(source, pages.counts(page), pages.page_differences(text, page))
+
+
+def derived_again(path: str | os.PathLike[str]) -> Sheet:
+    """Return the sheet derived again from the record of a filed notebook or page, whatever that shows.
+
+    Raises
+    ------
+    FileFormatError
+        When the file cannot be read or is no filed sheet, or its input cannot be right.
+    """
+    source, place = one_line(os.fspath(path)), Path(path)
+    if place.suffix.lower() not in RECORDS:
+        message = "a filed .ipynb or .html is needed, which holds its own input"
+        raise FileFormatError(message, source=source)
+    again = _Again(*RECORDS[place.suffix.lower()](_text(place, source), source))
+    if again.sheet is None:
+        raise FileFormatError(str(again.problem), source=source)
+    return again.sheet
 
 
 def recheck_pdf(path: str | os.PathLike[str], sheet: Sheet) -> RecheckReport:
@@ -168,33 +194,32 @@ def _content(place: Path, source: str) -> bytes:
 # --- the two kinds of file --------------------------------------------------------------------------------
 
 
-def _page(text: str, source: str) -> RecheckReport:
+def _of_page(text: str, source: str) -> tuple[dict[str, Any], str]:
+    """Return record and truss file of a filed page."""
     record_text, truss_text = pages.verbatim(text, RECORD_ID), pages.verbatim(text, INPUT_ID)
     if record_text is None or truss_text is None:
         message = "holds no record of what it was derived from, so it is no sheet filed as HTML by this program"
         raise FileFormatError(message, source=source)
-    record = _data(record_text, source)
-    again = _Again(record, truss_text)
-    if again.sheet is None:
-        return again.report(source, {}, [])
-    derived = html(again.sheet)
-    return again.report(source, pages.counts(derived), pages.page_differences(text, derived))
+    return _data(record_text, source), truss_text
 
 
-def _notebook(text: str, source: str) -> RecheckReport:
-    book = _data(text, source)
-    metadata = book.get("metadata")
+def _of_notebook(text: str, source: str) -> tuple[dict[str, Any], str]:
+    """Return record and truss file of a filed notebook."""
+    metadata = _data(text, source).get("metadata")
     record = metadata.get("trusscalc") if isinstance(metadata, dict) else None
     truss_text = record.get("truss") if isinstance(record, dict) else None
     if not isinstance(record, dict) or not isinstance(truss_text, str):
         message = "holds no record of what it was derived from, so it is no notebook filed by this program"
         raise FileFormatError(message, source=source)
-    again = _Again(record, truss_text)
-    if again.sheet is None:
-        return again.report(source, {}, [])
-    derived = json.loads(notebook(again.sheet))
-    found = notebooks.notebook_differences(book, derived, again.warned)
-    return again.report(source, notebooks.counts(derived), found)
+    return record, truss_text
+
+
+RECORDS: Final[dict[str, Callable[[str, str], tuple[dict[str, Any], str]]]] = {
+    ".ipynb": _of_notebook,
+    ".html": _of_page,
+    ".htm": _of_page,
+}
+"""How the record is found in each kind of file."""
 
 
 def _data(text: str, source: str) -> dict[str, Any]:
@@ -246,4 +271,4 @@ class _Again:
         return RecheckReport(source, differences, dict(compared), written_by, record["program"], record["content"])
 
 
-__all__ = ["Difference", "RecheckReport", "derive", "recheck", "recheck_pdf"]
+__all__ = ["Difference", "RecheckReport", "derive", "derived_again", "recheck", "recheck_pdf"]

@@ -11,7 +11,7 @@ from trusscalc.explanations import Explanation
 from trusscalc.membercheck import MemberCheck
 from trusscalc.project import Project
 from trusscalc.sheet.blocks import Block, Heading, Inline, Items, Paragraph, Run, Seal
-from trusscalc.sheet.comparisontables import difference_cell, force_table, given_text, ours_text
+from trusscalc.sheet.comparisontables import cell_text, difference_cell, force_table, given_text, ours_text
 from trusscalc.sheet.diagnosisblocks import clean, with_dashes
 from trusscalc.sheet.front import MOST_NAMED, NOT_COVERED, loads_words
 from trusscalc.sheet.inscriptions import amount
@@ -74,7 +74,7 @@ class Verification:
 def opening(found: Verification, project: Project) -> list[Block]:
     """Return title and the line that says what is compared."""
     comparison = found.comparison
-    called = f", there called “{comparison.their_case}”" if comparison.their_case else ""
+    called = f", there called “{cell_text(comparison.their_case)}”" if comparison.their_case else ""
     if comparison.their_case == comparison.case.name:
         called = ", there called the same"
     submitted = f"{comparison.submitted.source}{called}"

@@ -29,6 +29,7 @@ from trusscalc.sheet.blocks import (
 )
 from trusscalc.sheet.comparisonfront import Verification, some
 from trusscalc.sheet.comparisontables import (
+    cell_text,
     displacement_table,
     force_table,
     implied_table,
@@ -170,7 +171,7 @@ def _refuse_others(comparison: Comparison, check: MemberCheck, stated: TrussFile
 def _submitted(comparison: Comparison, places: int) -> list[Block]:
     """Return what was compared: the file, how it was read, in which order, and what agrees."""
     table = comparison.submitted
-    called = f"“{comparison.their_case}”" if comparison.their_case else "the table has no load cases"
+    called = f"“{cell_text(comparison.their_case)}”" if comparison.their_case else "the table has no load cases"
     values = [counted(len(table.rows), "member force")]
     values += [counted(len(table.reactions), "reaction")] if table.reactions else []
     values += [counted(len(table.displacements), "displacement")] if table.displacements else []

@@ -11,6 +11,7 @@ from trusscalc.comparereport import loaded
 from trusscalc.comparison import ComparedForce, Comparison, ImpliedLoad
 from trusscalc.decimals import rounded
 from trusscalc.exact import Exact, exact
+from trusscalc.filetext import one_line
 from trusscalc.loads import factor_text
 from trusscalc.sheet.blocks import Column, Decimals, Inline, Power, Run, Table
 from trusscalc.sheet.compact import ends_within, is_blank, without_columns
@@ -20,6 +21,8 @@ from trusscalc.sheet.words import bar, capital, counted
 MOST_PLACES: Final = 12
 SIGNIFICANT: Final = 2
 """Digits of what is allowed."""
+LONGEST_CELL: Final = 60
+"""Characters shown of a submitted text."""
 SOON: Final = 4
 """Decimal places up to which a decimal is written as one."""
 BY_STIFFNESS: Final = "by stiffness"
@@ -54,6 +57,11 @@ def as_given(value: Exact, half: Exact, places: int) -> str:
     if not half:
         return decimal_text(value, places)
     return decimal_text(value, max(0, min(MOST_PLACES, math.ceil(-math.log10(2 * float(half)) - 1e-9))))
+
+
+def cell_text(text: str) -> str:
+    """Return somebody's text as it may stand on a sheet: what does not print told by number, and not too long."""
+    return one_line(text if len(text) <= LONGEST_CELL else f"{text[:LONGEST_CELL]}…")
 
 
 def difference_cell(item: ComparedForce, places: int) -> Inline | None:
@@ -161,15 +169,21 @@ def reading_table(comparison: Comparison, places: int) -> Table:
     rows = [
         (
             Run(bar(row.member)),
-            Run(row.theirs),
+            Run(cell_text(row.theirs)),
             Run(str(row.row)),
-            Run(row.printed),
+            Run(cell_text(row.printed)),
             *_read(row.force, row.digits, places),
         )
         for row in members
     ]
     rows += [
-        (Run(bar(row.name)), Run(""), Run(str(row.row)), Run(row.printed), *_read(row.force, row.digits, places))
+        (
+            Run(bar(row.name)),
+            Run(""),
+            Run(str(row.row)),
+            Run(cell_text(row.printed)),
+            *_read(row.force, row.digits, places),
+        )
         for row in reactions
     ]
     columns = (
