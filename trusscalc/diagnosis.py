@@ -8,6 +8,7 @@ joints, by ``frame``). A table that agrees within roundings and tolerance is nev
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
 from typing import Final
 
 from trusscalc import alterations, fitting, frame, pairs, screening, stiffjoints, stiffness
@@ -110,20 +111,32 @@ def explain(stated: TrussFile, case: str | LoadCase, printed: Printed) -> tuple[
         return (_unexplained(what, None, before),)
     factors = [float(f) for each in stated.all_combinations for _, given in each.factors for f in given]
     ratios = known_ratios(factors, what.truss.force, what.truss.length)
-    trials = _single(what, printed, look, ratios)
+    listed = plain_blunders(what, printed)
+    sieve = Sieve(look, listed, screening.forces_of(look, listed), ratios)
+    trials = _single(what, printed, sieve)
     if not any(trial.fit.closeness <= ALLOWED and convincing(trial, before) for trial in trials):
-        trials += _double(what, printed, look, ratios)
+        trials += _double(what, printed, sieve)
     return explanations(trials, before, _unexplained(what, look, before))
 
 
 # --- trials -----------------------------------------------------------------------------------------------
 
 
-def _single(what: Compared, printed: Printed, look: Screen, ratios: Ratios) -> list[Trial]:
+@dataclass(frozen=True, slots=True)
+class Sieve:
+    """All plain blunders with what each leads to, roughly, (members, alterations) float."""
+
+    look: Screen
+    listed: Sequence[Alteration]
+    forces: screening.Floats
+    ratios: Ratios
+
+
+def _single(what: Compared, printed: Printed, sieve: Sieve) -> list[Trial]:
     """Return the trials of one blunder each."""
-    listed = plain_blunders(what, printed)
-    near = screening.shortlist(look, listed, screening.forces_of(look, listed))
-    near += of_table(look, look.forces, ratios)
+    look = sieve.look
+    near = screening.shortlist(look, sieve.listed, sieve.forces)
+    near += of_table(look, look.forces, sieve.ratios)
     trials = _run(what, printed, ((one,) for one in near))
     if not any(trial.fit.closeness == SHARP and not trial.blunders[0].fitted for trial in trials):
         places = [one for one in near if one.explanation == "joint-displaced"]
@@ -131,13 +144,12 @@ def _single(what: Compared, printed: Printed, look: Screen, ratios: Ratios) -> l
     return trials
 
 
-def _double(what: Compared, printed: Printed, look: Screen, ratios: Ratios) -> list[Trial]:
+def _double(what: Compared, printed: Printed, sieve: Sieve) -> list[Trial]:
     """Return the trials of two blunders each."""
-    listed = plain_blunders(what, printed)
-    forces = screening.forces_of(look, listed)
+    look, listed, forces = sieve.look, sieve.listed, sieve.forces
     found = pairs.of_loads(look, listed, forces)
     for place in {*pairs.near_in_proportion(look, forces), *pairs.few_rows_off(look, forces, MOST_EXCHANGED)}:
-        found += [(listed[place], one) for one in of_table(look, forces[:, place], ratios)]
+        found += [(listed[place], one) for one in of_table(look, forces[:, place], sieve.ratios)]
     found += pairs.on_altered_models(look, listed, pairs.first_blunders(look, listed, forces))
     return _run(what, printed, found)
 

@@ -175,7 +175,7 @@ def main(argv: list[str] | None = None) -> int:
     parser = argparse.ArgumentParser(description=__doc__, formatter_class=argparse.RawDescriptionHelpFormatter)
     parser.add_argument("--quick", action="store_true", help="one of each, to see that it runs")
     options = parser.parse_args(argv)
-    single, double = (1, 1) if options.quick else (50, 25)
+    single, double = (1, 1) if options.quick else (50, 12)
     for make in (
         lambda: rates(tuple(BLUNDERS), single),
         lambda: rates(PAIRS[-2:] if options.quick else PAIRS, double),
