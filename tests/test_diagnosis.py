@@ -14,7 +14,7 @@ from planted import BLUNDERS, as_printed, explained, half_unit, plant
 from trusscalc.alterations import compared
 from trusscalc.compare import compare_submitted
 from trusscalc.diagnosis import diagnose, explain
-from trusscalc.errors import UnknownNameError
+from trusscalc.errors import InputError, UnknownNameError
 from trusscalc.explanations import Explanation
 from trusscalc.files import read
 from trusscalc.fits import Printed
@@ -345,6 +345,16 @@ def test_an_unknown_case_is_an_error() -> None:
     given = pratt()
     with pytest.raises(UnknownNameError, match="no case or combination 'deed'"):
         explain(given.file, "deed", printed_of(right(given)))
+
+
+def test_a_mechanism_of_ours_is_an_error() -> None:
+    """It has no forces to explain others' by."""
+    square = Truss(
+        {"A": (0, 0), "B": (4, 0), "C": (4, 3), "D": (0, 3)}, ["A-B", "B-C", "C-D", "A-D"], {"A": "pin", "B": "roller"}
+    )
+    stated = TrussFile(square, (LoadCase("push", {"D": (5, 0)}),))
+    with pytest.raises(InputError, match="cannot resist every load"):
+        explain(stated, "push", printed_of(dict.fromkeys(("A-B", "B-C", "C-D", "A-D"), 1.0)))
 
 
 def test_words_claim_no_more_than_the_fit() -> None:

@@ -82,6 +82,8 @@ def explain(stated: TrussFile, case: str | LoadCase, printed: Printed) -> tuple[
     ------
     UnknownNameError
         When the case or the combination is not there.
+    InputError
+        When our truss is a mechanism.
 
     Notes
     -----
@@ -101,7 +103,10 @@ def explain(stated: TrussFile, case: str | LoadCase, printed: Printed) -> tuple[
     """
     what = compared(stated, case)
     before = _fit(what, printed, NOTHING)
-    if before is None or before.closeness <= ALLOWED:
+    if before is None:
+        message = "the truss itself cannot resist every load: nothing can be compared with it; check it first"
+        raise InputError(message)
+    if before.closeness <= ALLOWED:
         return ()
     if len(what.truss.joints) > MOST_JOINTS:
         text = f"not searched: the truss has more than {MOST_JOINTS} joints"
