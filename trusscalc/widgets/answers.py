@@ -10,6 +10,7 @@ from collections.abc import Collection, Iterator, Mapping
 from dataclasses import dataclass, replace
 
 from trusscalc.convenience import Convenient
+from trusscalc.errors import NoCutError
 from trusscalc.exact import ZERO, Exact
 from trusscalc.loads import LoadCase
 from trusscalc.membercheck import ForceCheck, MemberCheck, check_members
@@ -19,6 +20,7 @@ from trusscalc.statics.cutreport import Possibility, cut_report
 from trusscalc.statics.cuts import About, Cut, Structure, bar_lever, cut_of, structure_of
 from trusscalc.statics.owncuts import OwnCut
 from trusscalc.statics.steps import Equation, Step, StepError, section_letter, write_equation, write_step
+from trusscalc.truss import Truss
 
 
 @dataclass(frozen=True, slots=True)
@@ -93,7 +95,8 @@ def answer(own: OwnCut, case: LoadCase, about: About | None = None, *, earlier: 
         The one equation to write; without it, each force that a single equation gives is solved, or those that
         several equations of the body give together.
     earlier : MemberCheck, optional
-        What has been derived before, of the same truss and loads: its results count as known.
+        What has been derived before, of the same truss and loads: its results count as known. Without it, what
+        ``reactions_only`` gives, which many answers can share.
 
     Raises
     ------
@@ -117,19 +120,12 @@ class _Answering:
 
     def __init__(self, own: OwnCut, case: LoadCase, earlier: MemberCheck | None) -> None:
         self.own = own
+        self.earlier = earlier or reactions_only(own.truss, case)
+        self.before = self.earlier.steps
         links = {link.name for link in own.truss.links}
         self.members = tuple(name for name in own.bars if name not in links)
-        asked = self.members or (own.truss.members[0].name,)
-        judged = check_members(own.truss, case, asked, own_checks=False)
-        self.before = earlier.steps if earlier else tuple(_of_reactions(judged, links))
-        self.check = replace(
-            judged,
-            steps=self.before,
-            members={**(earlier.members if earlier else {}), **{n: f for n, f in judged.members.items() if n in asked}},
-            own_checks=True,
-        )
-        self.structure: Structure = structure_of(own.truss, judged.case)
-        tensions = matrix.solve(own.truss, judged.case).tensions
+        self.structure: Structure = structure_of(own.truss, self.earlier.case)
+        tensions = matrix.solve(own.truss, self.earlier.case).tensions
         found = {name for step in self.before for name in step.results}
         self.known: Mapping[str, Exact] = {name: tensions[name] for name in self.structure.bars if name in found}
         self.cut: Cut = cut_of(self.structure, own.kept)
@@ -144,7 +140,7 @@ class _Answering:
 
     def answer(self, about: About | None) -> Answer:
         """Return the answer about the chosen centre or direction, or all that single equations give."""
-        report = cut_report(self.own, self.check.case)
+        report = cut_report(self.own, self.earlier.case)
         ways = tuple(sorted((self._with_known(way) for way in report.possibilities), key=lambda p: len(p.unknown)))
         steps: tuple[Step, ...] = ()
         equation, reason = None, ""
@@ -208,7 +204,7 @@ class _Answering:
         if not names:
             return ()
         first = next(name for name in names if name in self.members)
-        found = check_members(self.own.truss, self.check.case, [first], cuts={first: self.own})
+        found = check_members(self.own.truss, self.earlier.case, [first], cuts={first: self.own})
         step = next(step for step in found.steps if first in step.solves)
         return (replace(step, number=len(self.before) + 1, letter=self.letter),)
 
@@ -223,13 +219,43 @@ class _Answering:
 
     def _checked(self, steps: tuple[Step, ...]) -> MemberCheck:
         """Return the check with the new steps, once each of their results is what its verdict was made of."""
-        for step in steps:
-            for name, value in step.results.items():
-                judged = self.check.members.get(name) or self.check.reactions[name]
-                if judged.exact != value:
-                    message = f"{name}: this cut gives another force than the equilibrium of all joints"
-                    raise StepError(message)
-        return replace(self.check, steps=(*self.before, *steps))
+        found = {name: value for step in steps for name, value in step.results.items()}
+        members = self._judged([name for name in found if name in self.members])
+        for name, value in found.items():
+            judged = members.get(name) or self.earlier.reactions[name]
+            if judged.exact != value:
+                message = f"{name}: this cut gives another force than the equilibrium of all joints"
+                raise StepError(message)
+        return replace(
+            self.earlier,
+            steps=(*self.before, *steps),
+            members={**self.earlier.members, **members},
+            own_checks=True,
+        )
+
+    def _judged(self, names: Collection[str]) -> dict[str, ForceCheck]:
+        """Return the verdict on each force found, made where the force is derived once more from the same cut."""
+        if not names:
+            return {}
+        truss, case = self.own.truss, self.earlier.case
+        try:
+            check = check_members(truss, case, [], cuts=dict.fromkeys(names, self.own), own_checks=False)
+        except NoCutError:  # it takes what was kept before, so the tool derives it its own way
+            check = check_members(truss, case, names, own_checks=False)
+        return dict(check.members)
+
+
+def reactions_only(truss: Truss, case: LoadCase) -> MemberCheck:
+    """Return a check of which only the reactions are left: what is known before any member is.
+
+    Raises
+    ------
+    UnstableTrussError
+        When the truss cannot resist every load.
+    """
+    check = check_members(truss, case, [truss.members[0].name], own_checks=False)
+    links = {link.name for link in truss.links}
+    return replace(check, members={}, steps=tuple(_of_reactions(check, links)), own_checks=True)
 
 
 def _of_reactions(check: MemberCheck, links: Collection[str]) -> Iterator[Step]:

@@ -25,7 +25,7 @@ from trusscalc.statics.owncuts import OwnCut, own_cut
 from trusscalc.trains import Train
 from trusscalc.truss import Truss, did_you_mean
 from trusscalc.trussfile import TrussFile
-from trusscalc.widgets.answers import Answer, answer
+from trusscalc.widgets.answers import Answer, answer, reactions_only
 from trusscalc.widgets.choices import Choices, typed_centre
 from trusscalc.widgets.crossings import Point
 from trusscalc.widgets.frozen import Present, frozen_bundle
@@ -384,10 +384,10 @@ class Exploration:
         if choices.kept:
             inside = set(choices.kept)
             others = tuple(entry for entry in choices.cuts if set(entry[1]) not in (inside, self._rest(inside)))
-            earlier = self._checked(case, (), others)
+            earlier = self._checked(case, (), others) or self._reactions(case)
             found = answer(own_cut(self.truss, keep=choices.kept), case, choices.about, earlier=earlier)
         elif check is None:
-            check_members(self.truss, case, [self.truss.members[0].name], own_checks=False)  # stable, loads fit
+            self._reactions(case)  # stable, and the loads fit
         self._present = Present(self.truss, case, choices, found, check)
 
     def _loads(self, name: str) -> LoadCase:
@@ -404,6 +404,13 @@ class Exploration:
         if key not in self._checks:
             own = {name: own_cut(self.truss, keep=kept) for name, kept in cuts}
             self._checks[key] = check_members(self.truss, case, members, cuts=own)
+        return self._checks[key]
+
+    def _reactions(self, case: LoadCase) -> MemberCheck:
+        """Return what is known before any member is, worked out once for each case."""
+        key = (case.name, (), ())
+        if key not in self._checks:
+            self._checks[key] = reactions_only(self.truss, case)
         return self._checks[key]
 
     def _rest(self, joints: set[str]) -> set[str]:
