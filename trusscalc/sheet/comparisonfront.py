@@ -12,7 +12,7 @@ from trusscalc.membercheck import MemberCheck
 from trusscalc.project import Project
 from trusscalc.sheet.blocks import Block, Heading, Inline, Items, Paragraph, Run, Seal
 from trusscalc.sheet.comparisontables import cell_text, difference_cell, force_table, given_text, ours_text
-from trusscalc.sheet.diagnosisblocks import clean, with_dashes
+from trusscalc.sheet.diagnosisblocks import clean, explains_all, with_dashes
 from trusscalc.sheet.front import MOST_NAMED, NOT_COVERED, loads_words
 from trusscalc.sheet.inscriptions import amount
 from trusscalc.sheet.words import bar, capital, counted, listed, number_word
@@ -238,7 +238,8 @@ def _explained(found: Verification) -> list[str]:
     text = capital(clean(best, found.comparison.truss))
     if best.explanation == "unexplained":
         return [f"Unexplained: {text[:1].lower()}{text[1:]}."]
-    return [f"{text}. That would explain the numbers; it does not prove what was done."]
+    reach = "the numbers" if explains_all(best) else "most of the differences, not all of them"
+    return [f"{text}. That would explain {reach}; it does not prove what was done."]
 
 
 def _note(comparison: Comparison, shown: Sequence[str]) -> list[Block]:

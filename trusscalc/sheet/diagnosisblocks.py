@@ -46,6 +46,8 @@ NOT_PROVEN: Final = (
     "models may give the same numbers, and blunders that cancel each other leave no trace. Whoever made the submitted "
     "analysis has to find the cause in it"
 )
+CONSISTENT: Final = "consistent with"
+"""How the text of an explanation begins that leaves no value outside the tolerance."""
 UNEXPLAINED: Final = (
     "None of the blunders tried explains the differences. They are unexplained, and have to be settled."
 )
@@ -123,7 +125,14 @@ def _where(one: Explanation) -> str:
 def _fit(one: Explanation) -> str:
     if one.explanation == "unexplained":
         return "nothing"
-    return "every value within its rounding" if one.fits else "not every value"
+    if one.fits:
+        return "every value within its rounding"
+    return "every value within the tolerance" if explains_all(one) else "not every value"
+
+
+def explains_all(one: Explanation) -> bool:
+    """Return whether an explanation reproduces every value, within the tolerance at least, as its own text says."""
+    return one.fits or one.text.startswith(CONSISTENT)
 
 
 def clean(one: Explanation, truss: Truss) -> str:
