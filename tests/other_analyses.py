@@ -7,6 +7,7 @@ stiffness matrices of members, added up, its links by multipliers.
 from __future__ import annotations
 
 import random
+import warnings
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, replace
 
@@ -83,11 +84,20 @@ class Analysis:
         return table
 
 
+def sound(stated: Stated) -> Truss | None:
+    """Return the library's record of a truss, or None for one it refuses or warns of."""
+    with warnings.catch_warnings():
+        warnings.simplefilter("error", TrusscalcWarning)
+        try:
+            return stated.truss
+        except (InputError, TrusscalcWarning):
+            return None
+
+
 def solved(truss: Stated, loads: Mapping[str, tuple[float, float]]) -> Table | None:
     """Return the member forces, or None for a truss that hardly stands."""
-    try:
-        model = truss.truss
-    except (InputError, TrusscalcWarning):
+    model = sound(truss)
+    if model is None:
         return None
     found = stiffness.solve(model, LoadCase("x", {joint: pair for joint, pair in loads.items() if any(pair)}))
     return found.forces if found.condition < WORST else None
@@ -139,7 +149,7 @@ def any_random(draw: random.Random) -> Stated:
             stated = random_truss(draw, draw.randint(6, 16), draw.choice(["rational", "rational", "surd"]))
         except ZeroDivisionError:  # two joints fell together
             continue
-        if _without_warning(stated):
+        if sound(stated):
             return stated
 
 
@@ -164,13 +174,6 @@ SHAPES: tuple[Callable[[random.Random], Stated], ...] = (
 def any_trade(draw: random.Random) -> Stated:
     """Return a truss of the trade."""
     return draw.choice(SHAPES)(draw)
-
-
-def _without_warning(stated: Stated) -> bool:
-    try:
-        return bool(stated.truss)
-    except (InputError, TrusscalcWarning):
-        return False
 
 
 FAMILIES: dict[str, Callable[[random.Random], Stated]] = {"random": any_random, "trade": any_trade}
@@ -210,4 +213,4 @@ def _stiffened(draw: random.Random, stated: Stated) -> Stated:
     ends = draw.sample(list(stated.joints), 2)
     there = {frozenset(name.split("-")) for name in stated.members}
     more = replace(stated, members=(*stated.members, "-".join(ends)))
-    return more if frozenset(ends) not in there and _without_warning(more) else stated
+    return more if frozenset(ends) not in there and sound(more) else stated
