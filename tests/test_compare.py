@@ -350,6 +350,8 @@ def test_several_cases_at_once() -> None:
     assert {row.case for row in found["wind"].submitted.rows} == {"WIND"}
     single = compare_submitted(FILE, table, "wind")
     assert single.members == found["wind"].members
+    assert "other load cases of the table, not compared here: 'Snow', '1.2S+0.5W'" in single.notes
+    assert not any("not compared here" in note for note in found["wind"].notes)
     other = read_submitted(rows_of(FILE, {"LC1": "snow", "LC2": "wind"}), ROOF)
     assert all(item.agreed for item in compare_cases(FILE, other, {"snow": "LC1", "wind": "LC2"}).values())
     swapped = compare_cases(FILE, other, {"snow": "LC2", "wind": "LC1"})

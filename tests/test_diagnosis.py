@@ -116,7 +116,7 @@ def test_one_wrong_value_is_named() -> None:
     table["U2-L3"] *= 1.07
     found = explained(given, as_printed(table))
     assert (found[0].explanation, found[0].where) == ("unexplained", ("U2-L3",))
-    assert found[0].text.endswith("all values agree but U2-L3")
+    assert found[0].text.endswith("all member forces agree but U2-L3")
 
 
 def test_a_load_of_any_other_size_is_found_by_equilibrium() -> None:

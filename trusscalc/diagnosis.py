@@ -239,7 +239,7 @@ def _unexplained(what: Compared, look: Screen | None, before: Fit) -> Explanatio
             text += "; all member forces agree, reactions do not"
         elif len(rows) <= PAIR:
             where = tuple(rows)
-            text += f"; all values agree but {_listed(where)}"
+            text += f"; all member forces agree but {_listed(where)}"
         elif 0 < len(joints) <= MOST_TOLD:
             where = tuple(joint for joint, *_ in joints)
             unit = what.truss.force

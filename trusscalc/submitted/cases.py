@@ -39,6 +39,9 @@ def parts_of(submitted: Submitted, named: Mapping[str, str]) -> dict[str, Part]:
     found = {}
     for name, stated in named.items():
         case, notes = _their_case(submitted.cases, name, stated)
+        others = [other for other in submitted.cases if other != case]
+        if others and len(named) == 1:
+            notes.append(f"other load cases of the table, not compared here: {_shown(others)}")
         lists = (rows.get(case, ()), reactions.get(case, ()), displacements.get(case, ()))
         found[name] = Part(case, tuple(lists[0]), tuple(lists[1]), tuple(lists[2]), tuple(notes))
     return found
@@ -55,8 +58,11 @@ def _their_case(cases: Sequence[str], name: str, stated: str) -> tuple[str, list
     if len(cases) == 1 and not stated:
         (only,) = cases
         return only, [f"the table's only case is called {only[:60]!r}: compared with {name}"] if only else []
-    shown = ", ".join(repr(case[:40]) for case in cases[:MOST_NAMED])
-    more = f" and {len(cases) - MOST_NAMED} more" if len(cases) > MOST_NAMED else ""
     near = did_you_mean(wanted, cases)
-    message = f"the table has no case {wanted[:60]!r}; it has {shown}{more}{near}; say what it calls {name[:60]!r}"
+    message = f"the table has no case {wanted[:60]!r}; it has {_shown(cases)}{near}; say what it calls {name[:60]!r}"
     raise InputError(one_line(message))
+
+
+def _shown(cases: Sequence[str]) -> str:
+    shown = ", ".join(repr(case[:40]) for case in cases[:MOST_NAMED])
+    return f"{shown} and {len(cases) - MOST_NAMED} more" if len(cases) > MOST_NAMED else shown
