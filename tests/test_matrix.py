@@ -95,7 +95,7 @@ MANY_LOADS: dict[str, Loads] = {
 
 
 @pytest.mark.parametrize("kind", ROOTS)
-@pytest.mark.parametrize("left_out", ["a root under a root", "", *(set(MANY_LOADS) - {"none"})])
+@pytest.mark.parametrize("left_out", ["", *(name for name in MANY_LOADS if name != "none")])
 def test_many_load_cases_from_one_elimination(kind: str, left_out: str) -> None:
     """Each as if it were solved alone, whatever numbers the others are made of, with what was rounded still told."""
     truss = ROOTS[kind].truss
