@@ -17,8 +17,7 @@ from trusscalc.exacttext import parse, to_text
 from trusscalc.loads import Combination, LoadCase
 from trusscalc.trussfile import TrussFile
 from trusscalc.widgets import Exploration, explore
-from trusscalc.widgets.choices import typed_centre, typed_direction, typed_line
-from trusscalc.widgets.exploration import names_of
+from trusscalc.widgets.choices import names_of, typed_centre, typed_direction, typed_line
 
 KHOO = CASES["khoo_t4"]
 """The K truss of H. A. Khoo, Example T-4: printed are 320 and -320 in the chords, 44.72 and -44.72 in the diagonals."""

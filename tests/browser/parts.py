@@ -35,6 +35,12 @@ LISTEN_TO_KERNEL = """() => {
     if (message.header.msg_type === 'error')
       window.kernelErrors.push(`${message.content.ename}: ${message.content.evalue}`);
   });
+  // an error of the program in a callback is shown in the drawing, where the next move takes it away again
+  const shown = () => {
+    for (const { textContent } of document.querySelectorAll('.tc-problem'))
+      if (textContent.startsWith('An error in this program')) window.kernelErrors.push(textContent);
+  };
+  new MutationObserver(shown).observe(document.body, { childList: true, characterData: true, subtree: true });
   return true;
 }"""
 RUN_ALL = "() => window.jupyterapp.commands.execute('notebook:run-all-cells')"

@@ -124,6 +124,10 @@ def test_a_failing_callback_is_shown(page: Any, notebook: Any) -> None:
     sheet.drag(sheet.between("p", "q", up=-45), sheet.between("c", "d", up=45))
     expect(book.get_by_role("alert")).to_contain_text("An error in this program (RuntimeError: a planted defect)")
     expect(sheet.svg.locator(".tc-section")).to_be_hidden()
+    told = page.evaluate("() => window.kernelErrors")  # so every test fails on one that it did not plant
+    assert told
+    assert all("a planted defect" in error for error in told)
+    page.evaluate("() => { window.kernelErrors = []; document.querySelector('.tc-problem').remove(); return true; }")
 
 
 def test_an_envelope_is_stopped_and_finished(page: Any, notebook: Any) -> None:

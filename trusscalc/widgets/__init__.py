@@ -11,7 +11,8 @@ from trusscalc.loads import LoadCase
 from trusscalc.statics.owncuts import OwnCut
 from trusscalc.truss import Truss
 from trusscalc.trussfile import TrussFile
-from trusscalc.widgets.exploration import Exploration, names_of
+from trusscalc.widgets.choices import names_of
+from trusscalc.widgets.exploration import Exploration
 from trusscalc.widgets.longwork import LongWork
 
 if TYPE_CHECKING:

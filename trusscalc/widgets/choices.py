@@ -17,6 +17,7 @@ from trusscalc.sheet.detail import DETAILS, Detail
 from trusscalc.statics.cuts import SUM_X, SUM_Y, About, about_joint, structure_of
 from trusscalc.statics.owncuts import OwnCut, own_cut
 from trusscalc.truss import Truss
+from trusscalc.trussfile import TrussFile
 from trusscalc.widgets.crossings import Point, drawn_section
 
 PLANE: Final = 2
@@ -203,6 +204,25 @@ def _first_choice(truss: Truss, left: Sequence[str], right: Sequence[str], *, cl
         return tuple(left if len(left) <= len(right) else right)
     outer = min(truss.joints, key=lambda joint: (float(truss.value(joint.x)), float(truss.value(joint.y)))).name
     return tuple(left if outer in left else right)
+
+
+def names_of(stated: TrussFile) -> tuple[str, ...]:
+    """Return the cases and combinations of a truss file that are one load case each."""
+    moving = {load.name for load in stated.moving}
+    single = [
+        each.name
+        for each in stated.all_combinations
+        if all(len(factors) == 1 and case not in moving for case, factors in each.factors)
+    ]
+    return (*(case.name for case in stated.acting), *single)
+
+
+def point_of(values: Sequence[object]) -> Point:
+    """Return two numbers as a point (InputError for anything else)."""
+    if isinstance(values, str) or len(values) != PLANE:
+        message = f"{values!r}: two numbers are needed, such as (8, 0)"
+        raise InputError(message)
+    return number(values[0]), number(values[1])
 
 
 # --- what was typed ---------------------------------------------------------------------------------------

@@ -15,7 +15,6 @@ from typing import TYPE_CHECKING, Any, Literal
 from trusscalc import envelopes
 from trusscalc.envelopes import Envelope
 from trusscalc.errors import InputError, UnknownNameError
-from trusscalc.exacttext import number
 from trusscalc.loads import LoadCase
 from trusscalc.membercheck import MemberCheck, check_members, members_named
 from trusscalc.render.notebook import Bundle
@@ -26,7 +25,7 @@ from trusscalc.trains import Train
 from trusscalc.truss import Truss, did_you_mean
 from trusscalc.trussfile import TrussFile
 from trusscalc.widgets.answers import Answer, answer, reactions_only
-from trusscalc.widgets.choices import Choices, typed_centre
+from trusscalc.widgets.choices import Choices, names_of, point_of, typed_centre
 from trusscalc.widgets.crossings import Point
 from trusscalc.widgets.frozen import Present, frozen_bundle
 from trusscalc.widgets.longwork import LongWork
@@ -82,7 +81,7 @@ class Exploration:
         work_screen_of: Callable[[LongWork[Any]], Any] | None = None,
     ) -> None:
         self.stated = stated
-        self._screen_of = screen_of or Unseen
+        self._screen_of = screen_of
         self._train_screen_of = train_screen_of
         self._work_screen_of = work_screen_of
         self.watchers: list[Callable[[], None]] = []
@@ -205,7 +204,7 @@ class Exploration:
         if centre is None or isinstance(centre, str):
             self.about = typed_centre(self.truss, centre or "")
         else:
-            self.about = About("moment", *_point(centre))
+            self.about = About("moment", *point_of(centre))
 
     @property
     def direction(self) -> Point | None:
@@ -215,7 +214,7 @@ class Exploration:
 
     @direction.setter
     def direction(self, direction: Sequence[object] | None) -> None:
-        about = None if direction is None else About("force", *_point(direction))
+        about = None if direction is None else About("force", *point_of(direction))
         if about is not None and not about.x and not about.y:
             message = "forces cannot be summed along (0, 0); give a direction such as (0, 1)"
             raise InputError(message)
@@ -247,7 +246,7 @@ class Exploration:
         InputError, InexactNumberError
             For points that are none, or too few or too many.
         """
-        line = [_point(point) for point in points]
+        line = [point_of(point) for point in points]
         self.change(lambda now: now.drawn(self.truss, line, closed=closed) if line else now.cleared())
 
     def other_side(self) -> None:
@@ -370,9 +369,14 @@ class Exploration:
 
     def _ipython_display_(self) -> None:
         """Show the drawing and the form, and beside them the static form, which follows them."""
-        if self._screen is None:
+        if self._screen is None and self._screen_of is not None:
             self._screen = self._screen_of(self)
-        self._screen.display()
+        if self._screen is not None:
+            self._screen.display()
+            return
+        from IPython.display import display  # noqa: PLC0415 - only where there are cells
+
+        display(self.frozen(), raw=True)
 
     # --- worked out ---------------------------------------------------------------------------------------
 
@@ -415,34 +419,3 @@ class Exploration:
 
     def _rest(self, joints: set[str]) -> set[str]:
         return {joint.name for joint in self.truss.joints} - joints
-
-
-class Unseen:
-    """The screen of an exploration without drawing and form: its static form."""
-
-    def __init__(self, exploration: Exploration) -> None:
-        self.exploration = exploration
-
-    def display(self) -> None:
-        """Show the static form in the running cell."""
-        from IPython.display import display  # noqa: PLC0415 - only where there are cells
-
-        display(self.exploration.frozen(), raw=True)
-
-
-def names_of(stated: TrussFile) -> tuple[str, ...]:
-    """Return the cases and combinations of a truss file that are one load case each."""
-    moving = {load.name for load in stated.moving}
-    single = [
-        each.name
-        for each in stated.all_combinations
-        if all(len(factors) == 1 and case not in moving for case, factors in each.factors)
-    ]
-    return (*(case.name for case in stated.acting), *single)
-
-
-def _point(values: Sequence[object]) -> Point:
-    if isinstance(values, str) or len(values) != 2:  # noqa: PLR2004 - the plane
-        message = f"{values!r}: two numbers are needed, such as (8, 0)"
-        raise InputError(message)
-    return number(values[0]), number(values[1])
