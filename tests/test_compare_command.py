@@ -127,6 +127,15 @@ def test_agreement_is_0_and_diagnoses_nothing(run: Any) -> None:
     assert ran.err == ""
 
 
+def test_what_was_not_asked_for_is_not_diagnosed(run: Any) -> None:
+    """The members asked for agree; that is the verdict, and no explanation is due."""
+    wrong = PLAIN.replace("A-B,8.0", "A-B,80.0")
+    ran = run(wrong, "--members", "A-C,C-B", "--json")
+    assert ran.code == 0
+    assert ran.data["diagnosis"] == []
+    assert run(wrong, "--json").data["diagnosis"] != []
+
+
 def test_a_missing_member_is_1(run: Any) -> None:
     """Of those that are asked for; without any explanation, because nothing differs."""
     short = PLAIN.replace("C-B,-10.0\n", "")

@@ -153,7 +153,7 @@ def test_an_agreeing_table() -> None:
     assert conclusion(made).startswith("Agrees: all three members of the submitted table are within the criterion")
     assert table(made, "Members compared").strong_rows == ()
     assert [block for block in part(made, "Diagnosis") if isinstance(block, Table)] == []
-    assert "No value differs, so no explanation was looked for." in text(made)
+    assert "No value asked for differs, so no explanation was looked for." in text(made)
     assert made.origin.agreed
 
 

@@ -23,8 +23,11 @@ from trusscalc.statics.prices import Preference
 
 
 def explained(comparison: Comparison) -> tuple[Explanation, ...]:
-    """Return what would explain the differences of a comparison; nothing where our own two routes disagree."""
-    return () if comparison.own_faults else diagnose(comparison, comparison.stated)
+    """Return what would explain the differences of a comparison.
+
+    Nothing where what was asked for agrees, whatever else the table holds, and where our own two routes disagree.
+    """
+    return () if comparison.agreed or comparison.own_faults else diagnose(comparison, comparison.stated)
 
 
 def verification(

@@ -51,7 +51,7 @@ CONSISTENT: Final = "consistent with"
 UNEXPLAINED: Final = (
     "None of the blunders tried explains the differences. They are unexplained, and have to be settled."
 )
-NOTHING: Final = "No value differs, so no explanation was looked for."
+NOTHING: Final = "No value asked for differs, so no explanation was looked for."
 ONLY_MISSING: Final = "No value that is there differs, so no explanation was looked for; members are missing."
 NOT_DIAGNOSED: Final = (
     "Not diagnosed: our own two routes do not agree with each other, so ours cannot be the measure of theirs."
