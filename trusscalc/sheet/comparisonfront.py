@@ -74,15 +74,14 @@ class Verification:
 def opening(found: Verification, project: Project) -> list[Block]:
     """Return title and the line that says what is compared."""
     comparison = found.comparison
-    called = f", there called “{cell_text(comparison.their_case)}”" if comparison.their_case else ""
-    if comparison.their_case == comparison.case.name:
-        called = ", there called the same"
-    submitted = f"{comparison.submitted.source}{called}"
-    text = (
-        f"Load case “{comparison.case.name}”: {loads_words(project)}. Submitted: {submitted}. "
-        f"Forces in {comparison.truss.force}, tension positive."
-    )
-    return [Heading(1, TITLE), Paragraph((Run(text),)), *_symbol_values(found.check)]
+    case = comparison.case.name
+    text = f"Load case “{case}”: {loads_words(project)}. Forces in {comparison.truss.force}, tension positive."
+    called = ""
+    if comparison.their_case:
+        same = comparison.their_case == case
+        called = f", where the case is called {'the same' if same else f'“{cell_text(comparison.their_case)}”'}"
+    submitted = f"Submitted: {comparison.submitted.source}{called}."
+    return [Heading(1, TITLE), Paragraph((Run(text),)), Paragraph((Run(submitted),)), *_symbol_values(found.check)]
 
 
 def _symbol_values(check: MemberCheck) -> list[Block]:
@@ -112,7 +111,7 @@ def _shown(comparison: Comparison) -> list[str]:
     if len(members) <= MOST_ROWS:
         return list(members)
     urgent = [name for name, item in members.items() if item.verdict != "agrees"]
-    wanted = sorted(urgent or members, key=lambda name: (-_urgency(members[name]), list(members).index(name)))
+    wanted = sorted(urgent or members, key=lambda name: -_urgency(members[name]))
     chosen = set(wanted[: MOST_ROWS if urgent else MOST_ROWS // 2])
     return [name for name in members if name in chosen]
 
