@@ -561,6 +561,21 @@ def test_a_load_that_is_nowhere_adverse_stays_away() -> None:
     assert "no position of its axles adverse" in text(sheet_of(FOOTWAY.replace("line = 10", "line = -10"), ["L1-L2"]))
 
 
+def test_symbols_of_dimensions_and_loads_are_taken_at_their_values(tmp_path: Path) -> None:
+    """Also where panel loads alone hold them; the sheet says so, and is derived again."""
+    file = FOOTWAY.replace("[chains.deck]", "[symbols]\na = 6\nq = 10\n[chains.deck]").replace(
+        "line = 10", 'line = "q"'
+    )
+    for place in (24, 18, 12, 6):
+        file = re.sub(rf"= \[{place}, ", f'= ["{place // 6}*a", ', file)
+    file = re.sub(r", 6\]", ', "a"]', file)
+    assert found_in(file, ["U1-U2"]).members["U1-U2"].min.value == number("-458.25")
+    sheet = sheet_of(file, ["U1-U2"])
+    assert "All values are at a = 6, q = 10." in text(sheet)
+    assert "(1)  q kN/m of plan length" in text(sheet)
+    assert recheck.recheck(save(sheet, tmp_path / "sheet.html")).matches
+
+
 def test_the_record_says_what_was_asked_for() -> None:
     """Task and members; that of a check stays without a task."""
     record = record_of(sheet_of(FOOTWAY, ["U1-U2"]))

@@ -119,6 +119,8 @@ def reads(text: str, source: str = "") -> TrussFile:
     combinations = combinations_in(tables["combinations"], problems)
     project = _project(tables["project"], problems)
     loads = _load_tables(tables, symbols, truss, problems)
+    if symbols and not cases and tables["panel_loads"]:  # a file's symbols travel with its cases
+        cases = [LoadCase(next(iter(tables["panel_loads"])), {}, symbols=symbols)]
     stated_names = (*tables["cases"], *tables["panel_loads"])
     problems += case_faults(list(tables["joints"]), cases)
     problems += combination_faults(stated_names, combinations, moving=list(tables["moving"]))

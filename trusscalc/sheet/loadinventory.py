@@ -71,7 +71,9 @@ def _of_case(
         return [*blocks, Paragraph((Run("This case states no loads."),))]
     items = []
     for number, spread in enumerate(spreads, 1):
-        words = [f"{capital(rule_words(spread, stated.truss))}.", *_factors(spread, stated.truss)]
+        told = rule_words(spread, stated.truss)
+        told = capital(told) if isinstance(spread.rule, SelfWeight) else told  # others begin with a number or a symbol
+        words = [f"{told}.", *_factors(spread, stated.truss)]
         items.append((f"({number})", (Run(" ".join(words)),)))
     blocks += [Items(tuple(items))] if items else []
     blocks += [_spread_table(stated, case, spreads)] if spreads else []
