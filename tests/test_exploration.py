@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import asyncio
 import json
 import threading
 from collections.abc import Iterator
@@ -343,6 +344,31 @@ def test_of_lines_that_overtake_each_other_the_last_counts(screen: Any, trial: E
     assert trial.members == ("a-b",)
     screen.received({**later, "points": [[10, -1], [10, 5]], "view": "w", "number": 1})
     assert trial.cut != drawn
+
+
+def test_the_form_on_file_waits_until_the_hand_rests(
+    screen: Any, trial: Exploration, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """Three quick moves in the page renew it once; a move in a cell renews it before the cell ends."""
+    renewed: list[str] = []
+    monkeypatch.setattr("trusscalc.widgets.onscreen.REST", 0.05)
+    monkeypatch.setattr(
+        "trusscalc.widgets.onscreen.update_display", lambda form, **_: renewed.append(form["text/plain"])
+    )
+    screen.displays = 1
+
+    async def three_moves() -> None:
+        for joint in ("n", "h", "a"):
+            screen.received({"event": "keep", "joint": joint})
+        assert renewed == []
+        await asyncio.sleep(0.5)
+
+    asyncio.run(three_moves())
+    assert len(renewed) == 1
+    assert "a–b" in renewed[0]
+    trial.cut = None
+    assert len(renewed) == 2
+    assert "No cut has been chosen" in renewed[1]
 
 
 def test_a_page_loaded_again_says_that_the_form_on_file_is_old(screen: Any) -> None:

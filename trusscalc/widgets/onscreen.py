@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import asyncio
 import secrets
 from collections.abc import Callable
 from contextlib import AbstractContextManager
@@ -15,6 +16,8 @@ from trusscalc.render.notebook import Bundle
 
 REPLACING: Final = frozenset({"section", "place", "over"})
 """Moves of which a later one takes the place of an earlier one."""
+REST: Final = 0.4
+"""Seconds without a move after which the form on file is renewed."""
 LOADED_AGAIN: Final = " This page was loaded again: run the cell again to renew the form on file below."
 
 
@@ -42,6 +45,8 @@ class OnScreen:
         self.problem = ""
         self.turn = 0
         self.showing = False
+        self.acting = False
+        self.waiting: asyncio.TimerHandle | None = None
         self.displays = 0
         self.views = 0
         self.name = f"trusscalc-{secrets.token_hex(8)}"
@@ -70,11 +75,28 @@ class OnScreen:
         display(self.frozen(), raw=True, display_id=self.name)
 
     def show(self) -> None:
-        """Show the present state: the answer at once, then the form on file."""
+        """Show the present state: the answer at once, then the form on file.
+
+        After a move in the page the form on file waits until the hand rests, so that its figures keep no next move
+        waiting; after one in a cell it is renewed before the cell ends.
+        """
         self.problem = ""
         self.show_now()
-        if self.displays:
-            update_display(self.frozen(), raw=True, display_id=self.name)
+        if self.waiting is not None:
+            self.waiting.cancel()
+            self.waiting = None
+        loop = _running_loop() if self.acting else None
+        if loop is None:
+            self.renew()
+        else:
+            self.waiting = loop.call_later(REST, lambda: self.act(self.renew))
+
+    def renew(self) -> None:
+        """Renew the form on file."""
+        with self.lock:
+            self.waiting = None
+            if self.displays:
+                update_display(self.frozen(), raw=True, display_id=self.name)
 
     def show_now(self) -> None:
         """Show the present state in drawing and controls."""
@@ -94,12 +116,15 @@ class OnScreen:
     def act(self, move: Callable[[], None]) -> None:
         """Make a move; what goes wrong is told in the drawing, and the state stays what it was."""
         with self.lock:
+            self.acting = True
             try:
                 move()
             except TrusscalcError as problem:
                 self.tell(str(problem))
             except Exception as problem:  # noqa: BLE001 - shown nowhere else in a notebook
                 self.tell(f"An error in this program ({type(problem).__name__}: {problem}). Nothing was changed.")
+            finally:
+                self.acting = False
 
     def tell(self, problem: str) -> None:
         """Show what went wrong beside the state as it is."""
@@ -127,6 +152,14 @@ class OnScreen:
                 self.told[view] = max(number, self.told.get(view, 0))
                 return late
         return False
+
+
+def _running_loop() -> asyncio.AbstractEventLoop | None:
+    """Return the loop that runs the callbacks of this thread, None outside of one."""
+    try:
+        return asyncio.get_running_loop()
+    except RuntimeError:
+        return None
 
 
 # --- controls ---------------------------------------------------------------------------------------------
