@@ -65,7 +65,9 @@ def compose(
 
     Examples
     --------
+    >>> from trusscalc.loads import LoadCase
     >>> from trusscalc.membercheck import check_members
+    >>> from trusscalc.truss import Truss
     >>> truss = Truss({"A": (0, 0), "B": (4, 0), "C": (2, 1)}, ["A-B", "A-C", "B-C"], {"A": "pin", "B": "roller"})
     >>> sheet = compose(check_members(truss, LoadCase("dead", {"C": (0, -2)}), ["A-C"]))
     >>> [block.text for block in sheet.blocks if isinstance(block, Heading) and block.level == 2][:3]
