@@ -121,7 +121,7 @@ def on_altered_models(look: Screen, tried: Sequence[Alteration], first: Sequence
             continue
         listed = [other for other in tried if not _in_conflict(one, other)]
         forces = forces_of(beside, listed)
-        sharp, rough = misfits(look, forces, look.sharp), misfits(look, forces, look.rounding)
+        sharp, rough = misfits(beside, forces, beside.sharp), misfits(beside, forces, beside.rounding)
         best = np.argsort(sharp, kind="stable")[:BEST_PAIRS].tolist()
         found += [
             (sharp[place], rough[place] <= SLACK, (one, listed[place])) for place in best if np.isfinite(sharp[place])
@@ -135,9 +135,19 @@ def altered_screen(look: Screen, one: Alteration) -> Screen | None:
     """Return an altered model laid beside the printed results; None for a mechanism."""
     truss = altered_floats(look, one)
     model = flexibility(truss)
-    if model is None or one.without:
+    if model is None:
         return None
-    return replace(look, truss=truss, flexibility=model, loads=look.loads + changes(look, [one])[:, 0])
+    kept = np.array([name != one.without for name in look.members])
+    return replace(
+        look,
+        members=tuple(name for name, _, _ in truss.members),
+        truss=truss,
+        flexibility=model,
+        loads=look.loads + changes(look, [one])[:, 0],
+        values=look.values[kept],
+        sharp=look.sharp[kept],
+        rounding=look.rounding[kept],
+    )
 
 
 def _in_conflict(one: Alteration, other: Alteration) -> bool:
